@@ -1,0 +1,28 @@
+/**
+ * The closed union of finding kinds, a list a stage.
+ * Every kind has a page under src/report/explanations/, checked by the compiler; add the page with the kind.
+ */
+export type FindingKind =
+  | UnitKind
+  | ManifestKind
+  | ReaderKind
+  | ConstantKind
+  | FitKind
+  | DriftKind
+  | ComparisonKind
+  | RunKind
+  | RegisterKind
+  | AuditKind
+  | ReviewKind;
+
+export type UnitKind = 'unit-unknown' | 'unit-ambiguous';
+export type ManifestKind = 'manifest-unreadable' | 'manifest-invalid';
+export type ReaderKind = 'source-incomplete';
+export type ConstantKind = never;
+export type FitKind = never;
+export type DriftKind = never;
+export type ComparisonKind = never;
+export type RunKind = never;
+export type RegisterKind = never;
+export type AuditKind = never;
+export type ReviewKind = never;

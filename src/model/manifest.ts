@@ -1,0 +1,227 @@
+/**
+ * The records that manifests declare, after they were read and found sound. Plain data.
+ * The YAML spelling is the same word for word; JSON Schemas are under manifests/schema/.
+ */
+import type { BumpPolicy } from './bump.ts';
+import type { Tolerance } from './deviation.ts';
+import type { Intent, Language } from './interface.ts';
+import type { Place } from './place.ts';
+
+/** A manifest with the file it came from; `placeOf` finds any part of it by its path of keys and indices. */
+export interface Declaration<T> {
+  readonly file: string;
+  readonly value: T;
+  /** The place of the nearest part that exists; `key` points at the key in place of its value. */
+  placeOf(path: readonly (string | number)[], part?: 'key' | 'value'): Place;
+  /** The text of a line, from 1, for excerpts. */
+  lineText(line: number): string;
+}
+
+/** Closed range of states; null is unbounded. In the unit the quantity has at that side of the joint. */
+export type Range = readonly [number | null, number | null];
+export type Domain = Readonly<Record<string, Range>>;
+export type Conventions = Readonly<Record<string, string>>;
+
+export interface Contract {
+  readonly contract: string;
+  readonly title?: string;
+  readonly version: string;
+  readonly component: string;
+  /** In the order of the arguments of a procedure that offers it. */
+  readonly quantities: Readonly<Record<string, ContractQuantity>>;
+  /** Names of identities that every offer must satisfy: `first-law`, `maxwell`, `causal-sound-speed`, `detailed-balance`. */
+  readonly identities?: readonly string[];
+}
+
+export interface ContractQuantity {
+  readonly unit: string;
+  readonly intent: Intent;
+  readonly title?: string;
+  /** `scalar` (the default), or the extents by name: `[zones]`, `[zones, species]`. */
+  readonly shape?: 'scalar' | readonly string[];
+  readonly domain?: Range;
+  readonly positive?: boolean;
+  readonly optional?: boolean;
+  /** A convention's name and the choices open to a module; the first is the default. */
+  readonly conventions?: Readonly<Record<string, readonly string[]>>;
+}
+
+export interface ModuleManifest {
+  readonly module: string;
+  readonly title?: string;
+  readonly component: string;
+  readonly version: string;
+  readonly source: ModuleSource;
+  readonly offers?: readonly Offer[];
+  readonly expects?: readonly Expectation[];
+  readonly tables?: readonly TableDeclaration[];
+  /** What the build needs to plug this module in; fills `{select.NAME}` in commands. */
+  readonly select?: Readonly<Record<string, string | number | boolean>>;
+  /** Programs that must exist for this module to run (`gfortran`); without them it is reported as not runnable. */
+  readonly needs?: readonly string[];
+}
+
+export interface ModuleSource {
+  readonly language: Language;
+  readonly files: readonly string[];
+  /** Those that make the interface; all public ones when absent. */
+  readonly procedures?: readonly string[];
+}
+
+export interface Offer {
+  /** Contract name and semver range of contract versions: `gas-state ^1.2`. */
+  readonly contract: string;
+  readonly procedure?: string;
+  /** Quantity of the contract to the argument, result or table data set that carries it. */
+  readonly arguments?: Readonly<Record<string, string>>;
+  /** Where they differ from the contract's. */
+  readonly units?: Readonly<Record<string, string>>;
+  readonly conventions?: Conventions;
+  /** States for which this offer is valid. */
+  readonly domain?: Domain;
+}
+
+export interface Expectation {
+  readonly contract: string;
+  /** The quantities in the order in which they are passed, when not the contract's order. */
+  readonly order?: readonly string[];
+  /** The procedure name that this module calls, where the code names it. */
+  readonly calls?: string;
+  readonly units?: Readonly<Record<string, string>>;
+  readonly conventions?: Conventions;
+  /** States that this module can reach when it asks. */
+  readonly domain?: Domain;
+  readonly optional?: boolean;
+}
+
+export interface TableDeclaration {
+  readonly file: string;
+  /** `sha256:` and 64 hexadecimal digits. */
+  readonly digest?: string;
+  /** Data set or column that is an axis, the quantity it stands for, its unit and spacing. */
+  readonly axes?: Readonly<Record<string, TableAxis>>;
+}
+
+export interface TableAxis {
+  readonly quantity: string;
+  readonly unit?: string;
+  readonly spacing?: 'linear' | 'log10' | 'ln' | 'uneven';
+  readonly range?: Range;
+}
+
+export interface Case {
+  readonly case: string;
+  readonly title?: string;
+  /** Command with `{out}`, `{select.NAME}`, `{root}` filled in; split into words, never given to a shell. */
+  readonly run: string;
+  /** Files the command reads, relative to the repository. */
+  readonly inputs?: readonly string[];
+  /** Components whose modules this case runs; all plugged ones when absent. */
+  readonly uses?: readonly string[];
+  /** Modules put in place of the assembly's for this case. */
+  readonly with?: Readonly<Record<string, string>>;
+  readonly outputs: readonly CaseOutput[];
+  readonly features?: Readonly<Record<string, Feature>>;
+  /** Names of totals that the run must keep: each names a quantity whose values along the run are compared with the first. */
+  readonly conserved?: readonly (string | ConservedTotal)[];
+  /** Quantities whose extremes over the outputs make the footprint: component quantity to output quantity. */
+  readonly footprint?: Readonly<Record<string, string>>;
+  readonly 'time-limit-seconds'?: number;
+}
+
+export interface ConservedTotal {
+  readonly total: string;
+  /** Output quantity that holds its values along the run. */
+  readonly of: string;
+  readonly tolerance?: Tolerance;
+}
+
+export interface CaseOutput {
+  readonly file: string;
+  /** Data set or column that is the axis of the profile. */
+  readonly along?: string;
+  readonly quantities: Readonly<Record<string, OutputQuantity>>;
+}
+
+export interface OutputQuantity {
+  readonly dataset: string;
+  readonly unit: string;
+  readonly tolerance: Partial<Tolerance>;
+}
+
+export interface Feature {
+  readonly of: string;
+  readonly take: 'maximum' | 'minimum' | 'where-maximum' | 'integral' | 'final' | 'mean' | 'crossing';
+  /** The level that `crossing` looks for. */
+  readonly level?: number;
+  readonly unit?: string;
+  readonly tolerance: Partial<Tolerance>;
+}
+
+export interface Assembly {
+  readonly assembly: string;
+  readonly title?: string;
+  /** Component to module. */
+  readonly plugged: Readonly<Record<string, string>>;
+  readonly build?: {
+    readonly run: string;
+    /** What it makes, relative to the repository. */
+    readonly makes: readonly string[];
+    /** Bytes that the build's switches give a declared default, e.g. `{real: 8}`. */
+    readonly promote?: Readonly<Record<string, number>>;
+    readonly define?: Readonly<Record<string, string>>;
+  };
+  readonly environment?: {
+    /** Variables passed on from the caller; PATH and HOME always are. */
+    readonly pass?: readonly string[];
+    readonly set?: Readonly<Record<string, string>>;
+  };
+  readonly executors?: Readonly<Record<string, Executor>>;
+  readonly policy?: Partial<BumpPolicy>;
+  readonly campaign?: Campaign;
+  /** `safety-related` puts the caution into every report. */
+  readonly consequence?: 'none' | 'safety-related';
+}
+
+export interface Executor {
+  readonly kind: 'local' | 'slurm';
+  readonly 'at-once'?: number;
+  readonly 'time-limit-seconds'?: number;
+  readonly 'memory-megabytes'?: number;
+}
+
+export interface Campaign {
+  readonly title?: string;
+  readonly grid: readonly number[];
+  readonly fields?: number;
+  readonly species?: number;
+  readonly 'energy-bins'?: number;
+  readonly directions?: number;
+  readonly 'bytes-per-value'?: number;
+  /** Copies of the state held at once by the scheme. */
+  readonly copies?: number;
+  readonly steps: number;
+  readonly 'output-every'?: number;
+  /** Core-seconds for one zone and one step; measured from a case when it is named. */
+  readonly cost?: {
+    readonly 'core-seconds-per-zone-step'?: number;
+    readonly 'measured-by'?: string;
+    readonly zones?: number;
+    readonly steps?: number;
+  };
+  readonly allocation?: {
+    readonly 'core-hours'?: number;
+    readonly 'memory-bytes'?: number;
+    readonly 'storage-bytes'?: number;
+  };
+  /** States that the campaign will visit. */
+  readonly domain?: Domain;
+}
+
+/** Everything declared for one code, from the files under `manifests/`. */
+export interface ManifestSet {
+  readonly assembly: Declaration<Assembly> | null;
+  readonly modules: ReadonlyMap<string, Declaration<ModuleManifest>>;
+  readonly contracts: ReadonlyMap<string, Declaration<Contract>>;
+  readonly cases: ReadonlyMap<string, Declaration<Case>>;
+}
