@@ -1,0 +1,22 @@
+/** Words onto lines of a given width. */
+import textWidth from './text-width.ts';
+
+/** Folds text at spaces; a word longer than a line stands on a line of its own. `indent` goes before every line but the first. */
+export function wrap(text: string, width: number, indent = ''): string {
+  const lines: string[] = [];
+  for (const paragraph of text.split('\n')) {
+    let line = '';
+    for (const word of paragraph.split(/ +/)) {
+      const joined = line === '' ? word : `${line} ${word}`;
+      const room = width - (lines.length === 0 ? 0 : indent.length);
+      if (line !== '' && textWidth(joined) > room) {
+        lines.push(line);
+        line = word;
+      } else {
+        line = joined;
+      }
+    }
+    lines.push(line);
+  }
+  return lines.join(`\n${indent}`);
+}
