@@ -28,7 +28,8 @@ const shared = {
     'process.env.DEV': '"false"',
   },
   // What cannot or should not be bundled: native code, the TypeScript compiler, WebAssembly loaders that look for files beside them.
-  external: ['better-sqlite3', 'ts-morph', 'h5wasm', 'h5wasm/node', 'react-devtools-core'],
+  external: ['better-sqlite3', 'ts-morph', 'h5wasm', 'h5wasm/node'],
+  alias: { 'react-devtools-core': join(root, '.config/empty.mjs') },
   banner: {
     js: "import{createRequire as __createRequire}from'node:module';const require=__createRequire(import.meta.url);",
   },
