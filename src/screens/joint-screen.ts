@@ -61,15 +61,16 @@ function opened(joint: JointView, state: ScreenState, size: Size, glyphs: Glyphs
   const half = Math.floor((size.columns - 2 - seam) / 2);
   const head = halves(
     [span(`${joint.expecting.module} ${joint.expecting.version} expects`, 'strong')],
-    [span(joint.contract, 'faint')],
+    [],
     [span(`${joint.offering.module} ${joint.offering.version} offers`, 'strong')],
     half,
     seam,
   );
   const chosen = joint.rows[state.inner];
   const detail = chosen === undefined ? [] : rowDetail(chosen, size, glyphs);
-  const room = Math.max(3, size.rows - 2 - detail.length);
+  const room = Math.max(3, size.rows - 3 - detail.length);
   return [
+    line(span(`contract ${joint.contract}`, 'faint'), '  ', span(SEAM_WORDS[joint.seam], SEAM_STYLES[joint.seam])),
     [span('  '), ...head],
     ...listLines(joint.rows.length, state.inner, room, glyphs, (index) => {
       const one = joint.rows[index]!;

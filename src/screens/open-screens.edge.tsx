@@ -66,7 +66,7 @@ export async function openScreens(host: ScreenHost, options: ScreenOptions): Pro
             if (left || edit !== null) shown.unmount();
           }}
         />,
-        { exitOnCtrlC: false, patchConsole: false, incrementalRendering: true },
+        { exitOnCtrlC: false, patchConsole: false },
       );
       await shown.waitUntilExit();
       if (edit !== null) {
@@ -134,7 +134,12 @@ function keysOf(input: string, key: InkKey): Key[] {
   if (key.escape) return [{ named: 'back' }];
   if (key.backspace || key.delete) return [{ named: 'rub-out' }];
   if (key.ctrl || key.meta) return [];
-  return [...input].filter((character) => character >= ' ').map((character) => ({ character }));
+  // Keys typed faster than they are read arrive together.
+  return [...input].flatMap((character): Key[] => {
+    if (character === '\r' || character === '\n') return [{ named: 'enter' }];
+    if (character === '\u007f' || character === '\b') return [{ named: 'rub-out' }];
+    return character >= ' ' ? [{ character }] : [];
+  });
 }
 
 /** Ctrl-Z: the shell gets its terminal back; the screen comes again when the process is continued. */

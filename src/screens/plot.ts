@@ -50,10 +50,8 @@ export function plotProfile(profile: Profile, window: Window, width: number, hei
   const columns = width * across;
   const place = (index: number) =>
     shown.length === 1 ? 0 : Math.round(((index - first) / (last - first)) * (columns - 1));
-  const put = (x: number, value: number, mark: string) => {
-    const scaled = scale(value);
-    if (!Number.isFinite(scaled)) return;
-    const y = Math.round((1 - (scaled - low) / span) * (height * down - 1));
+  const rowOf = (value: number) => Math.round((1 - (scale(value) - low) / span) * (height * down - 1));
+  const put = (x: number, y: number, mark: string) => {
     const cell = Math.floor(y / down) * width + Math.floor(x / across);
     dots[cell]! |= DOTS[y % 4]![x % 2]!;
     if (marks[cell] !== '*') marks[cell] = mark;
@@ -62,11 +60,20 @@ export function plotProfile(profile: Profile, window: Window, width: number, hei
     let previous: { x: number; value: number } | null = null;
     for (const index of shown) {
       const [x, value] = [place(index), values[index] ?? Number.NaN];
-      const from = previous === null ? x : Math.min(previous.x + 1, x);
-      for (let at = from; at <= x; at++) {
-        const part = previous === null || x === previous.x ? 1 : (at - previous.x) / (x - previous.x);
-        const between = previous === null ? value : mix(previous.value, value, part, window.logValue);
-        if (at % every === 0) put(at, between, mark);
+      if (!Number.isFinite(scale(value))) {
+        previous = null;
+        continue;
+      }
+      const start: { x: number; value: number } = previous ?? { x, value };
+      let lastRow = rowOf(start.value);
+      for (let at = start.x; at <= x; at++) {
+        const part = x === start.x ? 1 : (at - start.x) / (x - start.x);
+        const y = rowOf(mix(start.value, value, part, window.logValue));
+        // A steep stretch is filled, so that the curve does not fall apart into dots.
+        for (let row = Math.min(y, lastRow); row <= Math.max(y, lastRow); row++) {
+          if ((at + row) % every === 0) put(at, row, mark);
+        }
+        lastRow = y;
       }
       previous = { x, value };
     }

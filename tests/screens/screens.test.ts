@@ -165,7 +165,7 @@ describe('finding by name', () => {
     const { app } = type(['=', 'hydro']);
     expect(shown(app)).not.toContain('eos-ionising    ');
     expect(shown(app)).toContain('find: hydro_');
-    expect(shown(type([{ named: 'back' }], app).app)).toContain('equation-of-state');
+    expect(shown(type([{ named: 'back' }], app).app)).toContain('dust-heating');
   });
 });
 
