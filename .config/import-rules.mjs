@@ -10,8 +10,8 @@ const root = join(dirname(fileURLToPath(import.meta.url)), '../src');
 const STAGES = [
   'model',
   'units',
-  'manifests',
   'sources',
+  'manifests',
   'readers',
   'constants',
   'fit',

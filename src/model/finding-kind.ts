@@ -16,7 +16,16 @@ export type FindingKind =
   | ReviewKind;
 
 export type UnitKind = 'unit-unknown' | 'unit-ambiguous';
-export type ManifestKind = 'manifest-unreadable' | 'manifest-invalid';
+export type ManifestKind =
+  | 'manifest-unreadable'
+  | 'manifest-syntax'
+  | 'manifest-unknown-key'
+  | 'manifest-invalid'
+  | 'manifest-absent'
+  | 'manifest-duplicate'
+  | 'manifest-unknown-name'
+  | 'manifest-inconsistent'
+  | 'manifest-outside';
 export type ReaderKind = 'source-incomplete';
 export type ConstantKind = never;
 export type FitKind = never;

@@ -74,6 +74,8 @@ export interface Offer {
   readonly procedure?: string;
   /** Quantity of the contract to the argument, result or table data set that carries it. */
   readonly arguments?: Readonly<Record<string, string>>;
+  /** Arguments that carry no quantity: sizes, error codes, switches. */
+  readonly besides?: readonly string[];
   /** Where they differ from the contract's. */
   readonly units?: Readonly<Record<string, string>>;
   readonly conventions?: Conventions;
@@ -83,7 +85,9 @@ export interface Offer {
 
 export interface Expectation {
   readonly contract: string;
-  /** The quantities in the order in which they are passed, when not the contract's order. */
+  /** The quantities that are needed, when not all of the contract. */
+  readonly takes?: readonly string[];
+  /** The quantities in the order in which they are passed, when not the offer's. */
   readonly order?: readonly string[];
   /** The procedure name that this module calls, where the code names it. */
   readonly calls?: string;
@@ -92,6 +96,8 @@ export interface Expectation {
   /** States that this module can reach when it asks. */
   readonly domain?: Domain;
   readonly optional?: boolean;
+  /** Where the code already converts between the two sides of this joint. */
+  readonly adapter?: { readonly file: string; readonly procedure?: string };
 }
 
 export interface TableDeclaration {
@@ -218,10 +224,33 @@ export interface Campaign {
   readonly domain?: Domain;
 }
 
+/** `manifests/accepted.yaml`: findings that may stand, each with a reason. */
+export interface Accepted {
+  readonly accepted: readonly Acceptance[];
+}
+
+/** A finding is accepted when everything that is given here is true of it. */
+export interface Acceptance {
+  /** The kind of finding. */
+  readonly finding: string;
+  readonly module?: string;
+  readonly file?: string;
+  /** Words that its sentence holds. */
+  readonly says?: string;
+  /** The commit of its place, or the beginning of its id. */
+  readonly revision?: string;
+  readonly reason: string;
+  readonly by?: string;
+  /** Last day on which it may stand, `2027-01-31`. */
+  readonly until?: string;
+}
+
 /** Everything declared for one code, from the files under `manifests/`. */
 export interface ManifestSet {
   readonly assembly: Declaration<Assembly> | null;
   readonly modules: ReadonlyMap<string, Declaration<ModuleManifest>>;
   readonly contracts: ReadonlyMap<string, Declaration<Contract>>;
   readonly cases: ReadonlyMap<string, Declaration<Case>>;
+  /** Findings that may stand; null when the code accepts none. */
+  readonly accepted?: Declaration<Accepted> | null;
 }
