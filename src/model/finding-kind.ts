@@ -33,5 +33,18 @@ export type DriftKind = never;
 export type ComparisonKind = never;
 export type RunKind = never;
 export type RegisterKind = never;
-export type AuditKind = never;
+export type AuditKind =
+  | 'acceptance-expired'
+  | 'acceptance-unused'
+  | 'table-left'
+  | 'domain-left'
+  | 'table-altered'
+  | 'table-missing'
+  | 'tree-dirty'
+  | 'not-pinned'
+  | 'changed-since-validated'
+  | 'never-validated'
+  | 'platform-differs'
+  | 'campaign-over-allocation'
+  | 'notice-touches';
 export type ReviewKind = never;
