@@ -4,6 +4,7 @@
  */
 import type { BumpPolicy } from './bump.ts';
 import type { Tolerance } from './deviation.ts';
+import type { Excerpt } from './finding.ts';
 import type { Intent, Language } from './interface.ts';
 import type { Place } from './place.ts';
 
@@ -15,6 +16,8 @@ export interface Declaration<T> {
   placeOf(path: readonly (string | number)[], part?: 'key' | 'value'): Place;
   /** The text of a line, from 1, for excerpts. */
   lineText(line: number): string;
+  /** The line of that place with the characters meant, for a finding. */
+  excerptOf(path: readonly (string | number)[], part?: 'key' | 'value'): Excerpt;
 }
 
 /** Closed range of states; null is unbounded. In the unit the quantity has at that side of the joint. */
@@ -146,18 +149,58 @@ export interface CaseOutput {
   readonly file: string;
   /** Data set or column that is the axis of the profile. */
   readonly along?: string;
+  /** Data set whose values (ids, coordinates) pair the elements of both sides, when their order may differ. */
+  readonly match?: string;
+  /** For a log: data set name to the text around its number, `{}` where the number stands: `total energy = {}`. */
+  readonly patterns?: Readonly<Record<string, string>>;
+  /** For raw binary: the arrays in the order in which they lie in the file. */
+  readonly layout?: RawLayout;
+  /** The result may lie shifted along the axis by up to `tolerance` (in the axis' unit); it is moved back before it is compared. */
+  readonly shift?: { readonly tolerance: number };
   readonly quantities: Readonly<Record<string, OutputQuantity>>;
+}
+
+export interface RawLayout {
+  readonly 'byte-order'?: 'little' | 'big';
+  /** Bytes before the first array. */
+  readonly skip?: number;
+  readonly arrays: readonly RawArray[];
+}
+
+export interface RawArray {
+  readonly name: string;
+  /** `float64`, `float32`, `int32`, ... */
+  readonly type: string;
+  readonly shape: readonly number[];
+  readonly unit?: string;
 }
 
 export interface OutputQuantity {
   readonly dataset: string;
   readonly unit: string;
   readonly tolerance: Partial<Tolerance>;
+  /** An amount a cell (mass, energy) and not a value at a point: between unlike grids its total is kept, not its values. */
+  readonly extensive?: boolean;
+  /** Data set of weights (cell masses, volumes, time steps) for the norms. */
+  readonly weight?: string;
 }
 
 export interface Feature {
   readonly of: string;
-  readonly take: 'maximum' | 'minimum' | 'where-maximum' | 'integral' | 'final' | 'mean' | 'crossing';
+  readonly take:
+    | 'maximum'
+    | 'minimum'
+    | 'where-maximum'
+    | 'integral'
+    | 'final'
+    | 'mean'
+    | 'crossing'
+    | 'half-width'
+    | 'slope'
+    | 'period'
+    | 'formula';
+  /** For `formula`: ordinary notation over the quantities of the case, `maximum(temperature) / mean(temperature)`. */
+  readonly formula?: string;
   /** The level that `crossing` looks for. */
   readonly level?: number;
   readonly unit?: string;
