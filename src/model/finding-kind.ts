@@ -28,11 +28,38 @@ export type ManifestKind =
   | 'manifest-outside';
 export type ReaderKind = 'source-incomplete';
 export type ConstantKind = never;
-export type FitKind = never;
+export type FitKind =
+  | 'joint-unmet'
+  | 'joint-ambiguous'
+  | 'joint-version'
+  | 'joint-quantity'
+  | 'joint-unit'
+  | 'joint-dimension'
+  | 'joint-convention'
+  | 'joint-domain'
+  | 'joint-order'
+  | 'joint-shape'
+  | 'joint-call'
+  | 'source-missing'
+  | 'procedure-missing'
+  | 'argument-missing'
+  | 'argument-unmapped'
+  | 'argument-type'
+  | 'argument-intent'
+  | 'table-range'
+  | 'claim-contradicts'
+  | 'campaign-domain';
 export type DriftKind = never;
 export type ComparisonKind = never;
 export type RunKind = never;
-export type RegisterKind = never;
+export type RegisterKind =
+  | 'record-unreadable'
+  | 'record-altered'
+  | 'record-missing'
+  | 'record-doubled'
+  | 'record-renamed'
+  | 'record-forked'
+  | 'digest-differs';
 export type AuditKind =
   | 'acceptance-expired'
   | 'acceptance-unused'
