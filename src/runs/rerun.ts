@@ -1,0 +1,276 @@
+/** Cases and a tree come in; they are built once a configuration, run, compared; an outcome for every case goes out. */
+import { compareCase, footprintOf } from '../compare/compare-outputs.edge.ts';
+import type { Case, ManifestSet } from '../model/manifest.ts';
+import { type CaseOutcome, type Produced, worstClass } from './case-outcome.ts';
+import { cleanEnvironment } from './clean-environment.ts';
+import { CommandMistake, fillCommand, splitCommand } from './command-words.ts';
+import { type Configuration, casesNamed, configurationOf, NotDeclared } from './configuration.ts';
+import type { Exchange } from './exchange.ts';
+import { localExecutor } from './local-executor.edge.ts';
+import type { Executor } from './process-end.ts';
+import { producedBy } from './produced.ts';
+import { alteredOutputs, readReferenceIn, referencePlace, referenceStands } from './reference-files.edge.ts';
+import { ReferenceDamaged } from './reference-record.ts';
+import type { RunEvent } from './run-event.ts';
+import { closeStore, expectedSeconds, openStore, type Store, storeFolder } from './store.edge.ts';
+import { listTree, type TreeListing } from './tree-files.edge.ts';
+import { type RunResult, Workshop } from './workshop.ts';
+
+export interface RerunRequest {
+  /** Absolute path of the repository or folder of the code. */
+  readonly root: string;
+  /** Of the tree that is run: read at the same revision. */
+  readonly manifests: ManifestSet;
+  /** Folder of the manifests within the code; `manifests` when absent. */
+  readonly manifestFolder?: string;
+  /** Names of cases; all of them when absent or empty. */
+  readonly cases?: readonly string[];
+  /** A revision; the work tree when absent. */
+  readonly at?: string | null;
+  readonly exchanges?: readonly Exchange[];
+  /** Runs at once; as many as cores, or as the executor declares, when absent. */
+  readonly jobs?: number;
+  /** The caller's variables; PATH, HOME and the declared ones of them reach the code. */
+  readonly env: Readonly<Record<string, string | undefined>>;
+  readonly signal?: AbortSignal;
+  readonly onEvent?: (event: RunEvent) => void;
+  /** Name of a declared executor; the assembly's only one, or this machine, when absent. */
+  readonly executor?: string;
+  /** Run again what is kept already, and keep the new result in its place. */
+  readonly fresh?: boolean;
+  /** Absolute folder where builds and results are kept. */
+  readonly store?: string;
+}
+
+/**
+ * Runs cases and compares them with their references.
+ *
+ * @returns an outcome for each case, in the order asked for, or of their names
+ * @throws {NotDeclared} for a case, module or executor that no manifest declares
+ * @throws {GitFailed} when the revision can't be read
+ */
+export async function rerunCases(request: RerunRequest): Promise<CaseOutcome[]> {
+  const cases = casesNamed(request.manifests, request.cases ?? []);
+  return withLaboratory(request, async (laboratory) => {
+    const say = request.onEvent ?? (() => {});
+    const planned = cases.map((one) => ({
+      case: one.case,
+      expectedSeconds: expectedSeconds(laboratory.store, one.case),
+    }));
+    say({ what: 'planned', cases: planned, atOnce: laboratory.executor.atOnce });
+    let done = 0;
+    const one = async (theCase: Case): Promise<CaseOutcome> => {
+      const outcome = await laboratory.examine(theCase, request.exchanges ?? []);
+      done++;
+      say({ what: 'finished', case: theCase.case, state: outcome.state, class: outcome.class, done, of: cases.length });
+      return outcome;
+    };
+    // The longest first, so that the last to finish is a short one.
+    const order = cases
+      .map((_, i) => i)
+      .sort((a, b) => (planned[b]!.expectedSeconds ?? 0) - (planned[a]!.expectedSeconds ?? 0));
+    const outcomes: CaseOutcome[] = [];
+    await Promise.all(
+      order.map(async (i) => {
+        outcomes[i] = await one(cases[i]!);
+      }),
+    );
+    return outcomes;
+  });
+}
+
+/** A store, an executor and one listed tree, open for as long as `work` takes; everything is given back whatever happens. */
+export async function withLaboratory<T>(
+  request: Omit<RerunRequest, 'cases' | 'exchanges'>,
+  work: (laboratory: Laboratory) => Promise<T>,
+): Promise<T> {
+  const folder = request.manifestFolder ?? 'manifests';
+  const listing = listTree(request.root, request.at ?? null, declaredFiles(request.manifests));
+  const store = openStore(request.store ?? storeFolder(request.root, request.env));
+  try {
+    const executor = executorOf(request, store);
+    try {
+      return await work(new Laboratory(request, listing, store, executor, folder));
+    } finally {
+      await executor.close();
+    }
+  } finally {
+    closeStore(store);
+  }
+}
+
+/** Runs and compares cases of one tree. Made by `withLaboratory`. */
+export class Laboratory {
+  readonly store: Store;
+  readonly executor: Executor;
+  readonly listing: TreeListing;
+  private readonly request: Omit<RerunRequest, 'cases' | 'exchanges'>;
+  private readonly manifestFolder: string;
+  private readonly workshop: Workshop;
+
+  constructor(
+    request: Omit<RerunRequest, 'cases' | 'exchanges'>,
+    listing: TreeListing,
+    store: Store,
+    executor: Executor,
+    manifestFolder: string,
+  ) {
+    this.request = request;
+    this.listing = listing;
+    this.store = store;
+    this.executor = executor;
+    this.manifestFolder = manifestFolder;
+    this.workshop = new Workshop({
+      store,
+      executor,
+      signal: request.signal ?? new AbortController().signal,
+      say: request.onEvent ?? (() => {}),
+      manifestFolder,
+    });
+  }
+
+  /** Builds and runs one case, without comparing it. */
+  async run(
+    theCase: Case,
+    exchanges: readonly Exchange[],
+    options: { replaced?: ReadonlyMap<string, Uint8Array | null>; repeat?: number; keepFailures?: boolean } = {},
+  ): Promise<{ readonly result: RunResult; readonly produced: Produced | null }> {
+    let configuration: Configuration;
+    let words: string[];
+    let build: string[] | null;
+    try {
+      configuration = configurationOf(this.request.manifests, theCase, exchanges);
+      const select = Object.fromEntries(
+        Object.entries(configuration.select).map(([name, value]) => [`select.${name}`, value]),
+      );
+      // `{out}` and `{root}` stay open: where a run lies must not change its key.
+      const open = { ...select, out: '{out}', root: '{root}' };
+      words = fillCommand(splitCommand(theCase.run), open);
+      build =
+        configuration.build === null
+          ? null
+          : fillCommand(splitCommand(configuration.build.run), { ...select, root: '{root}' });
+    } catch (error) {
+      if (!(error instanceof CommandMistake || error instanceof NotDeclared)) throw error;
+      return { result: { state: 'mistaken', why: error.message, logTail: '' }, produced: null };
+    }
+    const environment = cleanEnvironment(this.request.env, configuration.pass, configuration.set);
+    const limits = this.limits();
+    const result = await this.workshop.run({
+      case: theCase.case,
+      words,
+      build,
+      makes: configuration.build?.makes ?? [],
+      needs: configuration.needs,
+      environment,
+      inputs: theCase.inputs ?? [],
+      timeLimitSeconds: theCase['time-limit-seconds'] ?? limits.timeLimitSeconds,
+      memoryMegabytes: limits.memoryMegabytes,
+      listing: this.listing,
+      replaced: options.replaced ?? new Map(),
+      repeat: options.repeat ?? 0,
+      fresh: this.request.fresh ?? false,
+      keepFailures: options.keepFailures ?? false,
+    });
+    const produced = await producedBy({
+      manifests: this.request.manifests,
+      listing: this.listing,
+      configuration,
+      command: words,
+      build,
+      inputs: theCase.inputs ?? [],
+      environment,
+      executor: this.executor.kind,
+    });
+    return { result, produced };
+  }
+
+  /** Builds, runs and compares one case with its reference. */
+  async examine(theCase: Case, exchanges: readonly Exchange[]): Promise<CaseOutcome> {
+    const { result, produced } = await this.run(theCase, exchanges);
+    const base = { case: theCase.case, produced, logTail: result.logTail, class: null, deviations: [] } as const;
+    if (result.state !== 'ran') {
+      return {
+        ...base,
+        state: result.state,
+        why: result.why,
+        seconds: result.seconds ?? null,
+        peakMegabytes: result.peakMegabytes ?? null,
+        kept: false,
+        key: null,
+        result: null,
+        footprint: null,
+      };
+    }
+    const ran = {
+      ...base,
+      seconds: result.seconds,
+      peakMegabytes: result.peakMegabytes,
+      kept: result.kept,
+      key: result.key,
+      result: result.out,
+      footprint: await footprintOf(theCase, result.out),
+    };
+    const missing = theCase.outputs.filter((output) => !result.files.includes(output.file));
+    if (missing.length > 0) {
+      const why = `the run ended well but did not write ${missing.map((output) => output.file).join(', ')} under {out}`;
+      return { ...ran, state: 'failed', why };
+    }
+    const reference = await referencePlace(this.listing, this.manifestFolder, theCase.case, this.store.scratch);
+    if (!referenceStands(reference)) {
+      const next = `record one with "mortise rerun ${theCase.case} --record --reason TEXT"`;
+      return { ...ran, state: 'no reference', why: `no reference was recorded; ${next}` };
+    }
+    const damage = await referenceDamage(reference, theCase.case);
+    if (damage !== null) return { ...ran, state: 'no reference', why: damage };
+    const deviations = await compareCase(theCase, reference, result.out);
+    return { ...ran, state: 'compared', why: '', deviations, class: worstClass(deviations) };
+  }
+
+  private limits(): { timeLimitSeconds: number | null; memoryMegabytes: number | null } {
+    const declared = declaredExecutor(this.request);
+    return {
+      timeLimitSeconds: declared?.['time-limit-seconds'] ?? null,
+      memoryMegabytes: declared?.['memory-megabytes'] ?? null,
+    };
+  }
+}
+
+async function referenceDamage(folder: string, theCase: string): Promise<string | null> {
+  try {
+    const altered = await alteredOutputs(folder, readReferenceIn(folder, theCase)!);
+    if (altered.length === 0) return null;
+    return `its reference can't be trusted: ${altered.map(({ file, why }) => `${file} ${why}`).join('; ')}`;
+  } catch (error) {
+    if (!(error instanceof ReferenceDamaged)) throw error;
+    return error.message;
+  }
+}
+
+function declaredExecutor(request: Pick<RerunRequest, 'manifests' | 'executor'>) {
+  const declared = request.manifests.assembly?.value.executors ?? {};
+  const name = request.executor ?? (Object.keys(declared).length === 1 ? Object.keys(declared)[0]! : 'local');
+  const one = declared[name];
+  if (one === undefined && request.executor !== undefined && name !== 'local') {
+    throw new NotDeclared(`no executor "${name}" is declared in the assembly`);
+  }
+  return one;
+}
+
+function executorOf(request: Omit<RerunRequest, 'cases' | 'exchanges'>, store: Store): Executor {
+  const declared = declaredExecutor(request);
+  const atOnce = request.jobs ?? declared?.['at-once'];
+  if (declared?.kind === 'slurm') throw new NotDeclared('executors of kind slurm cannot be used yet');
+  return localExecutor(store.guard, atOnce);
+}
+
+/** Files that manifests name: they belong to the code even when git does not track them yet. */
+function declaredFiles(manifests: ManifestSet): string[] {
+  return [
+    ...[...manifests.modules.values()].flatMap(({ value }) => [
+      ...value.source.files,
+      ...(value.tables ?? []).map((table) => table.file),
+    ]),
+    ...[...manifests.cases.values()].flatMap(({ value }) => value.inputs ?? []),
+  ];
+}

@@ -1,0 +1,102 @@
+import { existsSync, readdirSync } from 'node:fs';
+import { join } from 'node:path';
+import { afterEach, beforeEach, describe, expect, it } from 'vitest';
+import { canTellReads } from '../../src/runs/reads.edge.ts';
+import { recordReference } from '../../src/runs/record-reference.ts';
+import { readReference } from '../../src/runs/reference-files.edge.ts';
+import { type RerunRequest, rerunCases } from '../../src/runs/rerun.ts';
+import { CALLER, TinyCode } from './tiny-code.ts';
+
+let code: TinyCode;
+beforeEach(() => {
+  code = new TinyCode();
+});
+afterEach(() => code.remove());
+
+const rerun = (more: Partial<RerunRequest> = {}) =>
+  rerunCases({ root: code.root, manifests: code.manifests(), env: CALLER, ...more });
+
+async function record(reason = 'first light') {
+  const [outcome] = await rerun();
+  return recordReference({
+    root: code.root,
+    case: code.manifests().cases.get('shock')!.value,
+    outcome: outcome!,
+    reason,
+    who: 'Ada Tester',
+  });
+}
+
+describe('rerunCases', () => {
+  it('builds, runs, and says that there is no reference yet', async () => {
+    const [outcome] = await rerun();
+    expect(outcome).toMatchObject({ case: 'shock', state: 'no reference', kept: false });
+    expect(outcome!.footprint).toEqual({ temperature: [101, 2001] });
+    expect(existsSync(join(outcome!.result!, 'profile.csv'))).toBe(true);
+  });
+
+  it('finds a result bit for bit equal to the reference recorded from it', async () => {
+    await record();
+    const [outcome] = await rerun();
+    expect(outcome).toMatchObject({ state: 'compared', class: 'bit-for-bit', kept: true });
+    expect(outcome!.deviations.map((one) => one.quantity)).toEqual(['pressure', 'temperature', 'peak-pressure']);
+  });
+
+  it('says which quantity moved beyond tolerance when the code changed', async () => {
+    await record();
+    code.write({ 'src/cooling.mjs': 'export function cooling(t) {\n  return 2.01 * t + 1;\n}\n' });
+    const [outcome] = await rerun();
+    expect(outcome).toMatchObject({ state: 'compared', class: 'beyond tolerance' });
+    expect(outcome!.deviations.map((one) => [one.quantity, one.class])).toEqual([
+      ['pressure', 'bit-for-bit'],
+      ['temperature', 'beyond tolerance'],
+      ['peak-pressure', 'bit-for-bit'],
+    ]);
+    expect(outcome!.produced!.changed).toEqual(['src/cooling.mjs']);
+  });
+
+  it('leaves nothing in the work tree and nothing in the scratch folder', async () => {
+    await rerun();
+    expect(code.git('status', '--porcelain', '--ignored')).toBe('');
+    expect(readdirSync(join(code.store, 'scratch'))).toEqual([]);
+  });
+
+  it('runs nothing twice while only files that nothing read have changed', async () => {
+    await rerun();
+    code.write({ 'README.md': 'Other words.\n', 'src/eos-other.mjs': 'export const pressure = (rho) => rho;\n' });
+    code.commit('Words');
+    const [outcome] = await rerun();
+    // The build copies src as a whole, so it read eos-other.mjs: that asks for a new run.
+    expect(outcome!.kept).toBe(false);
+    code.write({ 'README.md': 'Yet other words.\n' });
+    code.commit('More words');
+    // Where access times can't be trusted every file counts as read, and it runs again.
+    expect((await rerun())[0]!.kept).toBe(canTellReads(code.store));
+  });
+});
+
+describe('recordReference', () => {
+  it('tells what produced the reference, down to the content id of every source file', async () => {
+    const revision = code.git('rev-parse', 'HEAD');
+    const written = await record('agrees with the analytic solution');
+    const read = readReference(code.root, 'shock');
+    expect(read).toEqual(written);
+    expect(read).toMatchObject({
+      case: 'shock',
+      revision,
+      reason: 'agrees with the analytic solution',
+      who: 'Ada Tester',
+      modules: {
+        'equation-of-state': {
+          module: 'eos-perfect',
+          version: '1.0.0',
+          files: { 'src/eos-perfect.mjs': `swh:1:cnt:${code.git('rev-parse', 'HEAD:src/eos-perfect.mjs')}` },
+        },
+      },
+      command: ['node', 'build/main.mjs', 'eos-perfect', '{out}'],
+      footprint: { temperature: [101, 2001] },
+    });
+    expect(read!.environment.programs.node).toBe(process.version);
+    expect(read!.outputs['profile.csv']!.digest).toMatch(/^sha256:[0-9a-f]{64}$/);
+  });
+});
