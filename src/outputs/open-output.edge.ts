@@ -1,43 +1,85 @@
 /** Opens a result file of any format that Mortise reads, told by its content. */
-
+import type { CaseOutput } from '../model/manifest.ts';
 import { openBytes } from './byte-source.edge.ts';
 import type { ByteSource } from './byte-source.ts';
+import { openFits } from './fits.ts';
+import { openFortranRecords } from './fortran-records.ts';
+import { openHdf5 } from './hdf5.edge.ts';
 import { openJson } from './json-values.ts';
+import { openLog } from './log-values.ts';
+import { openNetcdfClassic } from './netcdf-classic.ts';
 import { openNpy } from './npy.ts';
+import { openNpz } from './npz.ts';
 import { type OutputFile, OutputProblem } from './output-file.ts';
+import { openRawBinary } from './raw-binary.ts';
 import { recognise } from './recognise.ts';
 import { layoutOf, openTextTable } from './text-table.ts';
 
+/** What a manifest declares about a file that says nothing about itself. */
+export type OutputHints = Pick<CaseOutput, 'patterns' | 'layout'>;
+
 /**
- * @param path absolute, or relative to the working folder
+ * @param path  absolute, or relative to the working folder
+ * @param hints patterns make it a log; a layout describes raw binary and Fortran records
  * @returns the file, open; close it after use
  * @throws {OutputProblem} `missing`, `empty`, `truncated`, `damaged` or `unsupported`, each with what was found
  */
-export async function openOutput(path: string): Promise<OutputFile> {
+export async function openOutput(path: string, hints: OutputHints = {}): Promise<OutputFile> {
   const source = openBytes(path);
   try {
-    return await openSource(source);
+    return await openSource(source, hints);
   } catch (error) {
     source.close();
     throw error;
   }
 }
 
-async function openSource(source: ByteSource): Promise<OutputFile> {
+async function openSource(source: ByteSource, hints: OutputHints): Promise<OutputFile> {
   if (source.size === 0) throw new OutputProblem('empty', source.path, 'is empty: not a single byte was written');
+  if (hints.patterns !== undefined) return openLog(source, hints.patterns)!;
   const head = new Uint8Array(Math.min(source.size, 1 << 16));
   source.readAt(0, head);
-  switch (recognise(head, source.size)) {
+  const format = recognise(head, source.size);
+  if (hints.layout !== undefined && format === 'text') return openRawBinary(source, hints.layout);
+  switch (format) {
+    case 'hdf5':
+      source.close();
+      return openHdf5(source.path, source.size);
+    case 'netcdf-classic':
+      return openNetcdfClassic(source);
     case 'npy':
       return openNpy(source);
+    case 'npz':
+      return openNpz(source);
+    case 'fits':
+      return openFits(source);
     case 'json':
       return openJson(source);
-    case 'text': {
-      const layout = layoutOf(source);
-      if (layout === null) throw new OutputProblem('unsupported', source.path, 'holds text, but no rows of numbers');
-      return openTextTable(source, layout);
-    }
+    case 'text':
+      return openText(source);
+    case 'fortran-records':
+      // A layout that accounts for every byte leaves no room for length markers.
+      if (hints.layout !== undefined && layoutFits(source, hints)) return openRawBinary(source, hints.layout);
+      return openFortranRecords(source, hints.layout?.arrays);
     default:
-      throw new OutputProblem('unsupported', source.path, 'is of a format that is not read');
+      return openRawBinary(source, hints.layout);
   }
+}
+
+function layoutFits(source: ByteSource, hints: OutputHints): boolean {
+  try {
+    openRawBinary(source, hints.layout);
+    return true;
+  } catch (error) {
+    if (error instanceof OutputProblem) return false;
+    throw error;
+  }
+}
+
+function openText(source: ByteSource): OutputFile {
+  const layout = layoutOf(source);
+  if (layout !== null) return openTextTable(source, layout);
+  const log = openLog(source);
+  if (log !== null) return log;
+  throw new OutputProblem('unsupported', source.path, 'holds text, but neither rows of numbers nor named numbers');
 }

@@ -24,6 +24,10 @@ export interface DatasetInfo {
   readonly type: string;
   /** As written in the file; absent when the file says nothing. */
   readonly unit?: string;
+  /** The value that stands for no value, as the cursor gives it (`_FillValue`, `BLANK`). */
+  readonly fill?: number;
+  /** True when nothing in the file declares the type and it was judged from the bytes. */
+  readonly guessed?: boolean;
 }
 
 /** Reads one data set from its start to its end. Complex numbers come as real part, imaginary part, one pair an element. */

@@ -57,8 +57,6 @@ export interface StoredArray {
   /** value = stored * scale + zero, as FITS and packed NetCDF store it. */
   readonly scale?: number;
   readonly zero?: number;
-  /** Stored value that stands for no value at all; read as NaN. */
-  readonly blank?: number;
 }
 
 const PIECE_BYTES = 1 << 19;
@@ -67,8 +65,7 @@ const PIECE_BYTES = 1 << 19;
 export function storedCursor(source: ByteSource, array: StoredArray): ArrayCursor {
   const type = partType(array.type);
   const bytes = BYTES_OF[type];
-  const plain =
-    array.scale === undefined && array.zero === undefined && array.blank === undefined && type === 'float64';
+  const plain = array.scale === undefined && array.zero === undefined && type === 'float64';
   const direct = plain && array.littleEndian === MACHINE_IS_LITTLE_ENDIAN;
   const runs = array.runs[Symbol.iterator]();
   let run: StoredRun | null = null;
@@ -107,6 +104,68 @@ export function storedCursor(source: ByteSource, array: StoredArray): ArrayCurso
   };
 }
 
+/** Elements at equal distances, as columns of a binary table or variables along records have them. */
+export interface StridedArray extends Omit<StoredArray, 'runs'> {
+  readonly offset: number;
+  readonly stride: number;
+  readonly rows: number;
+  /** Values side by side in each row; two for a complex element. */
+  readonly perRow: number;
+}
+
+/** Long rows are read one by one; short ones together with what lies between them, since a read costs more than the bytes. */
+export function stridedCursor(source: ByteSource, array: StridedArray): ArrayCursor {
+  const type = partType(array.type);
+  const rowBytes = array.perRow * BYTES_OF[type];
+  if (rowBytes > PIECE_BYTES / 8 || rowBytes === array.stride)
+    return storedCursor(source, { ...array, runs: runsOf(array) });
+  const rowsAtOnce = Math.max(1, Math.floor(PIECE_BYTES / array.stride));
+  const values = new Float64Array(rowsAtOnce * array.perRow);
+  const piece = new Uint8Array(rowsAtOnce * array.stride);
+  const packed = new Uint8Array(rowsAtOnce * rowBytes);
+  let row = 0;
+  let [taken, ready] = [0, 0];
+
+  const refill = (): boolean => {
+    const count = Math.min(rowsAtOnce, array.rows - row);
+    if (count <= 0) return false;
+    // The last row may end with the file, short of a whole stride.
+    const target = piece.subarray(0, (count - 1) * array.stride + rowBytes);
+    const offset = array.offset + row * array.stride;
+    whole(source, offset, target, source.readAt(offset, target));
+    for (let i = 0; i < count; i++) {
+      packed.set(piece.subarray(i * array.stride, i * array.stride + rowBytes), i * rowBytes);
+    }
+    ready = count * array.perRow;
+    taken = 0;
+    decode(packed, type, array.littleEndian, values, 0, ready);
+    scaleValues(array, values, 0, ready);
+    row += count;
+    return true;
+  };
+
+  return {
+    fill(into) {
+      let filled = 0;
+      while (filled < into.length && (taken < ready || refill())) {
+        const count = Math.min(into.length - filled, ready - taken);
+        into.set(values.subarray(taken, taken + count), filled);
+        taken += count;
+        filled += count;
+      }
+      return filled;
+    },
+    close() {},
+  };
+}
+
+function* runsOf(array: StridedArray): Generator<StoredRun> {
+  const rowBytes = array.perRow * BYTES_OF[partType(array.type)];
+  if (rowBytes === array.stride) yield { offset: array.offset, count: array.rows * array.perRow };
+  else
+    for (let row = 0; row < array.rows; row++) yield { offset: array.offset + row * array.stride, count: array.perRow };
+}
+
 function whole(source: ByteSource, offset: number, target: Uint8Array, count: number): void {
   if (count === target.length) return;
   throw new OutputProblem(
@@ -116,15 +175,10 @@ function whole(source: ByteSource, offset: number, target: Uint8Array, count: nu
   );
 }
 
-function scaleValues(array: StoredArray, into: Float64Array, from: number, count: number): void {
-  const { scale = 1, zero = 0, blank } = array;
-  if (blank !== undefined) {
-    for (let i = from; i < from + count; i++) {
-      into[i] = into[i] === blank ? Number.NaN : into[i]! * scale + zero;
-    }
-  } else if (scale !== 1 || zero !== 0) {
-    for (let i = from; i < from + count; i++) into[i] = into[i]! * scale + zero;
-  }
+function scaleValues(array: Pick<StoredArray, 'scale' | 'zero'>, into: Float64Array, from: number, count: number): void {
+  const { scale = 1, zero = 0 } = array;
+  if (scale === 1 && zero === 0) return;
+  for (let i = from; i < from + count; i++) into[i] = into[i]! * scale + zero;
 }
 
 /** Decodes `count` numbers of a real or integer type to doubles; may turn the bytes around in place. 64-bit integers beyond 2^53 are rounded to the nearest double. */

@@ -1,0 +1,206 @@
+/** HDF5 and NetCDF-4: data sets read lazily from disk, a slab at a time. */
+import type { Dataset, Group, Metadata } from 'h5wasm/node';
+import { type ArrayCursor, type DatasetInfo, type OutputFile, OutputProblem, outputFile } from './output-file.ts';
+
+/** Values in one slab: large enough for the library, small against the memory. */
+const SLAB = 1 << 19;
+/** A layer of chunks is read whole up to this many values, so that no chunk is inflated twice. */
+const LAYER = 1 << 23;
+
+/** @throws {OutputProblem} `truncated` or `damaged` when the library cannot open it */
+export async function openHdf5(path: string, size: number): Promise<OutputFile> {
+  const library = await import('h5wasm/node');
+  await library.ready;
+  let file: InstanceType<typeof library.File>;
+  try {
+    file = new library.File(path, 'r');
+    if (file.file_id < 0n) throw new Error('the library refuses it');
+  } catch (error) {
+    throw new OutputProblem(
+      'damaged',
+      path,
+      `starts as an HDF5 file but cannot be opened (${size} bytes): it was cut short, or never closed by the program that wrote it`,
+      { cause: error },
+    );
+  }
+  const found = new Map<string, Entry>();
+  gather(file, '', found, library, new Set());
+  return outputFile({
+    path,
+    format: 'hdf5',
+    datasets: [...found.values()].map((one) => one.info),
+    open: (info) => slabCursor(found.get(info.name)!, path),
+    close: () => void file.close(),
+  });
+}
+
+interface Entry {
+  readonly info: DatasetInfo;
+  readonly dataset: Dataset;
+  readonly shape: readonly number[];
+  readonly chunks: readonly number[] | null;
+  readonly complex: boolean;
+  readonly member: string | null;
+  readonly scale: number;
+  readonly zero: number;
+}
+
+function gather(
+  group: Group,
+  path: string,
+  found: Map<string, Entry>,
+  library: typeof import('h5wasm/node'),
+  seen: Set<string>,
+): void {
+  for (const key of group.keys()) {
+    const name = `${path}/${key}`;
+    // Links may run in circles; deeper than this nobody nests.
+    if (seen.has(name) || name.split('/').length > 64) continue;
+    seen.add(name);
+    let entity: ReturnType<Group['get']>;
+    try {
+      entity = group.get(key);
+    } catch {
+      continue;
+    }
+    if (entity instanceof library.Group) gather(entity, name, found, library, seen);
+    else if (entity instanceof library.Dataset) {
+      for (const entry of entriesOf(entity, name)) found.set(entry.info.name, entry);
+    }
+  }
+}
+
+function entriesOf(dataset: Dataset, name: string): Entry[] {
+  const { metadata } = dataset;
+  const shape = metadata.shape ?? [];
+  const attributes = dataset.attrs;
+  const numberOf = (key: string) => {
+    const value = attributes[key]?.value;
+    const one =
+      typeof value === 'object' && value !== null && 'length' in value ? (value as ArrayLike<number>)[0] : value;
+    return typeof one === 'number' || typeof one === 'bigint' ? Number(one) : undefined;
+  };
+  const written = attributes.units?.value ?? attributes.unit?.value;
+  const unit = typeof written === 'string' && written !== '' ? { unit: written } : {};
+  const [scale, zero] = [numberOf('scale_factor') ?? 1, numberOf('add_offset') ?? 0];
+  const stored = numberOf('_FillValue') ?? numberOf('missing_value');
+  const fill = stored === undefined ? {} : { fill: stored * scale + zero };
+  const chunks = metadata.chunks === null || metadata.chunks === undefined ? null : [...metadata.chunks];
+  const base = { dataset, shape, chunks, scale, zero };
+  const members = metadata.compound_type?.members;
+  if (members !== undefined) {
+    if (members.length === 2 && members.every((one) => plainType(one) !== null)) {
+      const [a, b] = members.map((one) => one.name.toLowerCase());
+      if ((a === 'r' && b === 'i') || (a?.startsWith('re') && b?.startsWith('im'))) {
+        const type = members[0]!.size === 4 ? 'complex64' : 'complex128';
+        return [{ ...base, complex: true, member: null, info: { name, shape, type, ...unit } }];
+      }
+    }
+    return members
+      .filter((one) => plainType(one) !== null)
+      .map((one) => ({
+        ...base,
+        complex: false,
+        member: one.name,
+        info: { name: `${name}.${one.name}`, shape, type: plainType(one)!, ...unit },
+      }));
+  }
+  const type = plainType(metadata);
+  if (type === null) return [];
+  return [{ ...base, complex: false, member: null, info: { name, shape, type, ...unit, ...fill } }];
+}
+
+/** Type class 0 is an integer, 1 a floating-point number. */
+function plainType(metadata: Pick<Metadata, 'type' | 'size' | 'signed' | 'vlen'>): string | null {
+  if (metadata.vlen === true) return null;
+  if (metadata.type === 1 && [2, 4, 8].includes(metadata.size)) return `float${metadata.size * 8}`;
+  if (metadata.type === 0 && [1, 2, 4, 8].includes(metadata.size))
+    return `${metadata.signed ? '' : 'u'}int${metadata.size * 8}`;
+  return null;
+}
+
+function slabCursor(entry: Entry, path: string): ArrayCursor {
+  const slabs = slabsOf(entry.shape, entry.chunks);
+  let slab: Float64Array | null = null;
+  let taken = 0;
+  return {
+    fill(into) {
+      let filled = 0;
+      while (filled < into.length) {
+        if (slab === null || taken === slab.length) {
+          const next = slabs.next();
+          if (next.done === true) break;
+          slab = readSlab(entry, next.value, path);
+          taken = 0;
+          continue;
+        }
+        const count = Math.min(into.length - filled, slab.length - taken);
+        into.set(slab.subarray(taken, taken + count), filled);
+        filled += count;
+        taken += count;
+      }
+      return filled;
+    },
+    close() {
+      slab = null;
+    },
+  };
+}
+
+type Slab = [number, number][];
+
+/** Cuts an array into slabs that follow one another in storage order. */
+function* slabsOf(shape: readonly number[], chunks: readonly number[] | null): Generator<Slab> {
+  if (shape.includes(0)) return;
+  if (shape.length === 0) {
+    yield [];
+    return;
+  }
+  // The dimension along which slabs are cut: everything within one step of it fits into a slab.
+  let cut = 0;
+  let inner = shape.slice(1).reduce((product, extent) => product * extent, 1);
+  while (cut < shape.length - 1 && inner > SLAB) inner /= shape[++cut]!;
+  const layer = chunks?.[cut] ?? 1;
+  let step = Math.max(1, Math.floor(SLAB / inner));
+  if (layer > step && layer * inner <= LAYER) step = layer;
+  else if (step > layer) step -= step % layer;
+  yield* within([], 0);
+
+  function* within(fixed: Slab, dimension: number): Generator<Slab> {
+    if (dimension < cut) {
+      for (let i = 0; i < shape[dimension]!; i++) yield* within([...fixed, [i, i + 1]], dimension + 1);
+      return;
+    }
+    const rest = shape.slice(cut + 1).map((extent): [number, number] => [0, extent]);
+    for (let i = 0; i < shape[cut]!; i += step) yield [...fixed, [i, Math.min(i + step, shape[cut]!)], ...rest];
+  }
+}
+
+function readSlab(entry: Entry, slab: Slab, path: string): Float64Array {
+  let raw: unknown;
+  try {
+    raw = slab.length === 0 ? entry.dataset.value : entry.dataset.slice(slab);
+  } catch (error) {
+    const says = `has a data set ${entry.info.name} that cannot be read: ${(error as Error).message}`;
+    throw new OutputProblem('damaged', path, says, { cause: error });
+  }
+  if (raw === null || raw === undefined) {
+    throw new OutputProblem('damaged', path, `has a data set ${entry.info.name} that cannot be read`);
+  }
+  const values = toDoubles(raw, entry);
+  if (entry.scale !== 1 || entry.zero !== 0) {
+    for (let i = 0; i < values.length; i++) values[i] = values[i]! * entry.scale + entry.zero;
+  }
+  return values;
+}
+
+function toDoubles(raw: unknown, entry: Entry): Float64Array {
+  if (raw instanceof Float64Array) return raw;
+  if (typeof raw === 'number' || typeof raw === 'bigint') return Float64Array.of(Number(raw));
+  if (raw instanceof BigInt64Array || raw instanceof BigUint64Array) return Float64Array.from(raw, Number);
+  if (ArrayBuffer.isView(raw)) return new Float64Array(raw as unknown as ArrayLike<number>);
+  const rows = raw as unknown[][];
+  if (entry.complex) return Float64Array.from(rows.flat() as number[], Number);
+  const index = entry.dataset.metadata.compound_type!.members.findIndex((one) => one.name === entry.member);
+  return Float64Array.from(rows, (row) => Number(row[index]));
+}
