@@ -47,8 +47,7 @@ export type FitKind =
   | 'argument-type'
   | 'argument-intent'
   | 'table-range'
-  | 'claim-contradicts'
-  | 'campaign-domain';
+  | 'claim-contradicts';
 export type DriftKind = never;
 export type ComparisonKind = never;
 export type RunKind = never;
@@ -73,5 +72,10 @@ export type AuditKind =
   | 'never-validated'
   | 'platform-differs'
   | 'campaign-over-allocation'
-  | 'notice-touches';
+  | 'campaign-cost-unknown'
+  | 'notice-touches'
+  | 'case-not-runnable'
+  | 'case-failed'
+  | 'result-beyond-tolerance'
+  | 'result-not-comparable';
 export type ReviewKind = never;

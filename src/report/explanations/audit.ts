@@ -95,11 +95,48 @@ export const auditExplanations = {
     accept: 'When part of the campaign is paid for elsewhere; say where.',
     example: '41 million core-hours asked, 40 million granted.',
   },
+  'campaign-cost-unknown': {
+    means:
+      'Core-hours were granted, and nothing says what one zone and one step cost, so nobody can tell whether they suffice.',
+    arises: 'The campaign declares an allocation without a cost, or names a case as measure that was not run yet.',
+    mend: 'Declare core-seconds-per-zone-step under "cost", or name a case with its zones and steps and run it.',
+    accept: 'While the cost is being measured.',
+    example: 'allocation: {core-hours: 2e6} without "cost:".',
+  },
   'notice-touches': {
     means: 'A module version in use has a recorded defect.',
     arises: 'A notice in the register names this version or this commit.',
     mend: 'Move to a version in which the defect is mended, or show that the campaign does not meet its conditions.',
     accept: 'When the conditions of the notice are not met by this campaign; say which and why.',
     example: 'eos-ionising 2.0.3 to 2.1.0 use a wrong statistical weight above 1e4 K.',
+  },
+  'case-not-runnable': {
+    means: 'A case could not be run here, so nothing is known of its results on this machine.',
+    arises: 'A module needs a program that is not installed, such as a compiler.',
+    mend: 'Install what is missing, or audit on a machine that has it.',
+    accept: 'When the module of that case is not part of the campaign.',
+    example: 'dust-heating needs gfortran, which is not found.',
+  },
+  'case-failed': {
+    means: 'A case could not be built or did not run to its end: the code as it stands does not do what it did.',
+    arises: 'A change broke the build, an input is missing, the run crashed, or it ran out of time or memory.',
+    mend: 'Read the last lines of its log, mend the cause, run it again.',
+    accept: 'Hardly ever: take the case out, with a reason, if it has no use any more.',
+    example: 'cloud-shock ended with exit status 1 after "negative internal energy in zone 212".',
+  },
+  'result-beyond-tolerance': {
+    means:
+      'A physical result moved by more than it may. Either the code is wrong now, or it was wrong before, or the tolerance is.',
+    arises: 'A module, constant, table, convention, compiler or machine changed.',
+    mend: 'Find the step with "mortise trace CASE QUANTITY GOOD..BAD". Undo it, or record a new reference with the reason why the new result is right.',
+    accept: 'When the shift is understood and of no consequence for this campaign; say how it is known.',
+    example: 'temperature of cloud-shock is 37 times its tolerance from the reference, worst at the front.',
+  },
+  'result-not-comparable': {
+    means: 'A result can not be set against its reference, so nothing says that it is right.',
+    arises: 'An output is missing or damaged, holds NaN, changed its shape, names or units, or the grid is another.',
+    mend: 'Bring back the form of the output, or tell in the case how to align it; record a new reference only when the new form is right.',
+    accept: 'When the quantity is no longer part of the code: take it out of the case.',
+    example: 'profile.csv has no column "temperature".',
   },
 } satisfies Record<AuditKind, Explanation>;
