@@ -9,11 +9,12 @@ import type { ManifestDeclaration } from './declaration.ts';
 import { anyOf, problemFinding, quoted } from './problem.ts';
 import type { ManifestSort } from './shapes.ts';
 
-type IsUnsound = (sort: ManifestSort, name: string) => boolean;
+/** Names that manifests which are not sound would declare: whoever refers to them is not to blame. */
+type UnsoundNames = (sort: ManifestSort) => readonly string[];
 type Path = readonly (string | number)[];
 
-export function crossReferences(set: ManifestSet, isUnsound: IsUnsound): Finding[] {
-  const check = new Check(set, isUnsound);
+export function crossReferences(set: ManifestSet, unsoundNames: UnsoundNames): Finding[] {
+  const check = new Check(set, unsoundNames);
   if (set.assembly !== null) check.assembly(set.assembly);
   for (const module of set.modules.values()) check.module(module);
   for (const one of set.cases.values()) check.case(one);
@@ -23,11 +24,11 @@ export function crossReferences(set: ManifestSet, isUnsound: IsUnsound): Finding
 class Check {
   readonly findings: Finding[] = [];
   private readonly set: ManifestSet;
-  private readonly isUnsound: IsUnsound;
+  private readonly unsoundNames: UnsoundNames;
 
-  constructor(set: ManifestSet, isUnsound: IsUnsound) {
+  constructor(set: ManifestSet, unsoundNames: UnsoundNames) {
     this.set = set;
-    this.isUnsound = isUnsound;
+    this.unsoundNames = unsoundNames;
   }
 
   assembly(declaration: Declaration<Assembly>): void {
@@ -44,9 +45,19 @@ class Check {
     }
   }
 
+  private isUnsound(sort: ManifestSort, name: string): boolean {
+    return this.unsoundNames(sort).includes(name);
+  }
+
   private pluggedModule(declaration: Declaration<unknown>, path: Path, component: string, name: string): void {
     if (this.isUnsound('module', name)) return;
-    if (!this.known(declaration, path, 'value', 'module', name, this.set.modules.keys())) return;
+    if (
+      !this.known(declaration, path, 'value', 'module', name, [
+        ...this.set.modules.keys(),
+        ...this.unsoundNames('module'),
+      ])
+    )
+      return;
     const module = this.set.modules.get(name)!;
     if (module.value.component === component) return;
     this.add(declaration, path, 'value', {
@@ -223,6 +234,7 @@ class Check {
     );
     for (const [, name = ''] of command.matchAll(/\{([^{}]*)\}/g)) {
       if (['out', 'root'].includes(name) || selects.has(name)) continue;
+      if (name.startsWith('select.') && this.unsoundNames('module').length > 0) continue;
       const meant = nearest(name, ['out', 'root', ...selects]);
       this.add(declaration, path, 'value', {
         kind: 'manifest-unknown-name',

@@ -1,4 +1,5 @@
 /** A sound manifest with the places of its parts. */
+import type { Excerpt } from '../model/finding.ts';
 import type { Declaration } from '../model/manifest.ts';
 import type { Place } from '../model/place.ts';
 import type { ManifestText, Span } from './manifest-text.ts';
@@ -25,6 +26,10 @@ export class ManifestDeclaration<T> implements Declaration<T> {
 
   lineText(line: number): string {
     return this.source.lineText(line);
+  }
+
+  excerptOf(path: readonly (string | number)[], part: 'key' | 'value' = 'value'): Excerpt {
+    return this.source.excerpt(this.spanOf(path, part));
   }
 
   /** Where a part stands; the nearest part that exists when there is no such one. */

@@ -84,8 +84,18 @@ function firstBadByte(bytes: Uint8Array): number | null {
       if (decodes(bytes.subarray(0, middle))) good = middle;
       else bad = middle;
     }
-    return good;
+    return startOfCharacter(bytes, good);
   }
+}
+
+/** A lead byte whose followers never come is itself the byte that is wrong. */
+function startOfCharacter(bytes: Uint8Array, offset: number): number {
+  for (let back = 1; back <= 3; back++) {
+    const byte = bytes[offset - back];
+    if (byte === undefined || byte < 0x80) return offset;
+    if (byte >= 0xc0) return back < (byte >= 0xf0 ? 4 : byte >= 0xe0 ? 3 : 2) ? offset - back : offset;
+  }
+  return offset;
 }
 
 /** True when every byte is sound, an unfinished character at the end excepted. */

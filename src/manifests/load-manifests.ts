@@ -187,8 +187,9 @@ class Loader {
       cases: sound.case as ReadonlyMap<string, Declaration<Case>>,
       accepted: (sound.accepted.get('accepted') as Declaration<Accepted> | undefined) ?? null,
     };
-    const isUnsound = (sort: ManifestSort, name: string) => this.unsound.has(`${sort} ${name}`);
-    return { set, findings: sortFindings([...this.findings, ...crossReferences(set, isUnsound)]) };
+    const unsoundNames = (sort: ManifestSort) =>
+      [...this.unsound].filter((one) => one.startsWith(`${sort} `)).map((one) => one.slice(sort.length + 1));
+    return { set, findings: sortFindings([...this.findings, ...crossReferences(set, unsoundNames)]) };
   }
 }
 

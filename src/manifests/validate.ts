@@ -52,16 +52,20 @@ function checkRecord(node: TreeNode, shape: RecordShape, where: string, validati
   if (node.is !== 'map')
     return wrongSort(node, where, `${shape.title}, a map with the keys ${keysText(shape)}`, validation);
   const value: Record<string, unknown> = {};
+  const meant = new Set<string | null>();
   for (const [name, entry] of node.entries) {
     const key = Object.hasOwn(shape.keys, name) ? shape.keys[name] : undefined;
     if (key === undefined) {
-      unknownKey(name, entry.key, shape, node, validation);
+      meant.add(unknownKey(name, entry.key, shape, node, validation));
       continue;
     }
     const checked = check(entry.node, key.shape, name, validation);
     if (checked !== FAILED) value[name] = checked;
   }
-  const missing = Object.keys(shape.keys).filter((name) => shape.keys[name]!.required && !node.entries.has(name));
+  // A required key that is only misspelt was already named in the suggestion for the key that is not known.
+  const missing = Object.keys(shape.keys).filter(
+    (name) => shape.keys[name]!.required && !node.entries.has(name) && !meant.has(name),
+  );
   for (const name of missing) {
     validation.problems.push({
       kind: 'manifest-invalid',
@@ -73,7 +77,13 @@ function checkRecord(node: TreeNode, shape: RecordShape, where: string, validati
   return value;
 }
 
-function unknownKey(name: string, span: Span, shape: RecordShape, node: MapNode, validation: Validation): void {
+function unknownKey(
+  name: string,
+  span: Span,
+  shape: RecordShape,
+  node: MapNode,
+  validation: Validation,
+): string | null {
   const free = Object.keys(shape.keys).filter((key) => !node.entries.has(key));
   const meant = nearest(name, free);
   validation.problems.push({
@@ -90,6 +100,7 @@ function unknownKey(name: string, span: Span, shape: RecordShape, node: MapNode,
           ? 'remove it.'
           : `remove it, or write one of ${anyOf(free)}.`,
   });
+  return meant;
 }
 
 function checkMap(node: TreeNode, shape: Shape & { is: 'map' }, where: string, validation: Validation): Checked {

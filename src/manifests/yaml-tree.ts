@@ -42,9 +42,12 @@ export function readYamlTree(source: ManifestText): YamlTree {
   const composed = compose(source.text);
   if ('problem' in composed) return { root: null, problems: [composed.problem] };
   const { document } = composed;
-  const problems: Problem[] = document.errors.map((error) =>
-    syntaxProblem(error.code, error.message, spanOf(error.pos), source),
-  );
+  const problems: Problem[] = [];
+  for (const error of document.errors) {
+    const problem = syntaxProblem(error.code, error.message, spanOf(error.pos), source);
+    // Brackets that stay open are told by each of them at one and the same place.
+    if (problems.at(-1)?.says !== problem.says) problems.push(problem);
+  }
   if (document.directives?.yaml.explicit === true && document.directives.yaml.version === '1.1') {
     const at = source.text.indexOf('%YAML');
     problems.push({
@@ -163,7 +166,9 @@ class TreeBuilder {
       const entries = new Map<string, { key: Span; node: TreeNode }>();
       for (const pair of node.items) {
         const key = this.key(pair.key as ParsedNode | null, span);
-        const value = pair.value === null ? nothing(key.span) : this.build(pair.value as ParsedNode);
+        const built = pair.value === null ? nothing(key.span) : this.build(pair.value as ParsedNode);
+        // A value that is not there is pointed at by its key.
+        const value = built.is === 'scalar' && built.value === null && built.written === '' ? nothing(key.span) : built;
         if (key.name === null) continue;
         const before = entries.get(key.name);
         if (before === undefined) entries.set(key.name, { key: key.span, node: value });
