@@ -104,7 +104,7 @@ export function campaignFindings(assembly: Declaration<Assembly>, measured?: Mea
         kind: 'campaign-over-allocation',
         gravity: 'stop',
         place: assembly.placeOf(path),
-        says: `The campaign asks for ${asks} of ${demand.what === 'core-hours' ? 'computing' : demand.what}; ${has} were granted.`,
+        says: `The campaign asks for ${asks}${demand.what === 'core-hours' ? '' : ` of ${demand.what}`}; ${has} were granted.`,
         evidence: [
           { says: 'the line meant', excerpt: assembly.excerptOf(path) },
           ...reckoning(campaign, size, demand.what),
