@@ -10,7 +10,8 @@ const LAYER = 1 << 23;
 /** @throws {OutputProblem} `truncated` or `damaged` when the library cannot open it */
 export async function openHdf5(path: string, size: number): Promise<OutputFile> {
   const library = await import('h5wasm/node');
-  await library.ready;
+  // Errors are thrown, and not printed on the user's terminal.
+  (await library.ready).activate_throwing_error_handler();
   let file: InstanceType<typeof library.File>;
   try {
     file = new library.File(path, 'r');

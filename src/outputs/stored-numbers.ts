@@ -175,7 +175,12 @@ function whole(source: ByteSource, offset: number, target: Uint8Array, count: nu
   );
 }
 
-function scaleValues(array: Pick<StoredArray, 'scale' | 'zero'>, into: Float64Array, from: number, count: number): void {
+function scaleValues(
+  array: Pick<StoredArray, 'scale' | 'zero'>,
+  into: Float64Array,
+  from: number,
+  count: number,
+): void {
   const { scale = 1, zero = 0 } = array;
   if (scale === 1 && zero === 0) return;
   for (let i = from; i < from + count; i++) into[i] = into[i]! * scale + zero;

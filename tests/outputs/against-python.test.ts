@@ -8,7 +8,7 @@ import { openOutput } from '../../src/outputs/open-output.edge.ts';
 import { describeWith, PYTHON } from '../support/tools.ts';
 
 /** Writes each array under a name, and what the writing library reads back to `expected/`, as raw doubles. */
-const WRITE = String.raw`
+const WRITE = `
 import os, sys, json
 import numpy as np
 os.chdir(sys.argv[1]); os.mkdir('expected')
@@ -28,7 +28,7 @@ field = rng.standard_normal((37, 5, 11)) * 10.0 ** rng.integers(-30, 30, (37, 5,
 `;
 
 const PARTS: Readonly<Record<string, string>> = {
-  numpy: String.raw`
+  numpy: `
 for kind in ['<f8', '>f8', '<f4', '>f4', '<f2', 'i1', 'u1', '<i2', '>i4', '<u4', '<i8', '>u8', '<c16', '>c8']:
     if kind[-2] in 'iu': values = rng.integers(0, 100, (6, 7)).astype(kind)
     elif 'c' in kind: values = (rng.standard_normal((6, 7)) + 1j * rng.standard_normal((6, 7))).astype(kind)
@@ -41,7 +41,7 @@ np.savez('plain.npz', density=field, words=np.array(['a', 'b'])); expect('plain.
 np.savez_compressed('small.npz', density=field, t=np.arange(4)); expect('small.npz', 'density', field); expect('small.npz', 't', np.arange(4))
 field.tofile('raw.bin')
 `,
-  h5py: String.raw`
+  h5py: `
 import h5py
 with h5py.File('a.h5', 'w') as f:
     f['plain'] = field
@@ -63,7 +63,7 @@ with h5py.File('a.h5') as f:
     expect('a.h5', '/zones.mass', f['zones']['mass'])
     expect('a.h5', 'zones.zone', f['zones']['zone'])
 `,
-  netCDF4: String.raw`
+  netCDF4: `
 import netCDF4
 for form in ['NETCDF3_CLASSIC', 'NETCDF3_64BIT_OFFSET', 'NETCDF3_64BIT_DATA', 'NETCDF4']:
     name = form + '.nc'
@@ -93,7 +93,7 @@ with netCDF4.Dataset('one.nc', 'w', format='NETCDF3_CLASSIC') as d:
     d.createVariable('only', 'i2', ('time',))[:] = np.arange(13)
 expect('one.nc', 'only', np.arange(13))
 `,
-  astropy: String.raw`
+  astropy: `
 from astropy.io import fits
 from astropy.table import Table
 image = fits.ImageHDU(field.astype('>f4'), name='DENSITY'); image.header['BUNIT'] = 'g/cm3'
