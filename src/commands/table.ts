@@ -1,4 +1,6 @@
 /** The commands by name, each loaded only when it is asked for. One line a command, in the order of `mortise help`. */
 import type { Command } from './command.ts';
 
-export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command }>>> = {};
+export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command }>>> = {
+  compare: () => import('./compare.ts'),
+};

@@ -1,5 +1,5 @@
 /** The bytes of a file on disk. */
-import { closeSync, fstatSync, openSync, readSync } from 'node:fs';
+import { closeSync, existsSync, fstatSync, openSync, readSync } from 'node:fs';
 import type { ByteSource } from './byte-source.ts';
 import { OutputProblem } from './output-file.ts';
 
@@ -36,4 +36,8 @@ export function openBytes(path: string): ByteSource {
       open = false;
     },
   };
+}
+
+export function exists(path: string): boolean {
+  return existsSync(path);
 }

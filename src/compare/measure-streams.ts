@@ -1,0 +1,133 @@
+/** Two data sets read side by side, a few blocks at a time, and measured as they come: memory does not grow with their length. */
+import type { ArrayCursor, TableCursor } from '../outputs/output-file.ts';
+import { BLOCK, type MeasureKernel, type Weighing } from './measure-block.ts';
+import { type Measured, Measuring } from './measuring.ts';
+
+export interface Streamed {
+  readonly measured: Measured;
+  /** Elements of either side; unequal when one ended before the other. */
+  readonly referenceCount: number;
+  readonly resultCount: number;
+  /** Elements that have no value on one side only. */
+  readonly absentOnOneSide: number;
+}
+
+/** The values that stand for no value on either side. */
+export interface Fills {
+  readonly reference?: number | undefined;
+  readonly result?: number | undefined;
+}
+
+/** Pauses now and then, so that an interrupt is heard. */
+const PAUSE_ELEMENTS = 1 << 23;
+
+/** @throws what the cursors throw, and the signal's reason when it is aborted */
+export async function measureStreams(
+  reference: ArrayCursor,
+  result: ArrayCursor,
+  weighing: Weighing,
+  kernel: MeasureKernel,
+  options: { readonly fills?: Fills; readonly resultFactor?: number; readonly signal?: AbortSignal } = {},
+): Promise<Streamed> {
+  const measuring = new Measuring(kernel, weighing);
+  const { fills = {}, resultFactor = 1 } = options;
+  let [referenceCount, resultCount, absentOnOneSide, sincePause] = [0, 0, 0, 0];
+  for (;;) {
+    const a = reference.fill(kernel.reference);
+    const b = result.fill(kernel.result);
+    const both = Math.min(a, b);
+    absentOnOneSide += settleAbsent(kernel.reference, kernel.result, both, fills);
+    if (resultFactor !== 1) for (let i = 0; i < both; i++) kernel.result[i] = kernel.result[i]! * resultFactor;
+    measuring.take(both);
+    referenceCount += a;
+    resultCount += b;
+    if (a !== b || a < kernel.reference.length) break;
+    sincePause += a;
+    if (sincePause >= PAUSE_ELEMENTS) {
+      sincePause = 0;
+      await pause(options.signal);
+    }
+  }
+  referenceCount += rest(reference, referenceCount, resultCount, kernel.reference);
+  resultCount += rest(result, resultCount, referenceCount, kernel.result);
+  return { measured: measuring.finish(), referenceCount, resultCount, absentOnOneSide };
+}
+
+/** All columns of two tables in one pass over either. */
+export async function measureTables(
+  reference: TableCursor,
+  result: TableCursor,
+  weighings: readonly Weighing[],
+  kernel: MeasureKernel,
+  signal?: AbortSignal,
+): Promise<readonly Streamed[]> {
+  const columns = weighings.map((weighing) => ({
+    measuring: new Measuring(kernel, weighing),
+    reference: new Float64Array(BLOCK),
+    result: new Float64Array(BLOCK),
+  }));
+  const references = columns.map((column) => column.reference);
+  const results = columns.map((column) => column.result);
+  let [referenceCount, resultCount, sincePause] = [0, 0, 0];
+  for (;;) {
+    const a = reference.fill(references);
+    const b = result.fill(results);
+    const both = Math.min(a, b);
+    for (const column of columns) {
+      kernel.reference.set(column.reference.subarray(0, both));
+      kernel.result.set(column.result.subarray(0, both));
+      column.measuring.take(both);
+    }
+    referenceCount += a;
+    resultCount += b;
+    if (a !== b || a < BLOCK) break;
+    sincePause += a * columns.length;
+    if (sincePause >= PAUSE_ELEMENTS) {
+      sincePause = 0;
+      await pause(signal);
+    }
+  }
+  for (let more = BLOCK; more === BLOCK && referenceCount > resultCount; )
+    referenceCount += more = reference.fill(references);
+  for (let more = BLOCK; more === BLOCK && resultCount > referenceCount; ) resultCount += more = result.fill(results);
+  return columns.map(({ measuring }) => ({
+    measured: measuring.finish(),
+    referenceCount,
+    resultCount,
+    absentOnOneSide: 0,
+  }));
+}
+
+/**
+ * Elements without a value on both sides agree: both become 0. Where only one side has none, the result becomes NaN, which
+ * never passes.
+ *
+ * @returns how many have a value on one side only
+ */
+export function settleAbsent(reference: Float64Array, result: Float64Array, count: number, fills: Fills): number {
+  if (fills.reference === undefined && fills.result === undefined) return 0;
+  const isFill = (value: number, fill: number | undefined) =>
+    value === fill || (fill !== undefined && Number.isNaN(fill) && Number.isNaN(value));
+  let oneSided = 0;
+  for (let i = 0; i < count; i++) {
+    const a = isFill(reference[i]!, fills.reference);
+    const b = isFill(result[i]!, fills.result);
+    if (!a && !b) continue;
+    if (a !== b) oneSided++;
+    if (a) reference[i] = 0;
+    result[i] = a && b ? 0 : Number.NaN;
+  }
+  return oneSided;
+}
+
+async function pause(signal: AbortSignal | undefined): Promise<void> {
+  await new Promise((resolve) => setImmediate(resolve));
+  signal?.throwIfAborted();
+}
+
+/** How many more elements the longer side has, for the message. */
+function rest(cursor: ArrayCursor, own: number, other: number, buffer: Float64Array): number {
+  let more = 0;
+  for (let count = buffer.length; count === buffer.length && own > other; more += count) count = cursor.fill(buffer);
+  return more;
+}
