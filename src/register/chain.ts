@@ -44,72 +44,117 @@ export interface RegisterState {
 
 /** Puts records together. Altered records still count, so that nothing vanishes from sight; the findings say what to make of them. */
 export function registerState(read: readonly ReadRecord[]): RegisterState {
-  const findings: Finding[] = read.flatMap((one) => one.findings);
-  const bySeal = new Map<string, string>();
-  const about = new Map<string, { file: string; record: RegisterRecord }[]>();
-  const named = new Set<string>();
+  const about = new Map<string, Kept[]>();
+  const seen = new Set<string>();
   for (const { file, record } of read) {
-    if (record === undefined) continue;
-    const other = bySeal.get(record.seal);
+    if (record === undefined || seen.has(record.seal)) continue;
+    seen.add(record.seal);
+    const all = about.get(record.about);
+    if (all === undefined) about.set(record.about, [{ file, record }]);
+    else all.push({ file, record });
+  }
+  const entries = new Map<string, StandingEntry>();
+  const notices = new Map<string, StandingNotice>();
+  for (const [id, records] of about) {
+    records.sort((a, b) => compare(a.record.written, b.record.written) || compare(a.record.seal, b.record.seal));
+    const entry = standingEntry(id, records);
+    if (entry !== null) entries.set(id, entry);
+    const notice = standingNotice(id, records);
+    if (notice !== null) notices.set(id, notice);
+  }
+  const chained = chain(read.flatMap((one) => headOf(one) ?? []));
+  return {
+    entries,
+    notices,
+    tips: chained.tips,
+    findings: [...read.flatMap((one) => one.findings), ...chained.findings],
+  };
+}
+
+/** What of a record the chain needs: little enough to hold a hundred thousand of them. */
+export interface RecordHead {
+  readonly file: string;
+  readonly kind: RegisterRecord['kind'];
+  readonly about: string;
+  readonly seal: Seal;
+  /** Seals that it follows or replaces. */
+  readonly names: readonly Seal[];
+  readonly replaces?: Seal;
+  /** The name that its content gives it. */
+  readonly belongs: string;
+}
+
+export function headOf({ file, record }: ReadRecord): RecordHead | null {
+  if (record === undefined) return null;
+  const { kind, about, seal, follows, replaces } = record;
+  const names = replaces === undefined ? follows : [...follows, replaces];
+  return { file, kind, about, seal, names, ...(replaces === undefined ? {} : { replaces }), belongs: fileOf(record) };
+}
+
+/** What is missing, doubled, misnamed or forked among all records, and the seals that none follows. */
+export function chain(heads: readonly RecordHead[]): { readonly findings: Finding[]; readonly tips: Seal[] } {
+  const findings: Finding[] = [];
+  const fileBySeal = new Map<string, string>();
+  const amendments = new Map<string, RecordHead[]>();
+  for (const head of heads) {
+    const other = fileBySeal.get(head.seal);
     if (other !== undefined) {
       findings.push(
         finding(
           'record-doubled',
           'caution',
-          file,
+          head.file,
           `This record stands in ${other} too.`,
           'remove one of the two files.',
         ),
       );
       continue;
     }
-    bySeal.set(record.seal, file);
-    const all = about.get(record.about);
-    if (all === undefined) about.set(record.about, [{ file, record }]);
-    else all.push({ file, record });
-    for (const one of record.follows) named.add(one);
-    if (record.replaces !== undefined) named.add(record.replaces);
-    if (!file.endsWith(fileOf(record))) {
+    fileBySeal.set(head.seal, head.file);
+    if (!head.file.endsWith(head.belongs)) {
       findings.push(
         finding(
           'record-renamed',
           'caution',
-          file,
-          `This record belongs in ${fileOf(record)}.`,
+          head.file,
+          `This record belongs in ${head.belongs}.`,
           'give the file its name back.',
         ),
       );
     }
+    if (head.kind === 'amendment' && head.replaces !== undefined) {
+      amendments.set(head.replaces, [...(amendments.get(head.replaces) ?? []), head]);
+    }
   }
-  for (const { file, record } of read) {
-    if (record === undefined) continue;
-    const lost = [...record.follows, ...(record.replaces === undefined ? [] : [record.replaces])].filter(
-      (one) => !bySeal.has(one),
-    );
-    for (const one of new Set(lost)) {
+  const named = new Set<string>();
+  for (const head of heads) {
+    for (const one of new Set(head.names)) {
+      named.add(one);
+      if (fileBySeal.has(one)) continue;
       findings.push(
         finding(
           'record-missing',
           'stop',
-          file,
+          head.file,
           `This record names the record ${one.slice(0, 19)}, which is not in the register.`,
           'bring the missing record back from git history or from another clone.',
         ),
       );
     }
   }
-  const entries = new Map<string, StandingEntry>();
-  const notices = new Map<string, StandingNotice>();
-  for (const [id, records] of about) {
-    records.sort((a, b) => compare(a.record.written, b.record.written) || compare(a.record.seal, b.record.seal));
-    findings.push(...forks(id, records));
-    const entry = standingEntry(id, records);
-    if (entry !== null) entries.set(id, entry);
-    const notice = standingNotice(id, records);
-    if (notice !== null) notices.set(id, notice);
+  for (const several of amendments.values()) {
+    if (several.length < 2) continue;
+    findings.push(
+      finding(
+        'record-forked',
+        'caution',
+        several.at(-1)!.file,
+        `${several[0]!.about} was amended ${several.length} times from the same state, on branches that were merged since.`,
+        'amend it once more, with what is right of both.',
+      ),
+    );
   }
-  const tips = [...bySeal.keys()].filter((one) => !named.has(one)).sort() as Seal[];
-  return { entries, notices, tips, findings };
+  return { findings, tips: ([...fileBySeal.keys()] as Seal[]).filter((one) => !named.has(one)).sort() };
 }
 
 type Kept = { readonly file: string; readonly record: RegisterRecord };
@@ -149,25 +194,6 @@ function standingNotice(id: string, records: readonly Kept[]): StandingNotice | 
 function lastUnreplaced(versions: readonly Kept[]): Kept | undefined {
   const replaced = new Set(versions.map(({ record }) => record.replaces));
   return versions.findLast(({ record }) => !replaced.has(record.seal)) ?? versions.at(-1);
-}
-
-function forks(id: string, records: readonly Kept[]): Finding[] {
-  const byReplaced = new Map<string, Kept[]>();
-  for (const one of records) {
-    if (one.record.kind !== 'amendment' || one.record.replaces === undefined) continue;
-    byReplaced.set(one.record.replaces, [...(byReplaced.get(one.record.replaces) ?? []), one]);
-  }
-  return [...byReplaced.values()]
-    .filter((several) => several.length > 1)
-    .map((several) =>
-      finding(
-        'record-forked',
-        'caution',
-        several.at(-1)!.file,
-        `${id} was amended ${several.length} times from the same state, on branches that were merged since.`,
-        'amend it once more, with what is right of both.',
-      ),
-    );
 }
 
 function finding(

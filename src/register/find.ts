@@ -72,13 +72,15 @@ export function resultText(result: Result): string {
   return [...(title === undefined ? [] : [title]), ...parts.map(([key, value]) => `${key} ${value}`)].join(', ');
 }
 
-/** Every word of an entry, for free text. */
+/** The words of an entry, for free text; ids and digests are asked for by content, not by word. */
 export function searchText(entry: StandingEntry): string {
   return `${entry.id} ${standingText(entry)} ${words(entry.content)}`;
 }
 
+const DIGITS = /^(?:swh:1:|sha256:)|^[0-9a-f]{40,64}$/;
+
 function words(value: unknown): string {
-  if (value === null || typeof value !== 'object') return String(value);
+  if (value === null || typeof value !== 'object') return DIGITS.test(String(value)) ? '' : String(value);
   return Object.entries(value)
     .map(([key, part]) => (Array.isArray(value) ? words(part) : `${key} ${words(part)}`))
     .join(' ');
@@ -108,7 +110,8 @@ export function bare(id: string): string {
   return id.toLowerCase().replace(/^.*:/, '');
 }
 
-function holdsWords(text: string, asked: string): boolean {
+/** Every word asked for stands somewhere in the text. */
+export function holdsWords(text: string, asked: string): boolean {
   const low = text.toLowerCase();
   return asked
     .toLowerCase()
@@ -127,10 +130,13 @@ function beginsWords(text: string, asked: string): boolean {
 }
 
 function hasPerson(entry: StandingEntry, asked: string): boolean {
-  const orcid = canonicalOrcid(asked);
-  return entry.content.people.some((one) =>
-    orcid === null ? holdsWords(one.name, asked) : one.orcid !== undefined && canonicalOrcid(one.orcid) === orcid,
-  );
+  return entry.content.people.some((one) => isPerson([one.name, one.orcid ?? null], asked));
+}
+
+/** By part of a name, or by ORCID iD. */
+export function isPerson([name, orcid]: readonly [string, string | null], asked: string): boolean {
+  const id = canonicalOrcid(asked);
+  return id === null ? holdsWords(name, asked) : orcid !== null && canonicalOrcid(orcid) === id;
 }
 
 function isResult(result: Result, asked: string): boolean {

@@ -9,9 +9,22 @@ import { createRequire } from 'node:module';
 import { join, resolve } from 'node:path';
 import type Database from 'better-sqlite3';
 import { cacheFolder } from '../sources/cache-folder.edge.ts';
-import { type RegisterState, registerState, type StandingEntry } from './chain.ts';
-import { answers, bare, contentIds, dayOf, type Query, resultText, searchText, standingText } from './find.ts';
-import { type ReadRecord, readRecord } from './read-record.ts';
+import { headOf, type RegisterState, registerState, type StandingEntry } from './chain.ts';
+import {
+  answers,
+  bare,
+  contentIds,
+  dayOf,
+  holdsWords,
+  inRange,
+  isPerson,
+  type Query,
+  resultText,
+  searchText,
+  standingText,
+} from './find.ts';
+import { readDoi } from './identifiers.ts';
+import { readRecord } from './read-record.ts';
 import type { Seal } from './record.ts';
 import { listRecordFiles, readRecordBytes } from './register-files.edge.ts';
 
@@ -35,7 +48,7 @@ export interface RegisterIndex {
   close(): void;
 }
 
-const FORM = 1;
+const FORM = 3;
 
 /** Opens the index of a register's folder, bringing it up to date first. `say` is told of progress when that takes a while. */
 export function openRegisterIndex(
@@ -69,11 +82,7 @@ export function openRegisterIndex(
 
 /** Every record of the folder, read and put together, without an index. */
 export function readRegister(folder: string): RegisterState {
-  return registerState(readAll(folder, listRecordFiles(folder)));
-}
-
-function readAll(folder: string, files: readonly string[]): ReadRecord[] {
-  return files.map((file) => readRecord(file, readRecordBytes(folder, file)));
+  return registerState(listRecordFiles(folder).map((file) => readRecord(file, readRecordBytes(folder, file))));
 }
 
 function loadSqlite(): typeof Database | null {
@@ -89,27 +98,22 @@ function loadSqlite(): typeof Database | null {
 function prepare(database: Database.Database): void {
   database.pragma('journal_mode = WAL');
   database.pragma('synchronous = OFF');
+  database.pragma('cache_size = -65536');
   if (database.pragma('user_version', { simple: true }) === FORM) return;
   database.exec(`
     DROP TABLE IF EXISTS folders; DROP TABLE IF EXISTS records; DROP TABLE IF EXISTS entries; DROP TABLE IF EXISTS modules;
-    DROP TABLE IF EXISTS contents; DROP TABLE IF EXISTS cases; DROP TABLE IF EXISTS words; DROP TABLE IF EXISTS tips;
+    DROP TABLE IF EXISTS contents; DROP TABLE IF EXISTS cases; DROP TABLE IF EXISTS labels; DROP TABLE IF EXISTS wholes; DROP TABLE IF EXISTS words; DROP TABLE IF EXISTS tips;
     CREATE TABLE folders (name TEXT PRIMARY KEY, changed TEXT) WITHOUT ROWID;
-    CREATE TABLE records (file TEXT PRIMARY KEY, stamp TEXT, about TEXT, seal TEXT, named TEXT) WITHOUT ROWID;
+    CREATE TABLE records (file TEXT PRIMARY KEY, stamp TEXT, about TEXT, seal TEXT, names TEXT) WITHOUT ROWID;
     CREATE INDEX records_about ON records (about);
-    CREATE TABLE entries (number INTEGER PRIMARY KEY, id TEXT UNIQUE, day TEXT, result TEXT, standing TEXT, whole TEXT);
+    CREATE TABLE entries (number INTEGER PRIMARY KEY, id TEXT UNIQUE, day TEXT, result TEXT, standing TEXT);
     CREATE INDEX entries_day ON entries (day DESC, id DESC);
     CREATE INDEX entries_standing ON entries (standing);
-    CREATE TABLE modules (entry INTEGER, module TEXT, component TEXT, version TEXT);
-    CREATE INDEX modules_module ON modules (module, version, entry);
-    CREATE INDEX modules_component ON modules (component, entry);
-    CREATE INDEX modules_entry ON modules (entry);
-    CREATE TABLE contents (entry INTEGER, id TEXT);
-    CREATE INDEX contents_id ON contents (id, entry);
-    CREATE INDEX contents_entry ON contents (entry);
-    CREATE TABLE cases (entry INTEGER, name TEXT);
-    CREATE INDEX cases_name ON cases (name, entry);
-    CREATE INDEX cases_entry ON cases (entry);
-    CREATE VIRTUAL TABLE words USING fts5 (text, content='', contentless_delete=1, prefix='2 3 4', tokenize="unicode61 tokenchars '-_.'");
+    CREATE TABLE wholes (number INTEGER PRIMARY KEY, whole TEXT);
+    CREATE TABLE modules (module TEXT, version TEXT, component TEXT, entry INTEGER, PRIMARY KEY (module, version, component, entry)) WITHOUT ROWID;
+    CREATE TABLE contents (id INTEGER, entry INTEGER, PRIMARY KEY (id, entry)) WITHOUT ROWID;
+    CREATE TABLE labels (sort TEXT, value TEXT, entry INTEGER, PRIMARY KEY (sort, value, entry)) WITHOUT ROWID;
+    CREATE VIRTUAL TABLE words USING fts5 (text, content='', contentless_delete=1, detail=none, tokenize="unicode61 tokenchars '-_.'");
     CREATE TABLE tips (seal TEXT PRIMARY KEY) WITHOUT ROWID;
   `);
   database.pragma(`user_version = ${FORM}`);
@@ -118,51 +122,43 @@ function prepare(database: Database.Database): void {
 /** Reads what was added since, forgets what is gone, and leaves the rest alone; nothing to do costs a look at each year's folder. */
 function refresh(database: Database.Database, folder: string, say: (done: number, total: number) => void): void {
   const folders = foldersOf(folder);
-  const known = new Map(
-    (database.prepare('SELECT name, changed FROM folders').all() as { name: string; changed: string }[]).map((one) => [
-      one.name,
-      one.changed,
-    ]),
-  );
-  if (folders.size === known.size && [...folders].every(([name, changed]) => known.get(name) === changed)) return;
+  const known = database.prepare('SELECT name, changed FROM folders').all() as { name: string; changed: string }[];
+  if (folders.size === known.length && known.every((one) => folders.get(one.name) === one.changed)) return;
   const files = listRecordFiles(folder);
-  const stamps = new Map(
-    (database.prepare('SELECT file, stamp FROM records').all() as { file: string; stamp: string }[]).map((one) => [
-      one.file,
-      one.stamp,
-    ]),
-  );
   const now = new Map(files.map((file) => [file, stampOf(join(folder, file))]));
-  const fresh = files.filter((file) => stamps.get(file) !== now.get(file));
-  const gone = [...stamps.keys()].filter((file) => !now.has(file));
-  const touched = new Set<string>();
-  const read = new Map<string, ReadRecord>();
+  const kept = database.prepare('SELECT file, stamp, about FROM records').all() as {
+    file: string;
+    stamp: string;
+    about: string;
+  }[];
+  const stamps = new Map(kept.map((one) => [one.file, one.stamp]));
+  const gone = kept.filter((one) => now.get(one.file) !== one.stamp);
+  const touched = new Map<string, string[]>();
+  for (const file of files) {
+    if (stamps.get(file) === now.get(file)) continue;
+    const about = aboutOf(file);
+    touched.set(about, [...(touched.get(about) ?? []), file]);
+  }
+  for (const { about } of gone) if (!touched.has(about)) touched.set(about, []);
   const update = database.transaction(() => {
-    const about = database.prepare('SELECT about FROM records WHERE file = ?').pluck();
-    const forget = database.prepare('DELETE FROM records WHERE file = ?');
-    const keep = database.prepare('INSERT OR REPLACE INTO records VALUES (?, ?, ?, ?, ?)');
-    for (const file of [...gone, ...fresh]) {
-      const before = about.get(file) as string | undefined;
-      if (before !== undefined) touched.add(before);
-      forget.run(file);
+    const writer = new EntryWriter(database, folder);
+    for (const { file } of gone) writer.forget(file);
+    let done = 0;
+    for (const [about, fresh] of touched) {
+      writer.rewrite(about, fresh, now);
+      if (++done % 500 === 0) say(done, touched.size);
     }
-    fresh.forEach((file, index) => {
-      const one = readRecord(file, readRecordBytes(folder, file));
-      read.set(file, one);
-      const { record } = one;
-      const named =
-        record === undefined ? [] : [...record.follows, ...(record.replaces === undefined ? [] : [record.replaces])];
-      keep.run(file, now.get(file), record?.about ?? null, record?.seal ?? null, JSON.stringify(named));
-      if (record !== undefined) touched.add(record.about);
-      if (index % 500 === 0) say(index, fresh.length);
-    });
-    rewriteEntries(database, folder, touched, read);
     rewriteTips(database);
     database.exec('DELETE FROM folders');
     const folderRow = database.prepare('INSERT INTO folders VALUES (?, ?)');
     for (const [name, changed] of folders) folderRow.run(name, changed);
   });
   update.immediate();
+}
+
+/** What a record is about stands in its file's name; a misnamed file is then only filed under another heading. */
+function aboutOf(file: string): string {
+  return file.slice(file.lastIndexOf('/') + 1).replace(/\.[a-z]+\.[0-9a-f]{8}\.yaml$/, '');
 }
 
 function foldersOf(folder: string): Map<string, string> {
@@ -177,100 +173,120 @@ function foldersOf(folder: string): Map<string, string> {
 }
 
 function stampOf(file: string): string {
-  const { size, mtimeNs } = statSync(file, { bigint: true });
-  return `${size} ${mtimeNs}`;
+  const { size, mtimeMs } = statSync(file);
+  return `${size} ${mtimeMs}`;
 }
 
-function rewriteEntries(
-  database: Database.Database,
-  folder: string,
-  touched: ReadonlySet<string>,
-  read: ReadonlyMap<string, ReadRecord>,
-): void {
-  const filesOf = database.prepare('SELECT file FROM records WHERE about = ? ORDER BY file').pluck();
-  const numberOf = database.prepare('SELECT number FROM entries WHERE id = ?').pluck();
-  const drop = [
-    'entries WHERE number',
-    'modules WHERE entry',
-    'contents WHERE entry',
-    'cases WHERE entry',
-    'words WHERE rowid',
-  ].map((where) => database.prepare(`DELETE FROM ${where} = ?`));
-  const add = {
-    entry: database.prepare('INSERT INTO entries (id, day, result, standing, whole) VALUES (?, ?, ?, ?, ?)'),
-    module: database.prepare('INSERT INTO modules VALUES (?, ?, ?, ?)'),
-    content: database.prepare('INSERT INTO contents VALUES (?, ?)'),
-    case: database.prepare('INSERT INTO cases VALUES (?, ?)'),
-    words: database.prepare('INSERT INTO words (rowid, text) VALUES (?, ?)'),
-  };
-  for (const id of touched) {
-    const number = numberOf.get(id) as number | undefined;
-    if (number !== undefined) for (const one of drop) one.run(number);
-    const files = filesOf.all(id) as string[];
-    const state = registerState(files.map((file) => read.get(file) ?? readRecord(file, readRecordBytes(folder, file))));
-    const entry = state.entries.get(id);
-    if (entry === undefined) continue;
-    const { lastInsertRowid: row } = add.entry.run(
-      id,
+/** Rows of one entry after another: nothing of an entry stays in memory once it is written. */
+class EntryWriter {
+  private readonly folder: string;
+  private readonly statements: Readonly<Record<string, Database.Statement>>;
+
+  constructor(database: Database.Database, folder: string) {
+    this.folder = folder;
+    const sql = {
+      forget: 'DELETE FROM records WHERE file = ?',
+      record: 'INSERT OR REPLACE INTO records VALUES (?, ?, ?, ?, ?)',
+      files: 'SELECT file FROM records WHERE about = ? ORDER BY file',
+      before: 'SELECT number, whole FROM entries JOIN wholes USING (number) WHERE id = ?',
+      entry: 'INSERT INTO entries (id, day, result, standing) VALUES (?, ?, ?, ?)',
+      whole: 'INSERT INTO wholes VALUES (?, ?)',
+      module: 'INSERT OR IGNORE INTO modules VALUES (?, ?, ?, ?)',
+      content: 'INSERT OR IGNORE INTO contents VALUES (?, ?)',
+      label: 'INSERT OR IGNORE INTO labels VALUES (?, ?, ?)',
+      words: 'INSERT INTO words (rowid, text) VALUES (?, ?)',
+      dropEntry: 'DELETE FROM entries WHERE number = ?',
+      dropWhole: 'DELETE FROM wholes WHERE number = ?',
+      dropModule: 'DELETE FROM modules WHERE module = ? AND version = ? AND component = ? AND entry = ?',
+      dropContent: 'DELETE FROM contents WHERE id = ? AND entry = ?',
+      dropLabel: 'DELETE FROM labels WHERE sort = ? AND value = ? AND entry = ?',
+      dropWords: 'DELETE FROM words WHERE rowid = ?',
+    };
+    this.statements = Object.fromEntries(Object.entries(sql).map(([name, text]) => [name, database.prepare(text)]));
+  }
+
+  forget(file: string): void {
+    this.run('forget', file);
+  }
+
+  /** Reads all records about an entry and writes its rows anew. */
+  rewrite(about: string, fresh: readonly string[], stamps: ReadonlyMap<string, string>): void {
+    const before = this.statements.before!.get(about) as { number: number; whole: string } | undefined;
+    if (before !== undefined) this.rows('drop', before.number, JSON.parse(before.whole) as StandingEntry);
+    const known = (this.statements.files!.all(about) as { file: string }[]).map((one) => one.file);
+    const files = [...new Set([...known, ...fresh])].sort();
+    const read = files.map((file) => readRecord(file, readRecordBytes(this.folder, file)));
+    for (const one of read) {
+      const head = headOf(one);
+      this.run('record', one.file, stamps.get(one.file), about, head?.seal ?? null, JSON.stringify(head?.names ?? []));
+    }
+    const [entry] = registerState(read).entries.values();
+    if (entry === undefined) return;
+    const { lastInsertRowid } = this.run(
+      'entry',
+      entry.id,
       dayOf(entry),
       resultText(entry.content.result),
       standingText(entry),
-      wholeOf(entry),
     );
-    for (const one of entry.content.modules) add.module.run(row, one.module, one.component, one.version);
-    for (const content of new Set(contentIds(entry))) add.content.run(row, bare(content));
-    for (const name of new Set((entry.content.cases ?? []).map((one) => one.case))) add.case.run(row, name);
-    add.words.run(row, searchText(entry));
+    this.rows('add', Number(lastInsertRowid), entry);
+  }
+
+  private rows(how: 'add' | 'drop', number: number, entry: StandingEntry): void {
+    const { content } = entry;
+    const name = (one: string) => (how === 'add' ? one : `drop${one.charAt(0).toUpperCase()}${one.slice(1)}`);
+    for (const one of content.modules) this.run(name('module'), one.module, one.version, one.component, number);
+    for (const id of contentIds(entry)) this.run(name('content'), firstDigits(id), number);
+    for (const [sort, value] of labelsOf(entry)) this.run(name('label'), sort, value, number);
+    if (how === 'drop') {
+      for (const one of ['dropEntry', 'dropWhole', 'dropWords']) this.run(one, number);
+      return;
+    }
+    this.run('whole', number, JSON.stringify({ ...entry, records: [] }));
+    this.run('words', number, searchText(entry));
+  }
+
+  private run(statement: string, ...values: unknown[]): Database.RunResult {
+    return this.statements[statement]!.run(...values);
   }
 }
 
-/** What the exact questions need of an entry, without its records. */
-function wholeOf(entry: StandingEntry): string {
-  return JSON.stringify({ ...entry, records: [] });
+/** What an entry is found by besides modules, contents and words: few distinct values each, looked through one by one. */
+function labelsOf(entry: StandingEntry): [string, string][] {
+  const { cases, people, environment } = entry.content;
+  return [
+    ...(cases ?? []).map((one): [string, string] => ['case', one.case]),
+    ...people.map((one): [string, string] => ['person', JSON.stringify([one.name, one.orcid ?? null])]),
+    ...(environment === undefined ? [] : [['machine', Object.values(environment).join(' ')] as [string, string]]),
+  ];
 }
 
 function rewriteTips(database: Database.Database): void {
-  const all = database.prepare('SELECT seal, named FROM records WHERE seal IS NOT NULL').all() as {
-    seal: string;
-    named: string;
-  }[];
-  const named = new Set(all.flatMap((one) => JSON.parse(one.named) as string[]));
+  const all = database.prepare('SELECT seal, names FROM records WHERE seal IS NOT NULL').raw().all() as [
+    string,
+    string,
+  ][];
+  const named = new Set(all.flatMap(([, names]) => JSON.parse(names) as string[]));
   database.exec('DELETE FROM tips');
   const add = database.prepare('INSERT OR IGNORE INTO tips VALUES (?)');
-  for (const { seal } of all) if (!named.has(seal)) add.run(seal);
+  for (const [seal] of all) if (!named.has(seal)) add.run(seal);
 }
 
 function sqliteIndex(database: Database.Database): RegisterIndex {
-  const cache = new Map<string, number[]>();
-  // Questions that SQL answers only in part are narrowed by it and then answered exactly.
-  const matches = (query: Query): number[] => {
-    const key = JSON.stringify(query);
-    const kept = cache.get(key);
-    if (kept !== undefined) return kept;
-    const { where, values, exact } = whereOf(query);
-    const select = `SELECT number${exact ? '' : ', whole'} FROM entries ${where} ORDER BY day DESC, id DESC`;
-    const rows = database.prepare(select).all(...values) as { number: number; whole: string }[];
-    const numbers = (exact ? rows : rows.filter((row) => answers(JSON.parse(row.whole) as StandingEntry, query))).map(
-      (row) => row.number,
-    );
-    cache.set(key, numbers);
-    return numbers;
-  };
-  const isEmpty = (query: Query) => Object.values(query).every((value) => value === undefined || value === '');
   const total = database.prepare('SELECT count(*) FROM entries').pluck().get() as number;
-  const row = database.prepare('SELECT id, day, result, standing FROM entries WHERE number = ?');
   const page = database.prepare(
     'SELECT id, day, result, standing FROM entries ORDER BY day DESC, id DESC LIMIT ? OFFSET ?',
   );
+  const row = database.prepare('SELECT id, day, result, standing FROM entries WHERE number = ?');
+  const finder = new Finder(database);
+  const isEmpty = (query: Query) => Object.values(query).every((value) => value === undefined || value === '');
   return {
     total,
-    count: (query) => (isEmpty(query) ? total : matches(query).length),
+    count: (query) => (isEmpty(query) ? total : finder.matches(query).length),
     find: (query, from, count) =>
       isEmpty(query)
         ? (page.all(count, from) as ListedEntry[])
-        : matches(query)
-            .slice(from, from + count)
-            .map((number) => row.get(number) as ListedEntry),
+        : Array.from(finder.matches(query).subarray(from, from + count), (number) => row.get(number) as ListedEntry),
     filesOf: (id) =>
       database.prepare('SELECT file FROM records WHERE about = ? ORDER BY file').pluck().all(id) as string[],
     tips: () => database.prepare('SELECT seal FROM tips ORDER BY seal').pluck().all() as Seal[],
@@ -278,40 +294,133 @@ function sqliteIndex(database: Database.Database): RegisterIndex {
   };
 }
 
-function whereOf(query: Query): { where: string; values: string[]; exact: boolean } {
-  const parts: string[] = [];
-  const values: string[] = [];
-  let exact = true;
-  const given = (value: string | undefined): value is string => value !== undefined && value !== '';
-  if (given(query.text)) {
-    parts.push('number IN (SELECT rowid FROM words WHERE words MATCH ?)');
-    values.push(ftsQuery(query.text));
+/** Answers questions part by part, each a set of entry numbers, and keeps those that are in every set, newest first. */
+class Finder {
+  private readonly database: Database.Database;
+  private order: Int32Array | null = null;
+  private readonly answered = new Map<string, Int32Array>();
+
+  constructor(database: Database.Database) {
+    this.database = database;
   }
-  if (given(query.module) || given(query.component) || given(query.versions)) {
-    const inside = [
-      ...(given(query.module) ? ['module = ?'] : []),
-      ...(given(query.component) ? ['component = ?'] : []),
-    ];
-    if (inside.length > 0) {
-      parts.push(`number IN (SELECT entry FROM modules WHERE ${inside.join(' AND ')})`);
-      values.push(...[query.module, query.component].filter(given));
+
+  matches(query: Query): Int32Array {
+    const key = JSON.stringify(query);
+    const kept = this.answered.get(key);
+    if (kept !== undefined) return kept;
+    this.order ??= Int32Array.from(this.numbers('SELECT number FROM entries ORDER BY day DESC, id DESC'));
+    const sets = this.sets(query);
+    const marks = new Uint8Array(Math.max(0, ...this.order) + 1);
+    sets.forEach((set, index) => {
+      for (const number of set) if (marks[number] === index) marks[number] = index + 1;
+    });
+    const found = this.order.filter((number) => marks[number] === sets.length);
+    if (this.answered.size > 64) this.answered.clear();
+    this.answered.set(key, found);
+    return found;
+  }
+
+  private sets(query: Query): number[][] {
+    const sets: number[][] = [];
+    const given = (value: string | undefined): value is string => value !== undefined && value !== '';
+    if (given(query.text)) sets.push(this.numbers('SELECT rowid FROM words WHERE words MATCH ?', ftsQuery(query.text)));
+    if (given(query.module) || given(query.versions) || given(query.component)) sets.push(this.byModule(query));
+    if (given(query.content)) sets.push(this.byContent(query.content));
+    if (given(query.case))
+      sets.push(this.numbers("SELECT entry FROM labels WHERE sort = 'case' AND value = ?", query.case));
+    if (given(query.person)) {
+      const asked = query.person;
+      sets.push(this.byLabel('person', (value) => isPerson(JSON.parse(value) as [string, string | null], asked)));
     }
-    exact &&= !given(query.versions);
+    if (given(query.machine)) {
+      const asked = query.machine;
+      sets.push(this.byLabel('machine', (value) => holdsWords(value, asked)));
+    }
+    if (given(query.result)) sets.push(this.byResult(query.result));
+    if (given(query.from)) sets.push(this.numbers('SELECT number FROM entries WHERE day >= ?', query.from));
+    if (given(query.to)) sets.push(this.numbers('SELECT number FROM entries WHERE day <= ?', query.to));
+    if (given(query.standing)) sets.push(this.numbers('SELECT number FROM entries WHERE standing = ?', query.standing));
+    return sets;
   }
-  if (given(query.content)) {
-    parts.push('number IN (SELECT entry FROM contents WHERE id >= ? AND id < ?)');
-    values.push(bare(query.content), `${bare(query.content)}g`);
-    exact &&= bare(query.content).length >= 8;
+
+  /** Distinct versions are few: each is held against the range once, whatever the number of entries. */
+  private byModule({ module, component, versions }: Query): number[] {
+    const distinct = this.database.prepare('SELECT DISTINCT module, version, component FROM modules').raw().all() as [
+      string,
+      string,
+      string,
+    ][];
+    const wanted = distinct.filter(
+      ([name, version, role]) =>
+        (module === undefined || name === module) &&
+        (component === undefined || role === component) &&
+        (versions === undefined || inRange(version, versions)),
+    );
+    return wanted.flatMap((one) =>
+      this.numbers('SELECT entry FROM modules WHERE module = ? AND version = ? AND component = ?', ...one),
+    );
   }
-  if (given(query.case)) {
-    parts.push('number IN (SELECT entry FROM cases WHERE name = ?)');
-    values.push(query.case);
+
+  /** By the first digits, then exactly: the table of ids stays small, and few entries share thirteen digits. */
+  private byContent(asked: string): number[] {
+    const digits = bare(asked);
+    if (digits.length < 8 || !/^[0-9a-f]+$/.test(digits)) return [];
+    const low = firstDigits(digits);
+    const high = low + 16 ** Math.max(0, DIGITS - digits.length);
+    const whole = this.database.prepare('SELECT whole FROM wholes WHERE number = ?').pluck();
+    const candidates = this.database
+      .prepare('SELECT DISTINCT entry FROM contents WHERE id >= ? AND id < ?')
+      .pluck()
+      .all(low, high) as number[];
+    if (digits.length <= DIGITS) return candidates;
+    return candidates.filter((number) =>
+      contentIds(JSON.parse(whole.get(number) as string) as StandingEntry).some((id) => bare(id).startsWith(digits)),
+    );
   }
-  if (given(query.from)) parts.push('day >= ?') && values.push(query.from);
-  if (given(query.to)) parts.push('day <= ?') && values.push(query.to);
-  if (given(query.standing)) parts.push('standing = ?') && values.push(query.standing);
-  if (given(query.person) || given(query.result) || given(query.machine)) exact = false;
-  return { where: parts.length === 0 ? '' : `WHERE ${parts.join(' AND ')}`, values, exact };
+
+  private byLabel(sort: string, isWanted: (value: string) => boolean): number[] {
+    const values = this.database
+      .prepare('SELECT DISTINCT value FROM labels WHERE sort = ?')
+      .pluck()
+      .all(sort) as string[];
+    return values
+      .filter(isWanted)
+      .flatMap((value) => this.numbers('SELECT entry FROM labels WHERE sort = ? AND value = ?', sort, value));
+  }
+
+  /** By the text of the result, which holds every identifier of it; other spellings of a DOI are brought to its bare name first. */
+  private byResult(asked: string): number[] {
+    const doi = readDoi(asked);
+    const text = doi === null ? asked : `${doi.prefix}/${doi.suffix}`;
+    const words = text.toLowerCase().split(/\s+/);
+    const candidates = this.database
+      .prepare(
+        `SELECT number, result FROM entries WHERE ${words.map(() => 'instr(lower(result), ?) > 0').join(' AND ')}`,
+      )
+      .raw();
+    const rows = candidates.all(...words) as [number, string][];
+    // A DOI is whole or it is another one: 10.1000/1 is not 10.1000/18.
+    const whole = new RegExp(`doi (?:\\S*doi\\.org/|doi:)?${literally(text)}(?:,|$)`, 'i');
+    return (doi === null ? rows : rows.filter(([, result]) => whole.test(result))).map(([number]) => number);
+  }
+
+  private numbers(sql: string, ...values: string[]): number[] {
+    return this.database
+      .prepare(sql)
+      .pluck()
+      .all(...values) as number[];
+  }
+}
+
+const DIGITS = 13;
+
+/** The first thirteen hexadecimal digits of an id as a number: 52 bits, exact. */
+function firstDigits(id: string): number {
+  return Number.parseInt(bare(id).slice(0, DIGITS).padEnd(DIGITS, '0'), 16) || 0;
+}
+
+function literally(text: string): string {
+  return text.replace(/[.*+?^${}()|[\]\\]/g, '\\$&');
 }
 
 /** Every word typed, as the beginning of a word in the text; quotes keep the query language out of it. */
