@@ -19,6 +19,7 @@ function declared(...accepted: Acceptance[]): Declaration<Accepted> {
     value: { accepted },
     placeOf: (path) => ({ file: 'manifests/accepted.yaml', line: 2 + Number(path[1]), column: 3 }),
     lineText: () => '',
+    excerptOf: () => ({ line: 1, text: '', column: 1, width: 1 }),
   };
 }
 
