@@ -70,7 +70,9 @@ export async function producedBy(making: Making): Promise<Produced> {
 const known = new WeakMap<TreeListing, ReadonlyMap<string, string>>();
 
 function idsOf(listing: TreeListing): ReadonlyMap<string, string> {
-  let ids = known.get(listing);
-  if (ids === undefined) known.set(listing, (ids = new Map(listing.files.map((file) => [file.path, file.id]))));
+  const earlier = known.get(listing);
+  if (earlier !== undefined) return earlier;
+  const ids = new Map(listing.files.map((file) => [file.path, file.id]));
+  known.set(listing, ids);
   return ids;
 }
