@@ -35,6 +35,8 @@ export interface YamlTree {
 
 /** Deeper nesting than any manifest has; kept far below what would overflow the stack of the parser. */
 const DEEPEST = 60;
+/** Words and marks of YAML in one manifest; more would keep the parser busy for seconds. */
+const MOST_TOKENS = 300_000;
 /** Nodes of a manifest with every alias written out. */
 const MOST_NODES = 100_000;
 
@@ -83,7 +85,18 @@ type Composed = { readonly document: Document.Parsed } | { readonly problem: Pro
 function compose(text: string): Composed {
   const parser = new Parser();
   const tokens = [];
+  let lexemes = 0;
   for (const lexeme of new Lexer().lex(text)) {
+    if (++lexemes > MOST_TOKENS) {
+      return {
+        problem: {
+          kind: 'manifest-unreadable',
+          span: { start: parser.offset, end: parser.offset + 1 },
+          says: `The manifest holds more than ${MOST_TOKENS.toLocaleString('en')} words and marks; what lies beyond this place was not read.`,
+          next: 'keep data in a table of its own, and name that table under "tables".',
+        },
+      };
+    }
     for (const token of parser.next(lexeme)) tokens.push(token);
     if (parser.stack.length > DEEPEST) {
       return {
@@ -275,6 +288,10 @@ const SLIPS: Readonly<Record<string, (text: string) => readonly [string, string]
   MULTILINE_IMPLICIT_KEY: () => [
     'A key and its value must begin on one line; a colon or an indent is missing.',
     'write "key: value", each on its own line.',
+  ],
+  UNEXPECTED_TOKEN: (text) => [
+    `${quoted(text)} does not belong here.`,
+    'put quotes around the value, or write what is missing before it.',
   ],
   RESOURCE_EXHAUSTION: () => [
     'The nesting here is deeper than any manifest needs.',

@@ -453,6 +453,13 @@ describe('hostile input', () => {
     }
   });
 
+  it('of very many marks is given up before it keeps anyone waiting', () => {
+    for (const mark of ['"', '\n', '&a ', '*a ', '"a" ']) {
+      const findings = one(mark.repeat(Math.floor(999_000 / mark.length)));
+      expect(findings[0]!.says).toMatch(/^The manifest holds more than 300,000 words and marks/);
+    }
+  });
+
   it('with very many keys takes time in proportion to its length', () => {
     const start = performance.now();
     const findings = one(Array.from({ length: 40_000 }, (_, i) => `key-${i}: value`).join('\n'));
