@@ -1,5 +1,6 @@
 /** Manifests and the interfaces read from source come in; every joint of the assembly and what is wrong with it go out. Pure. */
 import { contractReference } from '../manifests/contract-reference.ts';
+import { plug } from '../manifests/plug.ts';
 import { anyOf } from '../manifests/problem.ts';
 import { type Finding, sortFindings } from '../model/finding.ts';
 import type { FileInterface } from '../model/interface.ts';
@@ -52,6 +53,29 @@ export function fitAssembly(set: ManifestSet, interfaces: ReadonlyMap<string, Fi
         findings.push(...fit.findings);
       }
     }
+  }
+  return { joints, findings: sortFindings(findings) };
+}
+
+/**
+ * The same, and the joints that arise where a case puts modules of its own into the assembly.
+ * What those have in common with the assembly is said once.
+ */
+export function fitCases(set: ManifestSet, interfaces: ReadonlyMap<string, FileInterface>): AssemblyFit {
+  const { joints, findings } = fitAssembly(set, interfaces);
+  const known = new Set([...joints, ...findings].map((one) => JSON.stringify(one)));
+  for (const one of set.cases.values()) {
+    if (one.value.with === undefined) continue;
+    const fit = fitAssembly(plug(set, one.value.with), interfaces);
+    const isNew = (each: Joint | Finding) => {
+      const text = JSON.stringify(each);
+      return known.has(text) ? false : known.add(text);
+    };
+    joints.push(...fit.joints.filter(isNew));
+    const evidence = seenIn(one, ['with'], `with the modules of case ${one.value.case}`, 'key');
+    findings.push(
+      ...fit.findings.filter(isNew).map((finding) => ({ ...finding, evidence: [...finding.evidence, evidence] })),
+    );
   }
   return { joints, findings: sortFindings(findings) };
 }

@@ -171,6 +171,15 @@ class JointFit {
       });
     }
 
+    const departs = relateUnits(offeringHalf.unit, quantity.unit);
+    if (departs.is === 'dimension' && relation.is !== 'dimension') {
+      // Both sides agree with one another and not with the contract, which then says something untrue.
+      this.differing(name, 'units', 'joint-dimension', 'caution', {
+        says: `${name} crosses as ${offeringHalf.unit} (${departs.from}); the contract says ${quantity.unit} (${departs.to}).`,
+        next: 'write a version of the contract with the quantity that really crosses.',
+      });
+    }
+
     for (const [convention, [wants, has]] of Object.entries(
       pairs(expectingHalf.conventions, offeringHalf.conventions),
     )) {
@@ -515,7 +524,7 @@ class JointFit {
     return `${unit} at ${this.input.offering.name}`;
   }
 
-  /** A difference in units or conventions: told at the side that departs from the contract, with the other as evidence. */
+  /** A difference in units or conventions, with the other side and the contract as evidence. */
   private differing(
     quantity: string,
     part: 'units' | 'conventions',
@@ -525,16 +534,22 @@ class JointFit {
   ): void {
     const { expecting, offering, contract } = this.input;
     const key = said.key ?? quantity;
-    const own = firstThere(expecting.declaration, [...this.expectPath, part, key], [...this.expectPath, 'contract']);
-    const other = firstThere(offering.declaration, [...this.offerPath, part, key], [...this.offerPath, 'contract']);
-    this.add(expecting.declaration, own, {
+    const asks = [expecting, this.expectPath, `${expecting.name} expects`] as const;
+    const gives = [offering, this.offerPath, `${offering.name} offers`] as const;
+    const states = (side: Expectation | Offer) => side[part]?.[key] !== undefined;
+    // Told where someone wrote it down; a convention that the asking side does not state is the asking side's to state.
+    const atOffer = part === 'units' && !states(this.expectation) && states(this.offer);
+    const [own, other] = atOffer ? [gives, asks] : [asks, gives];
+    const place = ([module, path]: typeof asks | typeof gives) =>
+      firstThere(module.declaration, [...path, part, key], [...path, 'contract']);
+    this.add(own[0].declaration, place(own), {
       kind,
       gravity,
-      module: expecting.name,
+      module: own[0].name,
       says: said.says,
       next: said.next,
       evidence: [
-        seenIn(offering.declaration, other, `${offering.name} offers`),
+        seenIn(other[0].declaration, place(other), other[2]),
         seenIn(
           contract,
           part === 'units' ? ['quantities', quantity, 'unit'] : ['quantities', quantity, 'conventions', key],

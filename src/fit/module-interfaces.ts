@@ -6,7 +6,8 @@ import type { SourceTree } from '../sources/tree.ts';
 export type ReadSource = (path: string, bytes: Uint8Array) => Promise<FileInterface>;
 
 /**
- * @param modules  names of the modules to read; those plugged into the assembly when absent, all when there is no assembly
+ * @param modules  names of the modules to read; when absent those plugged into the assembly and those that cases put there,
+ *   or all when there is no assembly
  * @returns path to interface; a file that the tree does not have is not in it, which fit reports
  */
 export async function moduleInterfaces(
@@ -15,7 +16,7 @@ export async function moduleInterfaces(
   read: ReadSource,
   modules?: Iterable<string>,
 ): Promise<Map<string, FileInterface>> {
-  const names = modules ?? (set.assembly === null ? set.modules.keys() : Object.values(set.assembly.value.plugged));
+  const names = modules ?? (set.assembly === null ? set.modules.keys() : pluggedAnywhere(set));
   const declared = [...new Set(names)].flatMap((name) => set.modules.get(name)?.value ?? []);
   const paths = declared.flatMap((module) => [
     ...module.source.files,
@@ -28,4 +29,9 @@ export async function moduleInterfaces(
     if (bytes !== null) interfaces.set(path, await read(path, bytes));
   }
   return interfaces;
+}
+
+function pluggedAnywhere(set: ManifestSet): string[] {
+  const byCases = [...set.cases.values()].flatMap((one) => Object.values(one.value.with ?? {}));
+  return [...Object.values(set.assembly?.value.plugged ?? {}), ...byCases];
 }

@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { fitAssembly } from '../../src/fit/fit-assembly.ts';
+import { fitAssembly, fitCases } from '../../src/fit/fit-assembly.ts';
 import type { FileInterface } from '../../src/model/interface.ts';
 import { load, SOUND } from '../manifests/manifest-text.ts';
 import { argument, call, file, procedure } from './interfaces.ts';
@@ -97,7 +97,7 @@ describe('units', () => {
   it('of one dimension and another scale fit through an adapter, with the factor in the message', () => {
     const result = fitted({ [EOS]: ['internal-energy: erg/g', 'internal-energy: J/kg'] });
     expect(brief(result)).toEqual([
-      'stop joint-unit hydro.yaml:6:15 internal-energy crosses from erg/g at hydro to J/kg at eos-ionising; value in J/kg = 1e-4 * value in erg/g.',
+      'stop joint-unit eos-ionising.yaml:10:30 internal-energy crosses from erg/g at hydro to J/kg at eos-ionising; value in J/kg = 1e-4 * value in erg/g.',
     ]);
     const [joint] = result.joints;
     expect(joint!.state).toBe('fits through an adapter');
@@ -107,7 +107,7 @@ describe('units', () => {
       ['pressure', 1, 0],
       ['internal-energy', 1e-4, 0],
     ]);
-    expect(result.findings[0]!.evidence.map((one) => one.place?.file)).toEqual([undefined, EOS, CONTRACT]);
+    expect(result.findings[0]!.evidence.map((one) => one.place?.file)).toEqual([undefined, HYDRO, CONTRACT]);
   });
 
   it('that an adapter already converts are a note', () => {
@@ -142,6 +142,17 @@ describe('units', () => {
     expect(result.findings.map((one) => [one.gravity, one.kind])).toEqual([['stop', 'joint-dimension']]);
     expect(result.joints[0]!.state).toBe('does not fit');
     expect(result.joints[0]!.adapter).toBeNull();
+  });
+});
+
+describe('a contract', () => {
+  it('that says another dimension than both sides use is a caution', () => {
+    const result = fitted({
+      [EOS]: ['internal-energy: erg/g', 'internal-energy: erg/cm3'],
+      [HYDRO]: ['    domain:', '    units: {internal-energy: erg/cm3}\n    domain:'],
+    });
+    expect(result.findings.map((one) => [one.gravity, one.kind])).toEqual([['caution', 'joint-dimension']]);
+    expect(result.joints[0]!.state).toBe('fits');
   });
 });
 
@@ -450,6 +461,33 @@ describe('tables', () => {
   });
 });
 
+describe('a case with modules of its own', () => {
+  it('has its joints checked too, and says only what is new', () => {
+    const { set, findings } = load({
+      'manifests/modules/eos-short.yaml': SOUND[EOS]!.replace('module: eos-ionising', 'module: eos-short').replace(
+        '1e8',
+        '1e5',
+      ),
+      'manifests/cases/cloud-shock.yaml': SOUND['manifests/cases/cloud-shock.yaml']!.replace(
+        'outputs:',
+        'with: {equation-of-state: eos-short}\noutputs:',
+      ),
+    });
+    expect(findings).toEqual([]);
+    const result = fitCases(
+      set,
+      new Map([
+        ['src/hydro.ts', HYDRO_SOURCE],
+        ['src/eos/ionising.f90', EOS_SOURCE],
+      ]),
+    );
+    expect(result.joints.map((one) => one.offering?.module)).toEqual(['eos-ionising', 'eos-short']);
+    expect(result.findings.map((one) => [one.kind, one.evidence.at(-1)?.says])).toEqual([
+      ['joint-domain', 'with the modules of case cloud-shock'],
+    ]);
+  });
+});
+
 describe('laws', () => {
   it('a joint whose two halves are equal always fits', () => {
     const unit = fc.constantFrom('g/cm3', 'kg/m3', 'K', 'degC', 'erg/g', 'MeV', '1', 'cm2/g', 'dyn/cm2');
@@ -474,7 +512,10 @@ describe('laws', () => {
         ),
         (quantities) => {
           const contract = quantities
-            .map((one) => `  ${one.name}: {unit: "1", intent: in, conventions: {zero-${one.name}: [one, two]}}\n`)
+            .map(
+              (one) =>
+                `  ${one.name}: {unit: "${one.unit}", intent: in, conventions: {zero-${one.name}: [one, two]}}\n`,
+            )
             .join('');
           const side = [
             `    units: {${quantities.map((one) => `${one.name}: "${one.unit}"`).join(', ')}}`,
