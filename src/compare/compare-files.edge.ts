@@ -7,7 +7,8 @@ import { type OutputHints, openOutput } from '../outputs/open-output.edge.ts';
 import { type DatasetInfo, elementsOf, type OutputFile, OutputProblem } from '../outputs/output-file.ts';
 import { classify } from './compare-arrays.ts';
 import { measureKernel } from './measure-kernel.edge.ts';
-import { measureStreams, measureTables, type Streamed } from './measure-streams.ts';
+import { measureTables, type Streamed } from './measure-streams.ts';
+import { measureTogether } from './measure-together.edge.ts';
 import { grainOf } from './series.ts';
 import { completeTolerance, weighingOf } from './tolerance.ts';
 import { unitFactor } from './unit-factor.ts';
@@ -170,7 +171,6 @@ async function measureShared(
   const kernel = measureKernel();
   const tolerance = completeTolerance(options.tolerance);
   const weighing = weighingOf(tolerance);
-  const signal = options.signal === undefined ? {} : { signal: options.signal };
   const deviations = new Map<string, Deviation>();
   const conclude = (one: Shared, streamed: Streamed) =>
     deviations.set(one.name, deviationOf(file, one, streamed, tolerance));
@@ -207,18 +207,26 @@ async function measureShared(
     }
   }
   for (const one of shared.filter((candidate) => !asTable.includes(candidate))) {
-    const [a, b] = [reference.cursor(one.reference.name), result.cursor(one.result.name)];
     try {
-      const fills = { reference: one.reference.fill, result: one.result.fill };
-      conclude(one, await measureStreams(a, b, weighing, kernel, { fills, resultFactor: one.factor, ...signal }));
+      const [a, b] = [
+        { file: reference, info: one.reference },
+        { file: result, info: one.result },
+      ];
+      const { signal } = options;
+      conclude(
+        one,
+        await measureTogether(a, b, weighing, { hints: hintsOf(options), resultFactor: one.factor, signal }),
+      );
     } catch (error) {
       failAll([one], error);
-    } finally {
-      a.close();
-      b.close();
     }
   }
   return deviations;
+}
+
+/** Only what another thread can be given. */
+function hintsOf({ patterns, layout }: FileOptions): OutputHints {
+  return { ...(patterns === undefined ? {} : { patterns }), ...(layout === undefined ? {} : { layout }) };
 }
 
 function deviationOf(file: string, one: Shared, streamed: Streamed, tolerance: Tolerance | null): Deviation {

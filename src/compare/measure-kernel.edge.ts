@@ -1,6 +1,6 @@
 /** The WebAssembly kernel that measures blocks, or its plain twin where it was not built. */
 import { type KernelModule, kernelModule, PAGE_BYTES, startKernel } from '../outputs/kernel-module.edge.ts';
-import { BLOCK, type BlockTotals, type MeasureKernel, plainKernel, STAGED_BLOCKS } from './measure-block.ts';
+import { BLOCK, type MeasureKernel, plainKernel, STAGED_BLOCKS } from './measure-block.ts';
 
 // The first page is the module's own; the totals lie in it, above anything that it places there.
 const TOTALS = 32_768;
@@ -29,28 +29,24 @@ export function vectorKernel(module: KernelModule): MeasureKernel {
       doubles[10] = totals.maxReference;
       doubles[15] = totals.worstRatio;
       measure(REFERENCE + start * 8, RESULT + start * 8, count, weighing.absolute, weighing.relative, TOTALS);
-      for (const [place, name] of PLACES) totals[name] = doubles[place]!;
+      // In the order of the kernel's own list of places.
+      totals.identical = doubles[0]!;
+      totals.nanInReference = doubles[1]!;
+      totals.nanInResult = doubles[2]!;
+      totals.infInReference = doubles[3]!;
+      totals.infInResult = doubles[4]!;
+      totals.unlike = doubles[5]!;
+      totals.beyond = doubles[6]!;
+      totals.maxAbsolute = doubles[7]!;
+      totals.maxRelative = doubles[8]!;
+      totals.maxReference = doubles[10]!;
+      totals.sumAbsolute = doubles[11]!;
+      totals.sumSquares = doubles[12]!;
+      totals.sumReference = doubles[13]!;
+      totals.sumReferenceSquares = doubles[14]!;
+      totals.worstRatio = doubles[15]!;
+      totals.worstIndex = doubles[16]!;
       totals.maxUlp = longs[9]!;
     },
   };
 }
-
-/** Where each total lies; maxUlp, at 9, is an integer and read from `longs`. */
-const PLACES: readonly (readonly [number, Exclude<keyof BlockTotals, 'maxUlp'>])[] = [
-  [0, 'identical'],
-  [1, 'nanInReference'],
-  [2, 'nanInResult'],
-  [3, 'infInReference'],
-  [4, 'infInResult'],
-  [5, 'unlike'],
-  [6, 'beyond'],
-  [7, 'maxAbsolute'],
-  [8, 'maxRelative'],
-  [10, 'maxReference'],
-  [11, 'sumAbsolute'],
-  [12, 'sumSquares'],
-  [13, 'sumReference'],
-  [14, 'sumReferenceSquares'],
-  [15, 'worstRatio'],
-  [16, 'worstIndex'],
-];

@@ -1,7 +1,8 @@
 /** Two data sets read side by side, a few blocks at a time, and measured as they come: memory does not grow with their length. */
 import type { ArrayCursor, TableCursor } from '../outputs/output-file.ts';
+import { RunningLedger } from './block-sums.ts';
 import { BLOCK, type MeasureKernel, type Weighing } from './measure-block.ts';
-import { type Measured, Measuring } from './measuring.ts';
+import { conclude, type Measured, Measuring } from './measuring.ts';
 
 export interface Streamed {
   readonly measured: Measured;
@@ -29,7 +30,8 @@ export async function measureStreams(
   kernel: MeasureKernel,
   options: { readonly fills?: Fills; readonly resultFactor?: number; readonly signal?: AbortSignal } = {},
 ): Promise<Streamed> {
-  const measuring = new Measuring(kernel, weighing);
+  const ledger = new RunningLedger();
+  const measuring = new Measuring(kernel, weighing, ledger);
   const { fills = {}, resultFactor = 1 } = options;
   let [referenceCount, resultCount, absentOnOneSide, sincePause] = [0, 0, 0, 0];
   for (;;) {
@@ -50,7 +52,7 @@ export async function measureStreams(
   }
   referenceCount += rest(reference, referenceCount, resultCount, kernel.reference);
   resultCount += rest(result, resultCount, referenceCount, kernel.result);
-  return { measured: measuring.finish(), referenceCount, resultCount, absentOnOneSide };
+  return { measured: conclude([measuring.part()], ledger.totals()), referenceCount, resultCount, absentOnOneSide };
 }
 
 /** All columns of two tables in one pass over either. */
@@ -61,11 +63,11 @@ export async function measureTables(
   kernel: MeasureKernel,
   signal?: AbortSignal,
 ): Promise<readonly Streamed[]> {
-  const columns = weighings.map((weighing) => ({
-    measuring: new Measuring(kernel, weighing),
-    reference: new Float64Array(BLOCK),
-    result: new Float64Array(BLOCK),
-  }));
+  const columns = weighings.map((weighing) => {
+    const ledger = new RunningLedger();
+    const measuring = new Measuring(kernel, weighing, ledger);
+    return { ledger, measuring, reference: new Float64Array(BLOCK), result: new Float64Array(BLOCK) };
+  });
   const references = columns.map((column) => column.reference);
   const results = columns.map((column) => column.result);
   let [referenceCount, resultCount, sincePause] = [0, 0, 0];
@@ -90,8 +92,8 @@ export async function measureTables(
   for (let more = BLOCK; more === BLOCK && referenceCount > resultCount; )
     referenceCount += more = reference.fill(references);
   for (let more = BLOCK; more === BLOCK && resultCount > referenceCount; ) resultCount += more = result.fill(results);
-  return columns.map(({ measuring }) => ({
-    measured: measuring.finish(),
+  return columns.map(({ measuring, ledger }) => ({
+    measured: conclude([measuring.part()], ledger.totals()),
     referenceCount,
     resultCount,
     absentOnOneSide: 0,

@@ -1,8 +1,8 @@
 /** Measures of two arrays of any length, block by block: numbers come in piece by piece, the measures go out at the end. */
 import type { Measures, WorstElement } from '../model/deviation.ts';
-import { CompensatedSum } from './compensated-sum.ts';
+import { BlockSums, RunningLedger, type SumLedger, type Totals } from './block-sums.ts';
 import { BLOCK, freshTotals, type MeasureKernel, type Weighing } from './measure-block.ts';
-import { SumOfSquares } from './sum-of-squares.ts';
+import { scaleOf } from './sum-of-squares.ts';
 
 /** Measures with what classes are decided from. */
 export interface Measured {
@@ -17,25 +17,33 @@ export interface Measured {
   readonly ulp: bigint;
   readonly maxReference: number;
   /** Norms of the reference and of the difference, not divided: sums of magnitudes, roots of sums of squares. */
-  readonly norms: {
-    readonly l1: number;
-    readonly l1Reference: number;
-    readonly l2: number;
-    readonly l2Reference: number;
-  };
+  readonly norms: Totals;
+}
+
+/** What one thread has found besides the sums; merges with another's in any order. */
+export interface Part {
+  readonly count: number;
+  readonly identical: number;
+  readonly nanInReference: number;
+  readonly nanInResult: number;
+  readonly infInReference: number;
+  readonly infInResult: number;
+  readonly unlike: number;
+  readonly beyond: number;
+  readonly maxAbsolute: number;
+  readonly maxRelative: number;
+  readonly maxReference: number;
+  readonly maxUlp: bigint;
+  readonly worstRatio: number;
+  readonly worst: WorstElement | null;
 }
 
 /** One comparison under way. Stage numbers in `kernel.reference` and `kernel.result`, then call `take`. */
 export class Measuring {
   readonly kernel: MeasureKernel;
   private readonly weighing: Weighing;
+  private readonly ledger: SumLedger;
   private readonly totals = freshTotals();
-  private readonly sums = {
-    absolute: new CompensatedSum(),
-    squares: new SumOfSquares(),
-    reference: new CompensatedSum(),
-    referenceSquares: new SumOfSquares(),
-  };
   private readonly counts = {
     count: 0,
     identical: 0,
@@ -47,42 +55,41 @@ export class Measuring {
     beyond: 0,
   };
   private worst: WorstElement | null = null;
+  private next = 0;
 
-  constructor(kernel: MeasureKernel, weighing: Weighing) {
+  constructor(kernel: MeasureKernel, weighing: Weighing, ledger: SumLedger) {
     this.kernel = kernel;
     this.weighing = weighing;
+    this.ledger = ledger;
+  }
+
+  /** The next numbers are those from `element` on: a multiple of BLOCK, and larger than any before. */
+  goTo(element: number): void {
+    this.next = element;
   }
 
   /** Measures the first `staged` numbers of both sides; a multiple of BLOCK unless they are the last. */
   take(staged: number): void {
-    const { kernel, totals, counts, sums } = this;
+    const { kernel, totals, counts } = this;
     for (let start = 0; start < staged; start += BLOCK) {
       const count = Math.min(BLOCK, staged - start);
-      const before = { absolute: totals.maxAbsolute, reference: totals.maxReference };
+      const [maxAbsolute, maxReference] = [totals.maxAbsolute, totals.maxReference];
       // Maxima of this block alone decide how its squares are scaled.
       totals.maxAbsolute = 0;
       totals.maxReference = 0;
       kernel.measure(start, count, this.weighing, totals);
-      const again = (of: 'difference' | 'reference') => (scale: number) =>
-        scaledSquares(
-          kernel.reference.subarray(start, start + count),
-          of === 'difference' ? kernel.result.subarray(start, start + count) : null,
-          scale,
-        );
-      sums.absolute.add(totals.sumAbsolute);
-      sums.squares.add(totals.sumSquares, totals.maxAbsolute, again('difference'));
-      sums.reference.add(totals.sumReference);
-      sums.referenceSquares.add(totals.sumReferenceSquares, totals.maxReference, again('reference'));
-      totals.maxAbsolute = Math.max(before.absolute, totals.maxAbsolute);
-      totals.maxReference = Math.max(before.reference, totals.maxReference);
+      this.ledger.add(this.next / BLOCK, this.sumsOf(start, count));
+      totals.maxAbsolute = Math.max(maxAbsolute, totals.maxAbsolute);
+      totals.maxReference = Math.max(maxReference, totals.maxReference);
       if (totals.worstIndex >= 0) {
         const at = start + totals.worstIndex;
         this.worst = {
-          index: counts.count + totals.worstIndex,
+          index: this.next + totals.worstIndex,
           reference: kernel.reference[at]!,
           result: kernel.result[at]!,
         };
       }
+      this.next += count;
       counts.count += count;
       counts.identical += totals.identical;
       counts.nanInReference += totals.nanInReference;
@@ -94,34 +101,68 @@ export class Measuring {
     }
   }
 
-  finish(): Measured {
-    const { totals, counts, sums, worst } = this;
-    const { unlike, beyond, ...rest } = counts;
-    const norms = {
-      l1: sums.absolute.value,
-      l1Reference: sums.reference.value,
-      l2: sums.squares.root,
-      l2Reference: sums.referenceSquares.root,
-    };
-    return {
-      measures: {
-        ...rest,
-        maxAbsolute: totals.maxAbsolute,
-        maxRelative: totals.maxAbsolute === Number.POSITIVE_INFINITY ? Number.POSITIVE_INFINITY : totals.maxRelative,
-        maxUlp: unlike > 0 ? Number.POSITIVE_INFINITY : Number(totals.maxUlp),
-        l1: unlike > 0 ? Number.POSITIVE_INFINITY : share(norms.l1, norms.l1Reference),
-        l2: unlike > 0 ? Number.POSITIVE_INFINITY : share(norms.l2, norms.l2Reference),
-        linf: unlike > 0 ? Number.POSITIVE_INFINITY : share(totals.maxAbsolute, totals.maxReference),
-        worst,
-      },
-      worstRatio: totals.worstRatio,
-      beyond,
-      unlike,
-      ulp: totals.maxUlp,
-      maxReference: totals.maxReference,
-      norms,
-    };
+  part(): Part {
+    const { maxAbsolute, maxRelative, maxReference, maxUlp, worstRatio } = this.totals;
+    return { ...this.counts, maxAbsolute, maxRelative, maxReference, maxUlp, worstRatio, worst: this.worst };
   }
+
+  private sumsOf(start: number, count: number): BlockSums {
+    const { kernel, totals } = this;
+    const [scale, referenceScale] = [scaleOf(totals.maxAbsolute), scaleOf(totals.maxReference)];
+    const part = (side: Float64Array) => side.subarray(start, start + count);
+    const squares = scale === 1 ? totals.sumSquares : scaledSquares(part(kernel.reference), part(kernel.result), scale);
+    const referenceSquares =
+      referenceScale === 1 ? totals.sumReferenceSquares : scaledSquares(part(kernel.reference), null, referenceScale);
+    return new BlockSums(totals.sumAbsolute, totals.sumReference, scale, squares, referenceScale, referenceSquares);
+  }
+}
+
+/** The measures of everything that the parts saw; `norms` are of the same blocks, added in order. */
+export function conclude(parts: readonly Part[], norms: Totals): Measured {
+  const all = parts.reduce(mergeParts);
+  const { unlike, beyond, maxUlp, maxReference, worstRatio, maxAbsolute, maxRelative, worst, ...counts } = all;
+  const bounded = (value: number) => (unlike > 0 ? Number.POSITIVE_INFINITY : value);
+  return {
+    measures: {
+      ...counts,
+      maxAbsolute,
+      maxRelative: maxAbsolute === Number.POSITIVE_INFINITY ? Number.POSITIVE_INFINITY : maxRelative,
+      maxUlp: bounded(Number(maxUlp)),
+      l1: bounded(share(norms.l1, norms.l1Reference)),
+      l2: bounded(share(norms.l2, norms.l2Reference)),
+      linf: bounded(share(maxAbsolute, maxReference)),
+      worst,
+    },
+    worstRatio,
+    beyond,
+    unlike,
+    ulp: maxUlp,
+    maxReference,
+    norms,
+  };
+}
+
+function mergeParts(a: Part, b: Part): Part {
+  // Of two equally bad elements the first counts, whichever thread found it.
+  const first = a.worst === null || (b.worst !== null && b.worst.index < a.worst.index) ? b : a;
+  const worse = a.worstRatio === b.worstRatio ? first : a.worstRatio > b.worstRatio ? a : b;
+  return {
+    count: a.count + b.count,
+    identical: a.identical + b.identical,
+    nanInReference: a.nanInReference + b.nanInReference,
+    nanInResult: a.nanInResult + b.nanInResult,
+    infInReference: a.infInReference + b.infInReference,
+    infInResult: a.infInResult + b.infInResult,
+    unlike: a.unlike + b.unlike,
+    beyond: a.beyond + b.beyond,
+    maxAbsolute: Math.max(a.maxAbsolute, b.maxAbsolute),
+    maxRelative: Math.max(a.maxRelative, b.maxRelative),
+    maxReference: Math.max(a.maxReference, b.maxReference),
+    // biome-ignore lint/complexity/useMathMinMax: Math.max does not take 64-bit integers
+    maxUlp: a.maxUlp > b.maxUlp ? a.maxUlp : b.maxUlp,
+    worstRatio: worse.worstRatio,
+    worst: worse.worst,
+  };
 }
 
 /** No difference at all is no deviation, even from a reference that is zero everywhere. */
@@ -149,7 +190,8 @@ export function measureArrays(
   weighing: Weighing,
   kernel: MeasureKernel,
 ): Measured {
-  const measuring = new Measuring(kernel, weighing);
+  const ledger = new RunningLedger();
+  const measuring = new Measuring(kernel, weighing, ledger);
   const room = kernel.reference.length;
   for (let at = 0; at < reference.length; at += room) {
     const part = reference.subarray(at, at + room);
@@ -157,5 +199,5 @@ export function measureArrays(
     kernel.result.set(result.subarray(at, at + room));
     measuring.take(part.length);
   }
-  return measuring.finish();
+  return conclude([measuring.part()], ledger.totals());
 }

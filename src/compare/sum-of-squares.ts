@@ -6,8 +6,14 @@ const TINY = 1e-140;
 const HUGE = 1e140;
 const SCALE = 2 ** 600;
 
+/** The power of two that numbers of up to this magnitude are multiplied by before they are squared; 1 for nearly all. */
+export function scaleOf(largest: number): number {
+  if (largest > HUGE) return 1 / SCALE;
+  return largest < TINY && largest > 0 ? SCALE : 1;
+}
+
 /**
- * Adds blocks of squares, each scaled by a power of two chosen from the block's largest magnitude.
+ * Adds sums of (scale * x)^2, those of one scale apart from those of another.
  * @source J. L. Blue, ACM Transactions on Mathematical Software 4 (1978) 15
  */
 export class SumOfSquares {
@@ -15,20 +21,14 @@ export class SumOfSquares {
   private readonly middle = new CompensatedSum();
   private readonly large = new CompensatedSum();
 
-  /**
-   * @param squares  the block's plain sum of squares
-   * @param largest  an upper bound of the magnitudes in the block
-   * @param again    forms the block's sum of (scale * x)^2, for when the plain one is out of range
-   */
-  add(squares: number, largest: number, again: (scale: number) => number): void {
-    if (largest > HUGE) this.large.add(again(1 / SCALE));
-    else if (largest < TINY && largest > 0) this.small.add(again(SCALE));
-    else this.middle.add(squares);
+  add(squares: number, scale: number): void {
+    if (scale === 1) this.middle.add(squares);
+    else if (scale < 1) this.large.add(squares);
+    else this.small.add(squares);
   }
 
-  /** The root of the sum. */
+  /** The root of the sum of x^2. */
   get root(): number {
-    // The largest class that holds anything decides; what is 2^600 times smaller cannot change a digit of it.
     const large = Math.sqrt(this.large.value) * SCALE;
     const middle = Math.sqrt(this.middle.value);
     const small = Math.sqrt(this.small.value) / SCALE;

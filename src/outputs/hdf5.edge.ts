@@ -142,6 +142,25 @@ function slabCursor(entry: Entry, path: string): ArrayCursor {
       }
       return filled;
     },
+    skip(count) {
+      let left = count;
+      while (left > 0) {
+        if (slab === null || taken === slab.length) {
+          const next = slabs.next();
+          if (next.done === true) return;
+          const size = next.value.reduce((product, [from, to]) => product * (to - from), entry.complex ? 2 : 1);
+          if (size <= left) {
+            left -= size;
+            continue;
+          }
+          slab = readSlab(entry, next.value, path);
+          taken = 0;
+        }
+        const step = Math.min(left, slab.length - taken);
+        taken += step;
+        left -= step;
+      }
+    },
     close() {
       slab = null;
     },

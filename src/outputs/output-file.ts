@@ -39,6 +39,8 @@ export interface ArrayCursor {
    * @throws {OutputProblem} when the file ends early or cannot be decoded
    */
   fill(into: Float64Array): number;
+  /** Passes over the next values; absent where that would cost as much as reading them. */
+  skip?(count: number): void;
   close(): void;
 }
 

@@ -100,6 +100,20 @@ export function storedCursor(source: ByteSource, array: StoredArray): ArrayCurso
       }
       return filled;
     },
+    skip(count) {
+      let left = count;
+      while (left > 0) {
+        if (run === null || done === run.count) {
+          const next = runs.next();
+          if (next.done === true) return;
+          run = next.value;
+          done = 0;
+        }
+        const step = Math.min(left, run.count - done);
+        done += step;
+        left -= step;
+      }
+    },
     close() {},
   };
 }
@@ -154,6 +168,14 @@ export function stridedCursor(source: ByteSource, array: StridedArray): ArrayCur
         filled += count;
       }
       return filled;
+    },
+    skip(count) {
+      const inHand = Math.min(count, ready - taken);
+      taken += inHand;
+      const left = count - inHand;
+      row += Math.floor(left / array.perRow);
+      const within = left % array.perRow;
+      if (within > 0 && refill()) taken += within;
     },
     close() {},
   };

@@ -1,4 +1,4 @@
-/** Deviations as terminal text: a line each, the worst first in no class but in the order given; worst places and reasons below. */
+/** Deviations as terminal text: a line each, in the order given; worst places and reasons below. */
 import type { Deviation, DeviationClass } from '../model/deviation.ts';
 import { DEVIATION_CLASSES } from '../model/deviation.ts';
 import { printable } from '../model/printable.ts';
@@ -36,7 +36,7 @@ export function deviationsText(deviations: readonly Deviation[], options: TextOp
   deviations.forEach((deviation, index) => {
     const text = row(names[index]!, deviation.class, figures(deviation).slice(HEADINGS.length - cells));
     lines.push(text.replace(deviation.class, paint(deviation.class, STYLE_OF[deviation.class], options.colour)));
-    for (const remark of remarks(deviation)) lines.push(wrap(`    ${remark}`, options.width, '      '));
+    for (const remark of remarks(deviation)) lines.push(`    ${wrap(remark, options.width - 6, '      ')}`);
   });
   return `${lines.join('\n')}\n\n${countClasses(deviations)}\n`;
 }
