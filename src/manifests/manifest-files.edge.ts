@@ -3,6 +3,7 @@ import { existsSync, readdirSync, readFileSync, realpathSync } from 'node:fs';
 import { basename, dirname, join, relative, resolve, sep } from 'node:path';
 import type { Finding } from '../model/finding.ts';
 import { shippedManifests } from '../sources/assets.edge.ts';
+import { findRepository } from '../sources/find-repository.edge.ts';
 import type { SourceTree } from '../sources/tree.ts';
 
 export interface ManifestFiles {
@@ -91,9 +92,13 @@ export function readShippedContracts(): Map<string, Uint8Array> {
 function placeOf(file: string): AssemblyPlace {
   const real = realpathSync(file);
   const folder = dirname(real);
+  const repository = findRepository(folder);
   const root =
-    [...upward(folder)].find((candidate) => existsSync(join(candidate, '.git'))) ??
-    (basename(folder) === 'manifests' ? dirname(folder) : folder);
+    repository !== null && !repository.bare
+      ? repository.root
+      : basename(folder) === 'manifests'
+        ? dirname(folder)
+        : folder;
   const slashes = (path: string) => path.split(sep).join('/');
   return { root, folder: slashes(relative(root, folder)), file: slashes(relative(root, real)) };
 }

@@ -16,10 +16,16 @@ function put(path: string): void {
   writeFileSync(join(root, path), 'assembly: x\n');
 }
 
+function makeRepository(): void {
+  mkdirSync(join(root, '.git/objects'), { recursive: true });
+  mkdirSync(join(root, '.git/refs'));
+  writeFileSync(join(root, '.git/HEAD'), 'ref: refs/heads/main\n');
+}
+
 describe('an assembly', () => {
   it('is found from a folder deep below its code', () => {
     put('manifests/assembly.yaml');
-    mkdirSync(join(root, '.git'));
+    makeRepository();
     mkdirSync(join(root, 'src/eos'), { recursive: true });
     expect(findAssembly(join(root, 'src/eos'))).toEqual({ root, folder: 'manifests', file: 'manifests/assembly.yaml' });
   });
@@ -31,7 +37,7 @@ describe('an assembly', () => {
   });
 
   it('in a part of a repository has its paths from the root of the repository', () => {
-    mkdirSync(join(root, '.git'));
+    makeRepository();
     put('codes/cloud/manifests/assembly.yaml');
     expect(findAssembly(join(root, 'codes/cloud'))).toEqual({
       root,
