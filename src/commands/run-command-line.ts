@@ -1,5 +1,7 @@
 /** Finds the command named on the command line, parses its options, runs it, and turns what it throws into a message and an exit status. */
 import { parseArgs } from 'node:util';
+import { printable } from '../model/printable.ts';
+import { SourceProblem } from '../sources/source-problem.ts';
 import {
   COMMON_OPTIONS,
   type Command,
@@ -48,6 +50,10 @@ export async function dispatch(words: readonly string[], surroundings: Surroundi
     }
     return await command.run(invocation, surroundings);
   } catch (error) {
+    if (error instanceof SourceProblem) {
+      surroundings.err(`mortise: ${printable(error.message)}\nNext: ${printable(error.next)}\n`);
+      return EXIT.usage;
+    }
     if (!(error instanceof UsageError)) throw error;
     surroundings.err(`mortise: ${error.message}\nNext: run "mortise help" for the commands and their options.\n`);
     return EXIT.usage;
