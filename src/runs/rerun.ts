@@ -52,6 +52,7 @@ export interface RerunRequest {
 export async function rerunCases(request: RerunRequest): Promise<CaseOutcome[]> {
   const cases = casesNamed(request.manifests, request.cases ?? []);
   return withLaboratory(request, async (laboratory) => {
+    const tree = laboratory.tree(request.at ?? null);
     const say = request.onEvent ?? (() => {});
     const planned = cases.map((one) => ({
       case: one.case,
@@ -60,7 +61,7 @@ export async function rerunCases(request: RerunRequest): Promise<CaseOutcome[]> 
     say({ what: 'planned', cases: planned, atOnce: laboratory.executor.atOnce });
     let done = 0;
     const one = async (theCase: Case): Promise<CaseOutcome> => {
-      const outcome = await laboratory.examine(theCase, request.exchanges ?? []);
+      const outcome = await tree.examine(theCase, request.exchanges ?? []);
       done++;
       say({ what: 'finished', case: theCase.case, state: outcome.state, class: outcome.class, done, of: cases.length });
       return outcome;
@@ -79,18 +80,18 @@ export async function rerunCases(request: RerunRequest): Promise<CaseOutcome[]> 
   });
 }
 
-/** A store, an executor and one listed tree, open for as long as `work` takes; everything is given back whatever happens. */
+export type LaboratoryRequest = Omit<RerunRequest, 'cases' | 'exchanges' | 'at'>;
+
+/** A store and an executor, open for as long as `work` takes; everything is given back whatever happens. */
 export async function withLaboratory<T>(
-  request: Omit<RerunRequest, 'cases' | 'exchanges'>,
+  request: LaboratoryRequest,
   work: (laboratory: Laboratory) => Promise<T>,
 ): Promise<T> {
-  const folder = request.manifestFolder ?? 'manifests';
-  const listing = listTree(request.root, request.at ?? null, declaredFiles(request.manifests));
   const store = openStore(request.store ?? storeFolder(request.root, request.env));
   try {
     const executor = executorOf(request, store);
     try {
-      return await work(new Laboratory(request, listing, store, executor, folder));
+      return await work(new Laboratory(request, store, executor));
     } finally {
       await executor.close();
     }
@@ -99,34 +100,49 @@ export async function withLaboratory<T>(
   }
 }
 
-/** Runs and compares cases of one tree. Made by `withLaboratory`. */
+/** Where trees are built and run. Made by `withLaboratory`. */
 export class Laboratory {
   readonly store: Store;
   readonly executor: Executor;
-  readonly listing: TreeListing;
-  private readonly request: Omit<RerunRequest, 'cases' | 'exchanges'>;
-  private readonly manifestFolder: string;
-  private readonly workshop: Workshop;
+  readonly request: LaboratoryRequest;
+  readonly manifestFolder: string;
+  readonly workshop: Workshop;
 
-  constructor(
-    request: Omit<RerunRequest, 'cases' | 'exchanges'>,
-    listing: TreeListing,
-    store: Store,
-    executor: Executor,
-    manifestFolder: string,
-  ) {
+  constructor(request: LaboratoryRequest, store: Store, executor: Executor) {
     this.request = request;
-    this.listing = listing;
     this.store = store;
     this.executor = executor;
-    this.manifestFolder = manifestFolder;
+    this.manifestFolder = request.manifestFolder ?? 'manifests';
     this.workshop = new Workshop({
       store,
       executor,
       signal: request.signal ?? new AbortController().signal,
       say: request.onEvent ?? (() => {}),
-      manifestFolder,
+      manifestFolder: this.manifestFolder,
     });
+  }
+
+  /**
+   * One tree with the manifests it is built and run by.
+   *
+   * @param revision  null for the work tree
+   * @throws {GitFailed} when the revision can't be read
+   */
+  tree(revision: string | null, manifests: ManifestSet = this.request.manifests): TreeRuns {
+    return new TreeRuns(this, listTree(this.request.root, revision, declaredFiles(manifests)), manifests);
+  }
+}
+
+/** Runs and compares the cases of one tree. */
+export class TreeRuns {
+  readonly listing: TreeListing;
+  readonly manifests: ManifestSet;
+  private readonly laboratory: Laboratory;
+
+  constructor(laboratory: Laboratory, listing: TreeListing, manifests: ManifestSet) {
+    this.laboratory = laboratory;
+    this.listing = listing;
+    this.manifests = manifests;
   }
 
   /** Builds and runs one case, without comparing it. */
@@ -139,7 +155,7 @@ export class Laboratory {
     let words: string[];
     let build: string[] | null;
     try {
-      configuration = configurationOf(this.request.manifests, theCase, exchanges);
+      configuration = configurationOf(this.manifests, theCase, exchanges);
       const select = Object.fromEntries(
         Object.entries(configuration.select).map(([name, value]) => [`select.${name}`, value]),
       );
@@ -154,9 +170,9 @@ export class Laboratory {
       if (!(error instanceof CommandMistake || error instanceof NotDeclared)) throw error;
       return { result: { state: 'mistaken', why: error.message, logTail: '' }, produced: null };
     }
-    const environment = cleanEnvironment(this.request.env, configuration.pass, configuration.set);
+    const environment = cleanEnvironment(this.laboratory.request.env, configuration.pass, configuration.set);
     const limits = this.limits();
-    const result = await this.workshop.run({
+    const result = await this.laboratory.workshop.run({
       case: theCase.case,
       words,
       build,
@@ -169,18 +185,18 @@ export class Laboratory {
       listing: this.listing,
       replaced: options.replaced ?? new Map(),
       repeat: options.repeat ?? 0,
-      fresh: this.request.fresh ?? false,
+      fresh: this.laboratory.request.fresh ?? false,
       keepFailures: options.keepFailures ?? false,
     });
     const produced = await producedBy({
-      manifests: this.request.manifests,
+      manifests: this.manifests,
       listing: this.listing,
       configuration,
       command: words,
       build,
       inputs: theCase.inputs ?? [],
       environment,
-      executor: this.executor.kind,
+      executor: this.laboratory.executor.kind,
     });
     return { result, produced };
   }
@@ -216,7 +232,12 @@ export class Laboratory {
       const why = `the run ended well but did not write ${missing.map((output) => output.file).join(', ')} under {out}`;
       return { ...ran, state: 'failed', why };
     }
-    const reference = await referencePlace(this.listing, this.manifestFolder, theCase.case, this.store.scratch);
+    const reference = await referencePlace(
+      this.listing,
+      this.laboratory.manifestFolder,
+      theCase.case,
+      this.laboratory.store.scratch,
+    );
     if (!referenceStands(reference)) {
       const next = `record one with "mortise rerun ${theCase.case} --record --reason TEXT"`;
       return { ...ran, state: 'no reference', why: `no reference was recorded; ${next}` };
@@ -228,7 +249,7 @@ export class Laboratory {
   }
 
   private limits(): { timeLimitSeconds: number | null; memoryMegabytes: number | null } {
-    const declared = declaredExecutor(this.request);
+    const declared = declaredExecutor(this.laboratory.request);
     return {
       timeLimitSeconds: declared?.['time-limit-seconds'] ?? null,
       memoryMegabytes: declared?.['memory-megabytes'] ?? null,
@@ -257,7 +278,7 @@ function declaredExecutor(request: Pick<RerunRequest, 'manifests' | 'executor'>)
   return one;
 }
 
-function executorOf(request: Omit<RerunRequest, 'cases' | 'exchanges'>, store: Store): Executor {
+function executorOf(request: LaboratoryRequest, store: Store): Executor {
   const declared = declaredExecutor(request);
   const atOnce = request.jobs ?? declared?.['at-once'];
   if (declared?.kind === 'slurm') throw new NotDeclared('executors of kind slurm cannot be used yet');

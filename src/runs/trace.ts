@@ -15,7 +15,7 @@ export interface TraceQuestion<M> {
   /** null for a commit that can't be built or run. Called at most once a commit, several calls at the same time. */
   measure(commit: string): Promise<M | null>;
   /** How far apart two measurements are, in tolerances: above the threshold the quantity moved. Not comparable is Infinity. */
-  distance(a: M, b: M, quantity: string): number;
+  distance(a: M, b: M, quantity: string): number | Promise<number>;
   /** 1 when absent; above it where repeated runs of one commit differ by nearly as much. */
   threshold?(quantity: string): number;
 }
@@ -93,8 +93,10 @@ export async function traceChain<M>(question: TraceQuestion<M>): Promise<ChainTr
   /** `shares`: by quantity, the share of the threshold at which it is followed here; 1 unless it creeps. */
   const split = async (low: number, high: number, shares: ReadonlyMap<string, number>): Promise<void> => {
     const [a, b] = [state[low] as M, state[high] as M];
-    const moved = quantities.filter((one) => question.distance(a, b, one) > limit(one, shares));
-    if (moved.length === 0 || low >= high) return;
+    if (low >= high) return;
+    const whole = await distances(a, b);
+    const moved = quantities.filter((one) => whole.get(one)! > limit(one, shares));
+    if (moved.length === 0) return;
     const middle = high - low > 1 ? await measurableBetween(low, high, state, measure) : null;
     if (middle === null) {
       for (const quantity of moved) {
@@ -103,7 +105,7 @@ export async function traceChain<M>(question: TraceQuestion<M>): Promise<ChainTr
           before: commits[low]!,
           after: commits[high]!,
           suspects: commits.slice(low + 1, high + 1),
-          tolerances: question.distance(a, b, quantity),
+          tolerances: whole.get(quantity)!,
           creeping: shares.has(quantity),
           at: high,
         });
@@ -111,9 +113,10 @@ export async function traceChain<M>(question: TraceQuestion<M>): Promise<ChainTr
       return;
     }
     const c = state[middle] as M;
+    const [first, second] = await Promise.all([distances(a, c), distances(c, b)]);
     const lower = new Map(shares);
     for (const quantity of moved) {
-      const most = Math.max(question.distance(a, c, quantity), question.distance(c, b, quantity));
+      const most = Math.max(first.get(quantity)!, second.get(quantity)!);
       let share = shares.get(quantity) ?? 1;
       // Neither half moved enough by itself: the quantity creeps. Follow it down to a quarter of the greater part, so that
       // steps of about the same size are all found, without asking about what is far below them.
@@ -122,6 +125,10 @@ export async function traceChain<M>(question: TraceQuestion<M>): Promise<ChainTr
     }
     await Promise.all([split(low, middle, lower), split(middle, high, lower)]);
   };
+  const distances = async (a: M, b: M): Promise<Map<string, number>> =>
+    new Map(
+      await Promise.all(quantities.map(async (one) => [one, await question.distance(a, b, one)] as [string, number])),
+    );
   const threshold = (quantity: string) => question.threshold?.(quantity) ?? 1;
   const limit = (quantity: string, shares: ReadonlyMap<string, number>) =>
     threshold(quantity) * (shares.get(quantity) ?? 1);
