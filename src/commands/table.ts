@@ -3,4 +3,6 @@ import type { Command } from './command.ts';
 
 export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command }>>> = {
   compare: () => import('./compare.ts'),
+  register: () => import('./register.ts'),
+  notice: () => import('./notice.ts'),
 };

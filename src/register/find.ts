@@ -1,7 +1,7 @@
 /** What is asked of the register, as data, and whether an entry answers it. The index answers the same questions faster; this is its judge. */
 import semver from 'semver';
 import type { StandingEntry } from './chain.ts';
-import { canonicalOrcid, sameDoi } from './identifiers.ts';
+import { canonicalOrcid, readDoi, sameDoi } from './identifiers.ts';
 import type { Result } from './record.ts';
 
 /** Every part given must be true of an entry. */
@@ -140,6 +140,6 @@ export function isPerson([name, orcid]: readonly [string, string | null], asked:
 }
 
 function isResult(result: Result, asked: string): boolean {
-  if (result.doi !== undefined && sameDoi(result.doi, asked)) return true;
-  return Object.values(result).some((value) => holdsWords(String(value), asked));
+  if (readDoi(asked) !== null) return result.doi !== undefined && sameDoi(result.doi, asked);
+  return holdsWords(resultText(result), asked);
 }
