@@ -10,9 +10,8 @@ import { type Finding, sortFindings } from '../model/finding.ts';
 import type { ManifestSet } from '../model/manifest.ts';
 import { findRepository } from '../sources/find-repository.edge.ts';
 import { openTree } from '../sources/open-tree.edge.ts';
-import { SourceProblem } from '../sources/source-problem.ts';
 import type { SourceTree } from '../sources/tree.ts';
-import { type Invocation, type Surroundings, UsageError } from './command.ts';
+import type { Invocation, Surroundings } from './command.ts';
 
 export interface OpenedCode {
   readonly place: AssemblyPlace;
@@ -26,7 +25,7 @@ export interface OpenedCode {
  * Opens the code that a command was called on, honouring `--assembly` and `--at`.
  *
  * @returns the finding alone when there is no assembly
- * @throws {UsageError} when the revision is not known
+ * @throws {SourceProblem} when the revision is not known; the command line answers it as a mistake in the call
  */
 export async function openCode(
   invocation: Invocation,
@@ -36,10 +35,7 @@ export async function openCode(
   const given = typeof assembly === 'string' ? assembly : undefined;
   const place = findAssembly(surroundings.cwd, given) ?? (at === undefined ? null : inHistory(surroundings.cwd, given));
   if (place === null) return { place: null, findings: [absent(given)] };
-  const tree = await openTree(place.root, typeof at === 'string' ? at : undefined).catch((error: unknown) => {
-    if (error instanceof SourceProblem) throw new UsageError(`${error.message} ${error.next}`, { cause: error });
-    throw error;
-  });
+  const tree = await openTree(place.root, typeof at === 'string' ? at : undefined);
   const { files, findings } = await readManifestFiles(tree, place.folder);
   const loaded = loadManifests(files, {
     folder: place.folder,

@@ -1,7 +1,7 @@
 /** What comments, docstrings and attributes say of a quantity, against what the manifest declares. */
 import { contractReference } from '../manifests/contract-reference.ts';
 import type { Finding } from '../model/finding.ts';
-import type { Claim, Language } from '../model/interface.ts';
+import type { Claim } from '../model/interface.ts';
 import type { Contract, ManifestSet, Offer } from '../model/manifest.ts';
 import { numberText } from './domains.ts';
 import { findingAt, firstThere } from './finding-at.ts';
@@ -16,30 +16,28 @@ export function checkClaims(module: LinkedModule, set: ManifestSet): Finding[] {
     return Object.entries(offer.arguments ?? {}).flatMap(([quantity, name]) => {
       const carrier = module.carrier(offer, name);
       if (carrier === null || contract.quantities[quantity] === undefined) return [];
-      return claimsOn(module, offer, carrier).flatMap(({ file, claim }) =>
+      return claimsOn(module, carrier).flatMap(({ file, claim }) =>
         contradiction(module, offer, at, contract, quantity, file, claim),
       );
     });
   });
 }
 
-function claimsOn(module: LinkedModule, offer: Offer, carrier: Carrier): { file: string; claim: Claim }[] {
-  const found = offer.procedure === undefined ? null : module.procedure(offer.procedure);
-  const local = carrier.how === 'argument' || carrier.how === 'result';
+/** Claims about the thing itself: of its name, and, where it belongs to a procedure or type, of that one's. */
+function claimsOn(module: LinkedModule, carrier: Carrier): { file: string; claim: Claim }[] {
   const bare = lastPart(carrier.name.split('/').at(-1) ?? carrier.name);
-  return module.files.flatMap(([file, read]) =>
-    read.claims
-      .filter(
-        (claim) =>
-          sameName(lastPart(claim.name), bare, read.language) &&
-          (!local || (found !== null && file === found.file && belongs(claim, found.procedure.name, read.language))),
-      )
-      .map((claim) => ({ file, claim })),
-  );
-}
-
-function belongs(claim: Claim, procedure: string, language: Language): boolean {
-  return claim.parent !== null && sameName(lastPart(claim.parent), procedure, language);
+  const owned = carrier.how === 'argument' || carrier.how === 'result' || carrier.how === 'field';
+  return module.files
+    .filter(([file]) => !owned || carrier.place === null || carrier.place.file === file)
+    .flatMap(([file, read]) =>
+      read.claims
+        .filter(
+          (claim) =>
+            sameName(lastPart(claim.name), bare, read.language) &&
+            (!owned || sameName(lastPart(claim.parent ?? ''), carrier.owner ?? '', read.language)),
+        )
+        .map((claim) => ({ file, claim })),
+    );
 }
 
 function contradiction(

@@ -59,6 +59,8 @@ export interface Half {
 export interface Carrier {
   readonly how: 'argument' | 'result' | 'field' | 'common' | 'variable' | 'constant' | 'dataset';
   readonly name: string;
+  /** The procedure, type or COMMON block that it belongs to. */
+  readonly owner: string | null;
   /** From 1, for an argument. */
   readonly position: number | null;
   readonly type: string;

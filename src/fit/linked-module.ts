@@ -112,54 +112,58 @@ export class LinkedModule {
   private argument({ file, procedure }: FoundProcedure, name: string): Carrier | null {
     const language = this.languageOf(file);
     const index = procedure.args.findIndex((one) => sameName(one.name, name, language));
-    if (index >= 0) return this.carrierOf(file, procedure.args[index]!, 'argument', index + 1);
+    if (index >= 0) return this.carrierOf(file, procedure.args[index]!, 'argument', procedure.name, index + 1);
     // `state.rho`: a field of an argument that is a record.
     const [head, ...path] = name.split(/[.%]/);
     const holder = procedure.args.find((one) => sameName(one.name, head ?? '', language));
     const field = holder === undefined ? null : this.fieldOf(holder.type, path);
-    return field === null ? null : this.carrierOf(field.file, field.declared, 'field', null, name);
+    return field === null ? null : this.carrierOf(field.file, field.declared, 'field', field.owner, null, name);
   }
 
   private result({ file, procedure }: FoundProcedure, name: string): Carrier | null {
     const { result } = procedure;
     const language = this.languageOf(file);
+    const unseen = { how: 'result', name, owner: procedure.name, position: null, bytes: null, rank: null } as const;
     if (procedure.returns?.some((one) => sameName(one, name, language)) === true) {
-      return {
-        how: 'result',
-        name,
-        position: null,
-        type: 'unknown',
-        bytes: null,
-        rank: null,
-        intent: 'out',
-        place: this.place(file, procedure),
-      };
+      return { ...unseen, type: 'unknown', intent: 'out', place: this.place(file, procedure) };
     }
     if (result === null) return null;
     if (name === 'result' || sameName(result.name, name, language) || sameName(procedure.name, name, language)) {
-      return this.carrierOf(file, result, 'result', null, name);
+      return this.carrierOf(file, result, 'result', procedure.name, null, name);
     }
     const field = this.fieldOf(result.type, name.split(/[.%]/));
-    return field === null ? null : this.carrierOf(field.file, field.declared, 'result', null, name);
+    if (field !== null) return this.carrierOf(field.file, field.declared, 'result', field.owner, null, name);
+    // `{ pressure: number; energy: number }` written out as the type of the result.
+    const inline = result.type.startsWith('{') ? inlineField(result.type, name) : null;
+    return inline === null ? null : { ...unseen, type: inline, intent: 'out', place: this.place(file, result) };
   }
 
   /** Follows a path of field names from a type that one of the files defines. */
-  private fieldOf(type: string, path: readonly string[]): { file: string; declared: Declared } | null {
+  private fieldOf(type: string, path: readonly string[]): { file: string; owner: string; declared: Declared } | null {
     const bare = /^(?:type|class)\s*\(\s*(\w+)\s*\)$/i.exec(type)?.[1] ?? type.replace(/[^\w].*$/, '');
     if (path.length === 0 || bare === '') return null;
     for (const [file, read] of this.files) {
       const definition = read.types.find((one) => sameName(one.name, bare, read.language));
       const declared = definition?.fields.find((one) => sameName(one.name, path[0]!, read.language));
       if (declared === undefined) continue;
-      return path.length === 1 ? { file, declared } : this.fieldOf(declared.type, path.slice(1));
+      return path.length === 1
+        ? { file, owner: definition!.name, declared }
+        : this.fieldOf(declared.type, path.slice(1));
     }
     return null;
+  }
+
+  /** True when one of the files defines the type, so that all of its fields are known. */
+  definesType(type: string): boolean {
+    return this.files.some(([, read]) =>
+      read.types.some((one) => one.fields.length > 0 && sameName(one.name, type, read.language)),
+    );
   }
 
   private field(name: string): Carrier | null {
     const [type, ...path] = name.split(/[.%]/);
     const field = path.length === 0 ? null : this.fieldOf(type ?? '', path);
-    return field === null ? null : this.carrierOf(field.file, field.declared, 'field', null, name);
+    return field === null ? null : this.carrierOf(field.file, field.declared, 'field', field.owner, null, name);
   }
 
   /** `block/member`, or the member alone when one block has it. */
@@ -172,7 +176,7 @@ export class LinkedModule {
       for (const one of read.commons) {
         if (block !== undefined && !sameName(one.name, block, read.language)) continue;
         const declared = one.members.find((each) => sameName(each.name, member, read.language));
-        if (declared !== undefined) return this.carrierOf(file, declared, 'common', null, name);
+        if (declared !== undefined) return this.carrierOf(file, declared, 'common', one.name, null, name);
       }
     }
     return null;
@@ -182,18 +186,38 @@ export class LinkedModule {
     const bare = lastPart(name);
     for (const [file, read] of this.files) {
       const variable = read.variables.find((one) => sameName(one.name, bare, read.language));
-      if (variable !== undefined) return this.carrierOf(file, variable, 'variable', null, name);
+      if (variable !== undefined) return this.carrierOf(file, variable, 'variable', variable.parent, null, name);
       const constant = read.constants.find((one) => sameName(one.name, bare, read.language));
       if (constant !== undefined) {
         const { type, bytes } = constant;
         const place = this.place(file, constant);
-        return { how: 'constant', name, position: null, type, bytes, rank: 0, intent: null, place };
+        return {
+          how: 'constant',
+          name,
+          owner: constant.parent,
+          position: null,
+          type,
+          bytes,
+          rank: 0,
+          intent: null,
+          place,
+        };
       }
       const dataset = read.datasets.find((one) => one.name.replace(/^\//, '') === name.replace(/^\//, ''));
       if (dataset !== undefined) {
         const { type, bytes } = dataset;
         const place = this.place(file, { line: 1, column: 1 });
-        return { how: 'dataset', name, position: null, type, bytes, rank: dataset.shape.length, intent: null, place };
+        return {
+          how: 'dataset',
+          name,
+          owner: null,
+          position: null,
+          type,
+          bytes,
+          rank: dataset.shape.length,
+          intent: null,
+          place,
+        };
       }
     }
     return null;
@@ -203,6 +227,7 @@ export class LinkedModule {
     file: string,
     declared: Declared,
     how: Carrier['how'],
+    owner: string | null,
     position: number | null,
     name = declared.name,
   ): Carrier {
@@ -210,6 +235,7 @@ export class LinkedModule {
     return {
       how,
       name,
+      owner,
       position,
       type: declared.type,
       bytes: this.bytesOf(declared),
@@ -234,6 +260,15 @@ export class LinkedModule {
     const place = { file, line: at.line, column: at.column };
     return this.revision === undefined ? place : { ...place, revision: this.revision };
   }
+}
+
+/** The type of a member in an object type that is written out in one piece. */
+function inlineField(type: string, name: string): string | null {
+  for (const member of type.slice(1, -1).split(/[;,\n]/)) {
+    const match = /^\s*(?:readonly\s+)?([\w$]+)\??\s*:\s*(.+?)\s*$/.exec(member);
+    if (match?.[1] === name) return match[2]!;
+  }
+  return null;
 }
 
 /** Names as the language compares them: Fortran without regard to case. */

@@ -414,6 +414,66 @@ describe('the source', () => {
   });
 });
 
+describe('a module in TypeScript', () => {
+  const quiet = file('fortran', {});
+  const code = (result: { type: string } | null) =>
+    file('typescript', {
+      procedures: [
+        procedure('eos_ionising', [argument('rho', { type: 'number' }), argument('temp', { type: 'number' })], {
+          kind: 'function',
+          result: result === null ? null : argument('eos_ionising', result),
+        }),
+      ],
+      types: [
+        {
+          name: 'GasState',
+          kind: 'interface',
+          parent: null,
+          fields: [argument('pres', { type: 'number' }), argument('eint', { type: 'number' })],
+          bindings: [],
+          attributes: [],
+          line: 1,
+          column: 1,
+        },
+      ],
+      claims: [
+        {
+          name: 'eint',
+          parent: 'GasState',
+          what: 'unit',
+          value: 'J/kg',
+          text: 'J/kg',
+          from: 'comment',
+          line: 3,
+          column: 5,
+        },
+      ],
+    });
+  const eos = { [EOS]: ['language: fortran', 'language: typescript'] as const };
+
+  it('gives what comes out as fields of its result, with the claims on them', () => {
+    const { joints, findings } = fitted(eos, {
+      'src/eos/ionising.f90': code({ type: 'GasState' }),
+      'src/hydro.ts': quiet,
+    });
+    expect(joints[0]!.rows.map((one) => one.offering.carrier?.how)).toEqual([
+      'argument',
+      'argument',
+      'result',
+      'result',
+    ]);
+    expect(findings.map((one) => [one.kind, one.gravity])).toEqual([['claim-contradicts', 'caution']]);
+  });
+
+  it('may write the type of its result out in place, or leave it to be inferred', () => {
+    for (const result of [{ type: '{ pres: number; eint?: number }' }, null]) {
+      expect(fitted(eos, { 'src/eos/ionising.f90': code(result), 'src/hydro.ts': quiet }).findings).toEqual([]);
+    }
+    const lacks = fitted(eos, { 'src/eos/ionising.f90': code({ type: '{ pres: number }' }), 'src/hydro.ts': quiet });
+    expect(lacks.findings.map((one) => one.kind)).toEqual(['argument-missing']);
+  });
+});
+
 describe('tables', () => {
   const table = (axis: string) => ({
     [EOS]: [
