@@ -1,6 +1,7 @@
 /** Files named on the command line. */
-import { readFile } from 'node:fs/promises';
-import { resolve } from 'node:path';
+import { randomBytes } from 'node:crypto';
+import { readFile, rename, rm, writeFile } from 'node:fs/promises';
+import { dirname, join, resolve } from 'node:path';
 import { UsageError } from './command.ts';
 
 /** @throws {UsageError} saying which file and why */
@@ -10,6 +11,21 @@ export async function readWhole(cwd: string, file: string): Promise<Uint8Array> 
   } catch (error) {
     throw new UsageError(
       `${file} could not be read: ${(error as NodeJS.ErrnoException).code ?? (error as Error).message}`,
+    );
+  }
+}
+
+/** Writes a file whole or not at all: a reader never meets half of it. @throws {UsageError} saying which file and why */
+export async function writeWhole(cwd: string, file: string, text: string): Promise<void> {
+  const target = resolve(cwd, file);
+  const temporary = join(dirname(target), `.${randomBytes(6).toString('hex')}.part`);
+  try {
+    await writeFile(temporary, text);
+    await rename(temporary, target);
+  } catch (error) {
+    await rm(temporary, { force: true });
+    throw new UsageError(
+      `${file} could not be written: ${(error as NodeJS.ErrnoException).code ?? (error as Error).message}`,
     );
   }
 }

@@ -5,4 +5,7 @@ export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command 
   compare: () => import('./compare.ts'),
   register: () => import('./register.ts'),
   notice: () => import('./notice.ts'),
+  rerun: () => import('./rerun.ts'),
+  swap: () => import('./swap.ts'),
+  trace: () => import('./trace.ts'),
 };

@@ -1,0 +1,139 @@
+/** Asks every earlier stage about one code and brings the answers together for `audit`. Holds no judgement of its own. */
+import { createHash } from 'node:crypto';
+import { fitAssembly } from '../fit/fit-assembly.ts';
+import type { Joint } from '../fit/joint.ts';
+import { moduleInterfaces } from '../fit/module-interfaces.ts';
+import type { Finding } from '../model/finding.ts';
+import type { FileInterface } from '../model/interface.ts';
+import type { ManifestSet } from '../model/manifest.ts';
+import { readSource } from '../readers/read-source.ts';
+import type { CaseOutcome } from '../runs/case-outcome.ts';
+import { contentId } from '../runs/key.ts';
+import { thisMachine } from '../runs/machine.edge.ts';
+import { readReference } from '../runs/reference-files.edge.ts';
+import { ReferenceDamaged, type ReferenceRecord } from '../runs/reference-record.ts';
+import { rerunCases } from '../runs/rerun.ts';
+import type { RunEvent } from '../runs/run-event.ts';
+import { listTree } from '../runs/tree-files.edge.ts';
+import { parseCommit } from '../sources/git-object.ts';
+import { openRepository } from '../sources/open-tree.edge.ts';
+import type { SourceTree } from '../sources/tree.ts';
+import type { Gathered } from './audit.ts';
+import { pluggedModules } from './validated.ts';
+
+export const STEPS = ['manifests', 'joints', 'constants', 'history', 'cases', 'register'] as const;
+export type AuditStep = (typeof STEPS)[number];
+export type AuditEvent = { readonly what: 'step'; readonly step: AuditStep } | RunEvent;
+
+export interface AuditRequest {
+  readonly root: string;
+  readonly tree: SourceTree;
+  readonly manifests: ManifestSet;
+  readonly manifestFolder: string;
+  /** About the manifests themselves. */
+  readonly findings: readonly Finding[];
+  readonly env: Readonly<Record<string, string | undefined>>;
+  readonly jobs?: number;
+  readonly executor?: string;
+  /** False leaves the cases alone: only what can be known without running is. */
+  readonly run: boolean;
+  readonly signal: AbortSignal;
+  readonly onEvent?: (event: AuditEvent) => void;
+}
+
+export interface GatheredCode extends Gathered {
+  readonly joints: readonly Joint[];
+  readonly interfaces: ReadonlyMap<string, FileInterface>;
+}
+
+export async function gather(request: AuditRequest): Promise<GatheredCode> {
+  const { manifests, tree, root, manifestFolder } = request;
+  const say = request.onEvent ?? (() => {});
+  const findings: Finding[] = [...request.findings];
+
+  say({ what: 'step', step: 'joints' });
+  const interfaces = await moduleInterfaces(
+    manifests,
+    tree,
+    (path, bytes) => readSource(path, bytes),
+    manifests.modules.keys(),
+  );
+  const fit = fitAssembly(manifests, interfaces);
+  findings.push(...fit.findings);
+
+  const listing = listTree(
+    root,
+    tree.revision,
+    [...manifests.modules.values()].map((one) => one.file),
+  );
+  const ids = new Map(listing.files.map((file) => [file.path, file.id]));
+
+  let outcomes: readonly CaseOutcome[] = [];
+  if (request.run) {
+    say({ what: 'step', step: 'cases' });
+    outcomes = await rerunCases({
+      root,
+      manifests,
+      manifestFolder,
+      at: tree.revision,
+      env: request.env,
+      signal: request.signal,
+      onEvent: say,
+      ...(request.jobs === undefined ? {} : { jobs: request.jobs }),
+      ...(request.executor === undefined ? {} : { executor: request.executor }),
+    });
+  }
+  const references: ReferenceRecord[] = [];
+  for (const name of manifests.cases.keys()) {
+    try {
+      const record = readReference(root, name, manifestFolder);
+      if (record !== null) references.push(record);
+    } catch (error) {
+      // The outcome of the case tells of a damaged reference already.
+      if (!(error instanceof ReferenceDamaged)) throw error;
+    }
+  }
+  return {
+    manifests,
+    revision: listing.commit,
+    tree: await treeIdOf(root, listing.commit),
+    changed: listing.changed,
+    contentOf: (file) => contentId(ids.get(file)),
+    tableDigests: await tableDigests(manifests, tree),
+    outcomes,
+    references,
+    findings,
+    environment: environmentHere(),
+    now: new Date().toISOString(),
+    joints: fit.joints,
+    interfaces,
+  };
+}
+
+/** The id of the tree that is checked out at a commit; null outside git or when the clone lacks it. */
+export async function treeIdOf(root: string, commit: string | null): Promise<string | null> {
+  if (commit === null) return null;
+  const repository = openRepository(root);
+  try {
+    const object = await repository.object(commit);
+    return object?.type === 'commit' ? parseCommit(object.bytes).tree : null;
+  } finally {
+    repository.close();
+  }
+}
+
+async function tableDigests(manifests: ManifestSet, tree: SourceTree): Promise<Map<string, string>> {
+  const digests = new Map<string, string>();
+  for (const name of pluggedModules(manifests)) {
+    for (const { file } of manifests.modules.get(name)?.value.tables ?? []) {
+      const bytes = await tree.read(file);
+      if (bytes !== null) digests.set(file, `sha256:${createHash('sha256').update(bytes).digest('hex')}`);
+    }
+  }
+  return digests;
+}
+
+export function environmentHere(): Record<string, string> {
+  const { system, processor, library } = thisMachine();
+  return { system, processor, ...(library === null ? {} : { library }), runtime: `node ${process.version}` };
+}

@@ -1,0 +1,30 @@
+/** `--report FILE`: the report in the form that the file's suffix names. */
+import type { Report } from '../report/report.ts';
+import { reportJson } from '../report/report-json.ts';
+import { reportText } from '../report/report-text.ts';
+import { type Surroundings, UsageError } from './command.ts';
+import { writeWhole } from './files.edge.ts';
+import { version } from './version.ts';
+
+type Form = (report: Report) => string | Promise<string>;
+
+const FORMS: Readonly<Record<string, Form>> = {
+  '.txt': (report) => reportText(report, { width: 100, colour: false }),
+  '.json': (report) => reportJson(report, version()),
+};
+
+/** @throws {UsageError} for a suffix that no form has, before anything is written */
+export async function writeReports(
+  report: Report,
+  files: readonly string[],
+  surroundings: Surroundings,
+): Promise<void> {
+  const chosen = files.map((file) => {
+    const suffix = /\.[a-z]+$/i.exec(file)?.[0].toLowerCase() ?? '';
+    const form = FORMS[suffix];
+    if (form === undefined)
+      throw new UsageError(`--report ${file}: the suffix tells the form, one of ${Object.keys(FORMS).join(' ')}`);
+    return { file, form };
+  });
+  for (const { file, form } of chosen) await writeWhole(surroundings.cwd, file, await form(report));
+}

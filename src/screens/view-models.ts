@@ -1,0 +1,210 @@
+/** An audit and a register turned into what the screens show. Pure. */
+import type { Audit } from '../audit/audit.ts';
+import type { GatheredCode } from '../audit/gather.ts';
+import { adapterSource } from '../fit/adapter.ts';
+import type { Half, Joint, JointState } from '../fit/joint.ts';
+import { SAFETY_CAUTION } from '../model/caution.ts';
+import type { Deviation } from '../model/deviation.ts';
+import type { Domain, ManifestSet, Range } from '../model/manifest.ts';
+import { printable } from '../model/printable.ts';
+import { demandText, validatedText } from '../report/audit-report.ts';
+import type { CaseOutcome } from '../runs/case-outcome.ts';
+import type {
+  AssemblyView,
+  CaseView,
+  DeviationView,
+  HalfRow,
+  HistoryView,
+  JointView,
+  PartView,
+  RegisterView,
+  Seam,
+  Views,
+} from './views.ts';
+
+export interface Known {
+  readonly manifests: ManifestSet;
+  /** What was audited; null before the first audit has ended. */
+  readonly gathered: GatheredCode | null;
+  readonly audit: Audit | null;
+  readonly histories: readonly HistoryView[];
+  readonly register: RegisterView | null;
+  readonly job: AssemblyView['job'];
+  /** Cases that are running or waiting now. */
+  readonly running: ReadonlyMap<
+    string,
+    { readonly state: string; readonly seconds: number | null; readonly expectedSeconds: number | null }
+  >;
+}
+
+export function viewsOf(known: Known): Views {
+  const { gathered, audit } = known;
+  const outcomes = gathered?.outcomes ?? [];
+  return {
+    assembly: assemblyView(known),
+    joints: (gathered?.joints ?? []).filter((one) => one.offering !== null).map((one) => jointView(one, outcomes)),
+    histories: known.histories,
+    cases: caseViews(known),
+    deviations: outcomes.flatMap((one) => one.deviations.map(deviationView)),
+    swap: null,
+    register: known.register,
+    findings:
+      audit === null
+        ? []
+        : [
+            ...audit.open.map((finding) => ({ finding, accepted: null })),
+            ...audit.accepted.map(({ finding, acceptance }) => ({ finding, accepted: acceptance.reason })),
+          ],
+  };
+}
+
+function assemblyView(known: Known): AssemblyView {
+  const { manifests, gathered, audit } = known;
+  const assembly = manifests.assembly?.value;
+  return {
+    title: printable(assembly?.title ?? assembly?.assembly ?? 'no assembly'),
+    revision: gathered?.revision?.slice(0, 10) ?? 'none',
+    changed: gathered?.changed ?? [],
+    outcome: audit?.outcome ?? null,
+    why: (audit?.open ?? []).filter((one) => one.gravity !== 'note').map((one) => printable(one.says)),
+    parts: Object.entries(assembly?.plugged ?? {}).map(([component, module]) => partView(component, module, known)),
+    campaign:
+      audit?.campaign == null
+        ? null
+        : {
+            rows: audit.campaign.demands.map((one) => ({
+              name: one.what,
+              asks: demandText(one.what, one.asks),
+              has: demandText(one.what, one.has),
+              over: one.over,
+            })),
+          },
+    notices: known.register?.notices ?? [],
+    caution: assembly?.consequence === 'safety-related' ? SAFETY_CAUTION : null,
+    job: known.job,
+  };
+}
+
+function partView(component: string, module: string, { manifests, gathered, audit, histories }: Known): PartView {
+  const own = (gathered?.joints ?? []).filter(
+    (one) => one.expecting.module === module || one.offering?.module === module,
+  );
+  const count = (state: JointState) => own.filter((one) => one.state === state).length;
+  const validation = audit?.validations.find((one) => one.module === module);
+  const steps = histories.find((one) => one.module === module)?.steps ?? [];
+  const blocked = gathered?.outcomes.find((one) => one.state === 'not runnable' && one.why.includes(module));
+  return {
+    component,
+    module,
+    version: manifests.modules.get(module)?.value.version ?? '?',
+    age: steps.at(0)?.date.slice(0, 4) ?? '',
+    validated: validation === undefined ? '' : validatedText(validation.date, validation.changed.length),
+    joints: { fits: count('fits'), adapter: count('fits through an adapter'), unfit: count('does not fit') },
+    undeclared: steps.filter((one) => one.undeclared).length,
+    notRunnable: blocked === undefined ? null : 'not runnable here',
+  };
+}
+
+const SEAMS: Readonly<Record<JointState, Seam>> = {
+  fits: 'fits',
+  'fits through an adapter': 'adapter',
+  'does not fit': 'unfit',
+};
+
+function jointView(joint: Joint, outcomes: readonly CaseOutcome[]): JointView {
+  const offering = joint.offering!;
+  const visited = visitedBy(offering.module, outcomes);
+  return {
+    contract: `${joint.contract} ${joint.contractVersion}`,
+    expecting: joint.expecting,
+    offering,
+    seam: SEAMS[joint.state],
+    rows: joint.rows.map((row) => ({
+      quantity: row.quantity,
+      left: halfRow(row.expecting),
+      right: halfRow(row.offering),
+      seam: SEAMS[row.state],
+      says: printable([...row.differs, ...(row.differs.length === 0 ? [] : joint.differs)].join(' ')),
+      footprint: visited[row.quantity] ?? null,
+    })),
+    adapter:
+      joint.adapter === null
+        ? null
+        : {
+            file: `adapt-${joint.contract}${joint.expecting.language === 'fortran' ? '.f90' : '.ts'}`,
+            text: adapterSource(joint.adapter),
+          },
+  };
+}
+
+function halfRow(half: Half): HalfRow {
+  const { carrier } = half;
+  const position = carrier?.position == null ? '' : `${carrier.position} `;
+  return {
+    unit: half.unit,
+    intent: half.intent,
+    argument: carrier === null ? '' : printable(`${position}${carrier.name}`),
+    conventions: Object.entries(half.conventions)
+      .map(([name, choice]) => `${name} ${choice}`)
+      .join(', '),
+    domain: half.domain,
+  };
+}
+
+/** The states that the cases with this module really visited. */
+function visitedBy(module: string, outcomes: readonly CaseOutcome[]): Record<string, [number, number]> {
+  const visited: Record<string, [number, number]> = {};
+  for (const { footprint, produced } of outcomes) {
+    if (footprint === null || produced === null) continue;
+    if (!Object.values(produced.modules).some((one) => one.module === module)) continue;
+    for (const [quantity, range] of Object.entries(footprint as Domain)) {
+      const ends = finite(range);
+      if (ends === null) continue;
+      const known = visited[quantity];
+      visited[quantity] = known === undefined ? ends : [Math.min(known[0], ends[0]), Math.max(known[1], ends[1])];
+    }
+  }
+  return visited;
+}
+
+function finite([low, high]: Range): [number, number] | null {
+  return low === null || high === null ? null : [low, high];
+}
+
+function caseViews({ manifests, gathered, running }: Known): CaseView[] {
+  return [...manifests.cases.values()].map(({ value }): CaseView => {
+    const outcome = gathered?.outcomes.find((one) => one.case === value.case);
+    const now = running.get(value.case);
+    const state =
+      now?.state ?? (outcome === undefined ? 'not run' : outcome.kept ? `${outcome.state}, kept` : outcome.state);
+    return {
+      name: value.case,
+      title: printable(value.title ?? ''),
+      state,
+      seconds: now === undefined ? (outcome?.seconds ?? null) : now.seconds,
+      expectedSeconds: now?.expectedSeconds ?? null,
+      worst: now === undefined ? (outcome?.class ?? null) : null,
+      why: printable(outcome?.why ?? ''),
+      quantities: (outcome?.deviations ?? []).map((one) => ({
+        name: one.quantity,
+        class: one.class,
+        tolerances: one.tolerances,
+        says: whereText(one),
+      })),
+    };
+  });
+}
+
+function whereText({ measures, why }: Deviation): string {
+  const along = measures?.worst?.along;
+  return printable(
+    [along === undefined ? '' : `worst at ${Number(along.value.toPrecision(4))} ${along.unit}`, why ?? '']
+      .filter((text) => text !== '')
+      .join('; '),
+  );
+}
+
+function deviationView(one: Deviation): DeviationView {
+  const { profile, why, ...rest } = one;
+  return { ...rest, profile: profile ?? null, why: printable(why ?? '') };
+}
