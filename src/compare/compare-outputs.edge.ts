@@ -1,18 +1,34 @@
 /** The outputs of a case in two folders in; a deviation for every quantity, feature and conserved total out. */
-import { join } from 'node:path';
 import type { Deviation, Tolerance } from '../model/deviation.ts';
-import type { Case, CaseOutput, Domain, Feature, OutputQuantity, Range } from '../model/manifest.ts';
-import { openOutput } from '../outputs/open-output.edge.ts';
-import { type DatasetInfo, type OutputFile, OutputProblem } from '../outputs/output-file.ts';
-import { type ArrayDeviation, compareArrays } from './compare-arrays.ts';
+import type { Case, Domain, Feature, OutputQuantity, Range } from '../model/manifest.ts';
+import { openDeclared } from '../outputs/open-output.edge.ts';
+import { type OutputFile, OutputProblem } from '../outputs/output-file.ts';
+import { type ArrayDeviation, classify, compareArrays } from './compare-arrays.ts';
+import { asComplex } from './complex-deviation.ts';
 import { compareConserved } from './conserved.ts';
 import { featureUnit, takeFeature } from './features.ts';
+import { evaluateFormula } from './formula.ts';
+import type { GridConvergence } from './grid-convergence.ts';
+import { measureKernel } from './measure-kernel.edge.ts';
+import { measureTogether } from './measure-together.edge.ts';
+import { type Measured, measureArrays } from './measuring.ts';
+import { type NoiseFloor, noiseTolerance } from './noise-floor.ts';
 import { profileOf } from './profile.ts';
-import { type Axis, grainOf, positionOf, type Series } from './series.ts';
-import { completeTolerance } from './tolerance.ts';
+import { LARGEST_HELD, type Pair, readPair } from './read-pair.edge.ts';
+import { grainOf, positionOf, type Series } from './series.ts';
+import { completeTolerance, tolerancesOf, weighingOf } from './tolerance.ts';
+import { unitFactor } from './unit-factor.ts';
+import { withWeights } from './weighted-norms.ts';
 
-/** A quantity as both runs wrote it, or why there is none. */
-type Pair = { readonly reference: Series; readonly result: Series } | { readonly why: string };
+export interface CaseOptions {
+  /** By quantity or feature: what repeated runs of the reference differ by. The larger of this and the declared is allowed. */
+  readonly noise?: Readonly<Record<string, NoiseFloor>>;
+  /** By quantity or feature: the error of the grid, so that what is beyond tolerance but below it is said as such. */
+  readonly gridError?: Readonly<Record<string, GridConvergence>>;
+  readonly signal?: AbortSignal;
+}
+
+type Base = Pick<Deviation, 'case' | 'quantity' | 'of' | 'unit'>;
 
 /**
  * Compares the outputs of a case with its reference.
@@ -20,64 +36,92 @@ type Pair = { readonly reference: Series; readonly result: Series } | { readonly
  * @param theCase          outputs, quantities, tolerances, features and conserved totals, as declared
  * @param referenceFolder  where the reference's files lie under the names that the case declares
  * @param resultFolder     the same for the result
- * @returns a deviation for every declared quantity, then feature, then conserved total, in the order of the manifest;
- *   what is missing, damaged or of another shape is *not comparable* and says why
+ * @returns a deviation for every declared quantity, then for shifts, features and conserved totals, in the order of the
+ *   manifest; what is missing, damaged or of another shape is *not comparable* and says why
  */
-export async function compareCase(theCase: Case, referenceFolder: string, resultFolder: string): Promise<Deviation[]> {
+export async function compareCase(
+  theCase: Case,
+  referenceFolder: string,
+  resultFolder: string,
+  options: CaseOptions = {},
+): Promise<Deviation[]> {
   const pairs = new Map<string, Pair>();
   const deviations: Deviation[] = [];
+  const shifts: Deviation[] = [];
   for (const output of theCase.outputs) {
-    const reference = await openOr(join(referenceFolder, output.file));
-    const result = await openOr(join(resultFolder, output.file));
-    for (const [name, quantity] of Object.entries(output.quantities)) {
-      const pair = await readPair(name, quantity, output, reference, result);
-      pairs.set(name, pair);
-      deviations.push(fieldDeviation(theCase.case, name, quantity, pair));
+    const reference = await openOr(() => openDeclared(referenceFolder, output));
+    const result = await openOr(() => openDeclared(resultFolder, output));
+    try {
+      for (const [name, quantity] of Object.entries(output.quantities)) {
+        options.signal?.throwIfAborted();
+        const pair = await readPair(name, quantity, output, reference, result);
+        pairs.set(name, pair);
+        const base = { case: theCase.case, quantity: name, of: 'field', unit: quantity.unit } as const;
+        const deviation =
+          pair.kind === 'long'
+            ? await longDeviation(base, quantity, pair, reference as OutputFile, result as OutputFile, options)
+            : fieldDeviation(base, quantity, pair, options);
+        deviations.push(deviation);
+        if (pair.kind === 'held' && pair.shift !== undefined) {
+          shifts.push(shiftDeviation(theCase.case, name, pair, pair.shift, output.shift!.tolerance));
+        }
+      }
+    } finally {
+      for (const file of [reference, result]) if (!(file instanceof OutputProblem)) file.close();
     }
-    for (const file of [reference, result]) if (!(file instanceof OutputProblem)) file.close();
   }
   for (const [name, feature] of Object.entries(theCase.features ?? {})) {
-    deviations.push(featureDeviation(theCase.case, name, feature, pairs.get(feature.of)));
+    deviations.push(featureDeviation(theCase.case, name, feature, pairs, options));
   }
   for (const entry of theCase.conserved ?? []) {
     const total = typeof entry === 'string' ? { total: entry, of: entry } : entry;
     deviations.push(conservedDeviation(theCase.case, total.total, pairs.get(total.of), total.of, total.tolerance));
   }
-  return deviations;
+  return [...deviations.slice(0, pairs.size), ...shifts, ...deviations.slice(pairs.size)];
 }
 
-/** The extremes of the quantities that a case declares as its footprint; those that cannot be read are left out. */
+/**
+ * The extremes of the quantities that a case declares as its footprint, in the units that its outputs declare; those that
+ * cannot be read are left out.
+ */
 export async function footprintOf(theCase: Case, resultFolder: string): Promise<Domain> {
   const wanted = theCase.footprint ?? {};
   const domain: Record<string, Range> = {};
   for (const output of theCase.outputs) {
     const names = Object.entries(wanted).filter(([, name]) => Object.hasOwn(output.quantities, name));
     if (names.length === 0) continue;
-    const file = await openOr(join(resultFolder, output.file));
+    const file = await openOr(() => openDeclared(resultFolder, output));
     if (file instanceof OutputProblem) continue;
-    for (const [component, name] of names) {
-      const extremes = await extremesOf(file, output.quantities[name]!.dataset);
-      if (extremes !== null) domain[component] = extremes;
+    try {
+      for (const [component, name] of names) {
+        const extremes = await extremesOf(file, output.quantities[name]!);
+        if (extremes !== null) domain[component] = extremes;
+      }
+    } finally {
+      file.close();
     }
-    file.close();
   }
   return domain;
 }
 
-async function openOr(path: string): Promise<OutputFile | OutputProblem> {
+async function openOr(open: () => Promise<OutputFile>): Promise<OutputFile | OutputProblem> {
   try {
-    return await openOutput(path);
+    return await open();
   } catch (error) {
     if (error instanceof OutputProblem) return error;
     throw error;
   }
 }
 
-async function extremesOf(file: OutputFile, dataset: string): Promise<Range | null> {
+async function extremesOf(file: OutputFile, quantity: OutputQuantity): Promise<Range | null> {
   let [least, greatest] = [Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY];
+  const info = file.find(quantity.dataset);
+  const factor = unitFactor(info?.unit, quantity.unit);
+  if (typeof factor === 'string') return null;
   try {
-    for await (const piece of file.read(dataset)) {
+    for await (const piece of file.read(quantity.dataset)) {
       for (const value of piece) {
+        if (value === info?.fill) continue;
         if (value < least) least = value;
         if (value > greatest) greatest = value;
       }
@@ -86,72 +130,106 @@ async function extremesOf(file: OutputFile, dataset: string): Promise<Range | nu
     if (error instanceof OutputProblem) return null;
     throw error;
   }
-  return least <= greatest ? [least, greatest] : null;
+  return least <= greatest ? [least * factor, greatest * factor] : null;
 }
 
-async function readPair(
-  name: string,
+function fieldDeviation(
+  base: Base,
   quantity: OutputQuantity,
-  output: CaseOutput,
-  reference: OutputFile | OutputProblem,
-  result: OutputFile | OutputProblem,
-): Promise<Pair> {
-  if (reference instanceof OutputProblem) return { why: `${output.file} of the reference ${reference.message}` };
-  if (result instanceof OutputProblem) return { why: `${output.file} of the result ${result.message}` };
-  const sides: Series[] = [];
-  for (const [side, file] of [['reference', reference] as const, ['result', result] as const]) {
-    try {
-      sides.push(await readSeries(name, quantity, output.along, file));
-    } catch (error) {
-      if (!(error instanceof OutputProblem)) throw error;
-      return { why: `${output.file} of the ${side} ${error.message}` };
-    }
+  pair: Exclude<Pair, { kind: 'long' }>,
+  options: CaseOptions,
+): Deviation {
+  const declared = completeTolerance(quantity.tolerance);
+  if (pair.kind === 'none') return notComparable({ ...base, tolerance: declared }, pair.why);
+  const { reference, result, weight, notes } = pair;
+  const weighing = weighingOf(declared);
+  let measured = measureArrays(reference.values, result.values, weighing, measureKernel());
+  if (reference.type.startsWith('complex')) measured = asComplex(measured, reference.values, result.values, weighing);
+  if (weight !== null) {
+    const weighted = withWeights(measured, reference.values, result.values, weight);
+    if (typeof weighted === 'string') return notComparable({ ...base, tolerance: declared }, weighted);
+    measured = weighted;
   }
-  const [a, b] = [sides[0]!, sides[1]!];
-  if (a.values.length !== b.values.length || a.shape.join() !== b.shape.join()) {
-    return {
-      why: `${name} has the shape ${shapeText(a.shape)} in the reference and ${shapeText(b.shape)} in the result`,
-    };
-  }
-  return { reference: a, result: b };
-}
-
-const shapeText = (shape: readonly number[]) => (shape.length === 0 ? 'of one number' : shape.join(' x '));
-
-async function readSeries(
-  name: string,
-  quantity: OutputQuantity,
-  along: string | undefined,
-  file: OutputFile,
-): Promise<Series> {
-  const values = await file.readAll(quantity.dataset);
-  const info = file.find(quantity.dataset)!;
-  let axis: Axis | null = null;
-  if (along !== undefined) {
-    const positions = await file.readAll(along);
-    axis = { name: along.replace(/^\/+/, ''), unit: file.find(along)!.unit ?? '', values: positions };
-  }
-  return { name, unit: quantity.unit, values, shape: shapeOf(info, values), type: info.type, along: axis };
-}
-
-function shapeOf(info: DatasetInfo, values: Float64Array): number[] {
-  return info.shape.map((extent) => extent ?? values.length);
-}
-
-function fieldDeviation(theCase: string, name: string, quantity: OutputQuantity, pair: Pair): Deviation {
-  const tolerance = completeTolerance(quantity.tolerance);
-  const base = { case: theCase, quantity: name, of: 'field', unit: quantity.unit, tolerance } as const;
-  if ('why' in pair) return notComparable(base, pair.why);
-  const { reference, result } = pair;
-  const deviation = compareArrays(reference.values, result.values, tolerance ?? undefined, {
-    grain: grainOf(reference.type, result.type),
-  });
+  const { deviation, tolerance } = judge(
+    base.quantity,
+    measured,
+    declared,
+    grainOf(reference.type, result.type),
+    options,
+  );
   const profile = profileOf(reference, result, tolerance);
-  return { ...base, ...placed(deviation, reference), ...(profile === null ? {} : { profile }) };
+  return {
+    ...base,
+    ...withNotes(placed(deviation, reference), notes),
+    tolerance,
+    ...(profile === null ? {} : { profile }),
+  };
+}
+
+async function longDeviation(
+  base: Base,
+  quantity: OutputQuantity,
+  pair: Extract<Pair, { kind: 'long' }>,
+  reference: OutputFile,
+  result: OutputFile,
+  options: CaseOptions,
+): Promise<Deviation> {
+  const declared = completeTolerance(quantity.tolerance);
+  try {
+    const streamed = await measureTogether(
+      { file: reference, info: pair.reference },
+      { file: result, info: pair.result },
+      weighingOf(declared),
+      // Joined files and those that need hints are not opened a second time for another thread.
+      { hints: {}, resultFactor: pair.resultFactor, threads: 1, signal: options.signal },
+    );
+    if (streamed.referenceCount !== streamed.resultCount) {
+      const why = `the reference has ${streamed.referenceCount} elements, the result ${streamed.resultCount}`;
+      return notComparable({ ...base, tolerance: declared }, why);
+    }
+    const grain = grainOf(pair.reference.type, pair.result.type);
+    const { deviation, tolerance } = judge(base.quantity, streamed.measured, declared, grain, options);
+    return { ...base, ...deviation, tolerance };
+  } catch (error) {
+    if (!(error instanceof OutputProblem)) throw error;
+    const side = error.path === reference.path ? 'reference' : 'result';
+    return notComparable({ ...base, tolerance: declared }, `the ${side} ${error.message}`);
+  }
+}
+
+/** The class under the larger of the declared tolerance and the noise floor, with a word on the error of the grid. */
+function judge(
+  quantity: string,
+  measured: Measured,
+  declared: Tolerance | null,
+  grain: number,
+  options: CaseOptions,
+): { deviation: ArrayDeviation; tolerance: Tolerance | null } {
+  const noise = options.noise?.[quantity];
+  const floor = noise === undefined ? null : noiseTolerance(noise);
+  const byDeclared = classify(measured, declared, grain);
+  const byNoise = floor === null ? null : classify(measured, floor, grain);
+  const kinder =
+    byNoise !== null &&
+    (byNoise.tolerances ?? Number.POSITIVE_INFINITY) < (byDeclared.tolerances ?? Number.POSITIVE_INFINITY);
+  const [deviation, tolerance] = kinder ? [byNoise, floor] : [byDeclared, declared];
+  const grid = options.gridError?.[quantity];
+  if (deviation.class !== 'beyond tolerance' || grid === undefined || !grid.converging) return { deviation, tolerance };
+  const below = tolerancesOf(measured, { relative: grid.fineIndex, norm: 'Linf' }) <= 1;
+  const share = `${(grid.fineIndex * 100).toPrecision(2)} %`;
+  const says = below
+    ? `beyond tolerance, but below the error of the grid (${share}): the reference itself is no more certain`
+    : `beyond the error of the grid too (${share})`;
+  return { deviation: withNotes(deviation, [says]), tolerance };
+}
+
+function withNotes<T extends { readonly why?: string }>(deviation: T, notes: readonly string[]): T {
+  const all = [...(deviation.why === undefined ? [] : [deviation.why]), ...notes];
+  return all.length === 0 ? deviation : { ...deviation, why: all.join('; ') };
 }
 
 /** The worst element with its position along the axis. */
-function placed(deviation: ArrayDeviation, reference: Series): ArrayDeviation {
+function placed<T extends ArrayDeviation>(deviation: T, reference: Series): T {
   const { worst } = deviation.measures;
   const at = worst === null ? null : positionOf(reference, worst.index);
   if (worst === null || at === null) return deviation;
@@ -159,25 +237,69 @@ function placed(deviation: ArrayDeviation, reference: Series): ArrayDeviation {
   return { ...deviation, measures: { ...deviation.measures, worst: { ...worst, along } } };
 }
 
-function featureDeviation(theCase: string, name: string, feature: Feature, pair: Pair | undefined): Deviation {
-  const tolerance = completeTolerance(feature.tolerance);
-  const base = { case: theCase, quantity: name, of: 'feature', tolerance } as const;
-  if (pair === undefined) {
-    return notComparable({ ...base, unit: feature.unit ?? '' }, `no output of the case has a quantity "${feature.of}"`);
+function shiftDeviation(
+  theCase: string,
+  name: string,
+  pair: Extract<Pair, { kind: 'held' }>,
+  shift: number,
+  most: number,
+): Deviation {
+  const tolerance: Tolerance = { absolute: most, norm: 'pointwise' };
+  const unit = pair.reference.along?.unit ?? '';
+  const deviation = compareArrays(Float64Array.of(0), Float64Array.of(shift), tolerance);
+  return { case: theCase, quantity: `shift of ${name}`, of: 'feature', unit, tolerance, ...deviation };
+}
+
+function featureDeviation(
+  theCase: string,
+  name: string,
+  feature: Feature,
+  pairs: ReadonlyMap<string, Pair>,
+  options: CaseOptions,
+): Deviation {
+  const declared = completeTolerance(feature.tolerance);
+  const base = { case: theCase, quantity: name, of: 'feature' } as const;
+  const failed = (why: string) => notComparable({ ...base, unit: feature.unit ?? '', tolerance: declared }, why);
+  const pair = pairs.get(feature.of);
+  if (pair === undefined) return failed(`no output of the case has a quantity "${feature.of}"`);
+  if (pair.kind === 'none') return failed(pair.why);
+  if (pair.kind === 'long')
+    return failed(`${feature.of} has more than ${LARGEST_HELD} values: features are made of shorter fields`);
+  const own = pair.own!;
+  const reference = featureOf(feature, own.reference, pairs, 'reference');
+  const result = featureOf(feature, own.result, pairs, 'result');
+  if ('why' in reference) return failed(`in the reference, ${reference.why}`);
+  if ('why' in result) return failed(`in the result, ${result.why}`);
+  const [a, b] = [Float64Array.of(reference.value), Float64Array.of(result.value)];
+  const measured = measureArrays(a, b, weighingOf(declared), measureKernel());
+  const grain = grainOf(own.reference.type, own.result.type);
+  const { deviation, tolerance } = judge(name, measured, declared, grain, options);
+  return { ...base, unit: reference.unit, ...deviation, tolerance };
+}
+
+function featureOf(
+  feature: Feature,
+  series: Series,
+  pairs: ReadonlyMap<string, Pair>,
+  side: 'reference' | 'result',
+): { readonly value: number; readonly unit: string } | { readonly why: string } {
+  let taken: { readonly value: number; readonly unit: string } | { readonly why: string };
+  if (feature.take === 'formula') {
+    if (feature.formula === undefined) return { why: 'there is no formula: declare one beside "take: formula"' };
+    const held = [...pairs].flatMap(([name, pair]) =>
+      pair.kind !== 'long' && pair.own !== undefined ? [[name, pair.own[side]] as const] : [],
+    );
+    taken = evaluateFormula(feature.formula, new Map(held));
+  } else {
+    const one = takeFeature(feature, series);
+    taken =
+      'why' in one ? one : { value: one.value, unit: featureUnit(feature.take, series.unit, series.along?.unit ?? '') };
   }
-  if ('why' in pair) return notComparable({ ...base, unit: feature.unit ?? '' }, pair.why);
-  const unit = feature.unit ?? featureUnit(feature.take, pair.reference.unit, pair.reference.along?.unit ?? '');
-  const reference = takeFeature(feature, pair.reference);
-  const result = takeFeature(feature, pair.result);
-  if ('why' in reference) return notComparable({ ...base, unit }, `in the reference, ${reference.why}`);
-  if ('why' in result) return notComparable({ ...base, unit }, `in the result, ${result.why}`);
-  const deviation = compareArrays(
-    Float64Array.of(reference.value),
-    Float64Array.of(result.value),
-    tolerance ?? undefined,
-    { grain: grainOf(pair.reference.type, pair.result.type) },
-  );
-  return { ...base, unit, ...deviation };
+  if ('why' in taken || feature.unit === undefined) return taken;
+  const factor = taken.unit === '' ? 1 : unitFactor(taken.unit, feature.unit);
+  return typeof factor === 'number'
+    ? { value: taken.value * factor, unit: feature.unit }
+    : { why: `it comes in ${taken.unit}, which is not ${feature.unit}` };
 }
 
 function conservedDeviation(
@@ -188,17 +310,15 @@ function conservedDeviation(
   declared: Tolerance | undefined,
 ): Deviation {
   const base = { case: theCase, quantity: name, of: 'conserved' } as const;
-  if (pair === undefined || 'why' in pair) {
-    const why = pair === undefined ? `no output of the case has a quantity "${of}"` : pair.why;
-    return notComparable({ ...base, unit: '', tolerance: completeTolerance(declared) }, why);
-  }
-  const deviation = compareConserved(pair.reference.values, pair.result.values, declared);
-  return { ...base, unit: pair.result.unit, tolerance: deviation.tolerance, ...placed(deviation, pair.result) };
+  const failed = (why: string) => notComparable({ ...base, unit: '', tolerance: completeTolerance(declared) }, why);
+  if (pair === undefined) return failed(`no output of the case has a quantity "${of}"`);
+  if (pair.kind === 'none' && pair.own === undefined) return failed(pair.why);
+  if (pair.kind === 'long') return failed(`${of} has more than ${LARGEST_HELD} values along the run`);
+  const own = pair.own!;
+  const { tolerance, ...deviation } = compareConserved(own.reference.values, own.result.values, declared);
+  return { ...base, unit: own.result.unit, tolerance, ...placed(deviation, own.result) };
 }
 
-function notComparable(
-  base: Pick<Deviation, 'case' | 'quantity' | 'of' | 'unit' | 'tolerance'>,
-  why: string,
-): Deviation {
+function notComparable(base: Base & Pick<Deviation, 'tolerance'>, why: string): Deviation {
   return { ...base, class: 'not comparable', measures: null, tolerances: null, why };
 }

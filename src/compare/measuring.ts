@@ -18,6 +18,8 @@ export interface Measured {
   readonly maxReference: number;
   /** Norms of the reference and of the difference, not divided: sums of magnitudes, roots of sums of squares. */
   readonly norms: Totals;
+  /** Sum of the weights, where the norms are weighted; otherwise every element counts 1. */
+  readonly weightTotal?: number;
 }
 
 /** What one thread has found besides the sums; merges with another's in any order. */

@@ -28,7 +28,8 @@ export function weighingOf(tolerance: Tolerance | null): Weighing {
 export function tolerancesOf(measured: Measured, tolerance: Tolerance): number {
   if (measured.unlike > 0) return Number.POSITIVE_INFINITY;
   const { absolute = 0, relative = 0, ulp } = tolerance;
-  const { count, maxAbsolute } = measured.measures;
+  const { maxAbsolute } = measured.measures;
+  const count = measured.weightTotal ?? measured.measures.count;
   const { norms, maxReference } = measured;
   switch (tolerance.norm) {
     case 'L1':

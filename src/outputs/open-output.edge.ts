@@ -1,10 +1,13 @@
 /** Opens a result file of any format that Mortise reads, told by its content. */
+import { existsSync, readdirSync } from 'node:fs';
+import { basename, dirname, join } from 'node:path';
 import type { CaseOutput } from '../model/manifest.ts';
 import { openBytes } from './byte-source.edge.ts';
 import type { ByteSource } from './byte-source.ts';
 import { openFits } from './fits.ts';
 import { openFortranRecords } from './fortran-records.ts';
 import { openHdf5 } from './hdf5.edge.ts';
+import { joinOutputs, naturalOrder } from './joined-output.ts';
 import { openJson } from './json-values.ts';
 import { openLog } from './log-values.ts';
 import { openNetcdfClassic } from './netcdf-classic.ts';
@@ -83,3 +86,29 @@ function openText(source: ByteSource): OutputFile {
   if (log !== null) return log;
   throw new OutputProblem('unsupported', source.path, 'holds text, but neither rows of numbers nor named numbers');
 }
+
+/**
+ * Opens the output that a case declares: one file, or all that match when its last part holds `*` (`fields.*.h5`), joined in
+ * the order of the numbers in their names.
+ *
+ * @throws {OutputProblem} as openOutput does
+ */
+export async function openDeclared(
+  folder: string,
+  output: Pick<CaseOutput, 'file' | 'patterns' | 'layout'>,
+): Promise<OutputFile> {
+  const path = join(folder, output.file);
+  if (!basename(path).includes('*')) return openOutput(path, output);
+  const pattern = new RegExp(`^${basename(path).split('*').map(escaped).join('.*')}$`);
+  const names = existsSync(dirname(path)) ? readdirSync(dirname(path)).filter((name) => pattern.test(name)) : [];
+  const files: OutputFile[] = [];
+  try {
+    for (const name of names.sort(naturalOrder)) files.push(await openOutput(join(dirname(path), name), output));
+    return joinOutputs(path, files);
+  } catch (error) {
+    for (const file of files) file.close();
+    throw error;
+  }
+}
+
+const escaped = (text: string) => text.replace(/[.*+?^${}()|[\]\\]/g, '\\$&');

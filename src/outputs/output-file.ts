@@ -57,6 +57,8 @@ export interface OutputFile {
   datasets(): readonly DatasetInfo[];
   /** The data set of that name, or one that is meant by it (`/x` for `x`, `temperature` for a column headed `temperature [K]`). */
   find(name: string): DatasetInfo | null;
+  /** The error that says which data sets there are in place of this one. */
+  absent(name: string): OutputProblem;
   /** @throws {OutputProblem} `no-such-dataset` */
   cursor(name: string): ArrayCursor;
   /** Several data sets of one table, decoded in one pass; null when the format keeps data sets apart. */
@@ -107,16 +109,16 @@ const PIECE = 65_536;
 
 export function outputFile(parts: OutputParts): OutputFile {
   const find = (name: string) => findDataset(parts.datasets, name);
-  const must = (name: string) => {
-    const info = find(name);
-    if (info !== null) return info;
+  const absent = (name: string) => {
     const known = parts.datasets.map((one) => one.name);
     const list = known.length === 0 ? 'it holds none' : `it holds ${known.slice(0, 12).join(', ')}`;
-    throw new OutputProblem(
-      'no-such-dataset',
-      parts.path,
-      `has no data set "${name}"; ${list}${known.length > 12 ? `, and ${known.length - 12} more` : ''}`,
-    );
+    const more = known.length > 12 ? `, and ${known.length - 12} more` : '';
+    return new OutputProblem('no-such-dataset', parts.path, `has no data set "${name}"; ${list}${more}`);
+  };
+  const must = (name: string) => {
+    const info = find(name);
+    if (info === null) throw absent(name);
+    return info;
   };
   const cursor = (name: string) => parts.open(must(name));
   return {
@@ -124,6 +126,7 @@ export function outputFile(parts: OutputParts): OutputFile {
     format: parts.format,
     datasets: () => parts.datasets,
     find,
+    absent,
     cursor,
     table: (names) => (parts.table === undefined ? null : parts.table(names.map(must))),
     async *read(name) {
