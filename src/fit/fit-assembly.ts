@@ -281,9 +281,10 @@ function returnsUnnamed(module: LinkedModule, offer: Offer, name: string): boole
   const language = module.languageOf(found.file);
   if (language === 'fortran' || language === 'table') return false;
   const { result, returns } = found.procedure;
-  return (
-    returns === undefined && result !== null && !/^(number|double|float|void|int|boolean|string)$/.test(result.type)
-  );
+  // Without a declared type a script may return anything.
+  if (result === null) return ['typescript', 'javascript', 'python'].includes(language) && returns === undefined;
+  const spelledOut = result.type.startsWith('{') || /^(number|double|float|void|int|boolean|string)$/.test(result.type);
+  return returns === undefined && !spelledOut && !module.definesType(result.type);
 }
 
 /** Required arguments that the manifest is silent about: nobody would know what to pass. */
