@@ -2,9 +2,9 @@
 import type { Evidence, Finding } from '../model/finding.ts';
 import type { ActualArgument, Argument, CallSite, Language } from '../model/interface.ts';
 import type { Expectation, Offer } from '../model/manifest.ts';
+import { comparePlaces, type Place } from '../model/place.ts';
 import { exchanged } from './argument-order.ts';
 import { findingAt, firstThere, type Path } from './finding-at.ts';
-import type { JointRow } from './joint.ts';
 import { type FoundCall, type FoundProcedure, type LinkedModule, lastPart, sameName } from './linked-module.ts';
 import { ordinal } from './ordinal.ts';
 
@@ -15,7 +15,8 @@ export interface CallsInput {
   readonly expectPath: Path;
   readonly offer: Offer;
   readonly procedure: FoundProcedure | null;
-  readonly rows: readonly JointRow[];
+  /** The call whose order of arguments was already told. */
+  readonly toldAt: Place | null;
 }
 
 export function checkCalls(input: CallsInput): { readonly findings: Finding[]; readonly differs: string[] } {
@@ -98,7 +99,8 @@ function wrongIn(found: FoundCall, input: CallsInput, { procedure, file }: Found
   }
   const wrong: Wrong[] = [];
   const swapped = exchanged(call, procedure, language);
-  if (swapped.length > 0) {
+  const told = input.toldAt !== null && comparePlaces(expecting.place(found.file, call), input.toldAt) === 0;
+  if (swapped.length > 0 && !told) {
     const passes = swapped.map((position) => `${call.args[position - 1]!.name} ${ordinal(position)}`).join(', ');
     const takes = swapped.map((position) => `${dummies[position - 1]!.name} ${ordinal(position)}`).join(', ');
     wrong.push({

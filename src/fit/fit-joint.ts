@@ -3,6 +3,7 @@ import { contractReference, takesVersion } from '../manifests/contract-reference
 import type { Evidence, Finding, Gravity } from '../model/finding.ts';
 import type { FitKind } from '../model/finding-kind.ts';
 import type { Contract, ContractQuantity, Declaration, Expectation, Offer, Range } from '../model/manifest.ts';
+import type { Place } from '../model/place.ts';
 import { aliases, fold, observedOrder, sameOrder } from './argument-order.ts';
 import { conventionFactor } from './convention-factor.ts';
 import { convertRange, numberText, outside, rangeText } from './domains.ts';
@@ -47,6 +48,8 @@ class JointFit {
   private readonly procedure: FoundProcedure | null;
   private readonly differs: string[] = [];
   private state: JointState = 'fits';
+  /** The call whose order was told, so that it is not told again. */
+  private tellsOrderAt: Place | null = null;
 
   constructor(input: JointInput) {
     this.input = input;
@@ -71,7 +74,7 @@ class JointFit {
       expectPath: this.expectPath,
       offer: this.offer,
       procedure: this.procedure,
-      rows,
+      toldAt: this.tellsOrderAt,
     });
     this.findings.push(...calls.findings);
     this.differs.push(...calls.differs);
@@ -401,7 +404,7 @@ class JointFit {
       })
       .sort((a, b) => a.position - b.position)
       .map((one) => one.quantity);
-    const observed = this.observed(rows);
+    const observed = this.observed(rows, positioned);
     const declared = this.expectation.order;
     const { expecting, offering } = this.input;
     if (declared !== undefined && observed !== null && !sameOrder(declared, observed.order)) {
@@ -423,33 +426,41 @@ class JointFit {
     if (sameOrder(passed, positioned)) return { passed, moved: new Set(), offered: positioned };
     const moved = new Set(passed.filter((one, index) => positioned[index] !== one));
     this.state = worseState(this.state, 'fits through an adapter');
-    this.add(
-      expecting.declaration,
-      firstThere(expecting.declaration, [...this.expectPath, 'order'], [...this.expectPath, 'contract']),
-      {
-        kind: 'joint-order',
-        gravity: this.unlessAdapted(),
-        module: expecting.name,
-        says: `${expecting.name} passes ${passed.join(', ')}; ${this.offer.procedure} of ${offering.name} takes ${positioned.join(', ')}.`,
-        evidence: [
-          ...(observed === null ? [] : [{ says: 'the call', place: observed.place }]),
-          ...(this.procedure === null
-            ? []
-            : [
-                {
-                  says: `${this.procedure.procedure.name}(${this.procedure.procedure.args.map((one) => one.name).join(', ')})`,
-                  place: offering.place(this.procedure.file, this.procedure.procedure),
-                },
-              ]),
-        ],
-        next: this.adapterNext(`pass them as ${positioned.join(', ')}`),
-      },
+    const path = firstThere(expecting.declaration, [...this.expectPath, 'order'], [...this.expectPath, 'contract']);
+    const byManifest = findingAt(expecting.declaration, path, {
+      kind: 'joint-order',
+      gravity: this.unlessAdapted(),
+      module: expecting.name,
+      says: `${expecting.name} passes ${passed.join(', ')}; ${this.offer.procedure} of ${offering.name} takes ${positioned.join(', ')}.`,
+      evidence:
+        this.procedure === null
+          ? []
+          : [
+              {
+                says: `${this.procedure.procedure.name}(${this.procedure.procedure.args.map((one) => one.name).join(', ')})`,
+                place: offering.place(this.procedure.file, this.procedure.procedure),
+              },
+            ],
+      next: this.adapterNext(`pass them as ${positioned.join(', ')}`),
+    });
+    const seen = observed !== null && passed.every((one, index) => one === observed.order[index]) ? observed : null;
+    this.findings.push(
+      seen === null
+        ? byManifest
+        : {
+            ...byManifest,
+            place: seen.place,
+            evidence: [...byManifest.evidence.slice(1), seenIn(expecting.declaration, path, 'the expectation')],
+          },
     );
+    this.tellsOrderAt = seen?.place ?? null;
     return { passed, moved, offered: positioned };
   }
 
-  private observed(rows: readonly JointRow[]): { order: readonly string[]; place: Finding['place'] } | null {
+  /** The order of the first call that passes the arguments in another order than the procedure takes them, else of the first one that shows an order. */
+  private observed(rows: readonly JointRow[], positioned: readonly string[]): Observed | null {
     const { expecting } = this.input;
+    let first: Observed | null = null;
     const byName = new Map<string, string>();
     for (const row of rows) {
       const argument = row.offering.carrier?.name ?? row.quantity;
@@ -457,9 +468,12 @@ class JointFit {
     }
     for (const { file, call } of expecting.calls(this.calledName())) {
       const order = observedOrder(call, byName, expecting.languageOf(file));
-      if (order !== null) return { order, place: expecting.place(file, call) };
+      if (order === null) continue;
+      const seen = { order, place: expecting.place(file, call) };
+      if (!sameOrder(order, positioned)) return seen;
+      first ??= seen;
     }
-    return null;
+    return first;
   }
 
   private calledName(): string {
@@ -562,6 +576,11 @@ class JointFit {
   private add(declaration: Declaration<unknown>, path: Path, said: Parameters<typeof findingAt>[2]): void {
     this.findings.push(findingAt(declaration, path, said));
   }
+}
+
+interface Observed {
+  readonly order: readonly string[];
+  readonly place: Place;
 }
 
 interface Order {

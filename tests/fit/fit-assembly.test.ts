@@ -226,13 +226,16 @@ describe('arguments', () => {
   it('that the source takes in another order than it is called with are found by their names', () => {
     const swapped = file('fortran', { procedures: [procedure('eos_ionising', ['temp', 'rho', 'pres', 'eint'])] });
     const result = fitted({}, { 'src/eos/ionising.f90': swapped });
-    expect(result.findings.map((one) => [one.gravity, one.kind])).toEqual([
-      ['stop', 'joint-order'],
-      ['stop', 'joint-call'],
+    expect(brief(result)).toEqual([
+      'stop joint-order hydro.ts:7:3 hydro passes density, temperature, pressure, internal-energy; eos_ionising of eos-ionising takes temperature, density, pressure, internal-energy.',
     ]);
-    expect(result.findings[0]!.says).toBe(
-      'hydro passes density, temperature, pressure, internal-energy; eos_ionising of eos-ionising takes temperature, density, pressure, internal-energy.',
-    );
+    expect(result.findings[0]!.evidence.map((one) => one.place?.file)).toEqual(['src/eos/ionising.f90', HYDRO]);
+    expect(result.joints[0]!.rows.map((one) => one.state)).toEqual([
+      'fits through an adapter',
+      'fits through an adapter',
+      'fits',
+      'fits',
+    ]);
   });
 
   it('that a call passes by names of its own are taken to be in the order of the procedure', () => {
