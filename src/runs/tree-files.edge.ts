@@ -73,6 +73,18 @@ export function gitFolder(root: string): string | null {
   }
 }
 
+/** `Name <address>` as git knows who commits here; null when it does not. */
+export function gitUser(root: string): string | null {
+  try {
+    const [name, address] = ['user.name', 'user.email'].map((key) =>
+      git(root, ['config', key]).toString('utf8').trim(),
+    );
+    return `${name} <${address}>`;
+  } catch {
+    return null;
+  }
+}
+
 /** The full commit id of a revision. @throws {GitFailed} naming the revision */
 export function commitOf(root: string, revision: string): string {
   if (revision.startsWith('-')) throw new GitFailed(`"${revision}" is no revision`);

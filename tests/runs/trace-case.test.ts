@@ -1,7 +1,7 @@
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import { NoPath } from '../../src/runs/commit-graph.ts';
 import { NoQuantity, type TraceRequest, traceCase } from '../../src/runs/trace-case.ts';
-import { CALLER, TinyCode } from './tiny-code.ts';
+import { CALLER, TINY, TinyCode } from './tiny-code.ts';
 
 let code: TinyCode;
 beforeEach(() => {
@@ -47,6 +47,36 @@ describe('traceCase', () => {
     ]);
     expect(result.commits).toBe(8);
     expect(result.runs).toBeLessThanOrEqual(7);
+  });
+
+  it('names the one procedure of several changed that moved the quantity', async () => {
+    code.write({ 'src/cooling.mjs': cooling('2 * t', 'rate(t) + 1') });
+    const good = code.commit('Lay out');
+    code.write({
+      'src/cooling.mjs': cooling('2.5 * t', '1 + rate(t)').replace('// cooling', '// cooling, tidied'),
+      'src/eos-perfect.mjs': 'export const pressure = (rho, t) => t * rho * 8.31e7;\n',
+    });
+    code.commit('Tidy everything');
+    const result = await trace(good, 'HEAD', { quantities: ['temperature'] });
+    expect(result.steps).toMatchObject([
+      {
+        quantity: 'temperature',
+        inside: { modules: ['cooling-fit'], procedures: [{ file: 'src/cooling.mjs', procedure: 'rate' }] },
+      },
+    ]);
+  });
+
+  it('names the manifests when the way it is built changed', async () => {
+    const good = code.git('rev-parse', 'HEAD');
+    code.write({
+      'manifests/modules/eos-perfect.yaml': TINY['manifests/modules/eos-perfect.yaml']!.replace(
+        '{EOS: eos-perfect}',
+        '{EOS: eos-other}',
+      ),
+    });
+    code.commit('Select another');
+    const result = await trace(good, 'HEAD', { quantities: ['pressure'] });
+    expect(result.steps.map((step) => step.inside!.modules)).toEqual([['manifests']]);
   });
 
   it('runs nothing at all the second time', async () => {
