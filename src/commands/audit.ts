@@ -8,6 +8,7 @@ import { findingsText } from '../report/finding-text.ts';
 import { reportJson } from '../report/report-json.ts';
 import { reportText } from '../report/report-text.ts';
 import { listTree } from '../runs/tree-files.edge.ts';
+import type { HistoryView } from '../screens/views.ts';
 import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
 import { readWhole, writeWhole } from './files.edge.ts';
 import { jobsOf } from './jobs.ts';
@@ -71,6 +72,7 @@ manifests; 3 something could not be completed.`,
 export interface Audited {
   readonly gathered: GatheredCode;
   readonly audit: Audit;
+  readonly histories: readonly HistoryView[];
 }
 
 export async function auditOpened(
@@ -94,11 +96,11 @@ export async function auditOpened(
     ...(jobs === undefined ? {} : { jobs }),
     ...(typeof executor === 'string' ? { executor } : {}),
   });
-  return { gathered, audit: audit(gathered) };
+  return { gathered, audit: audit(gathered), histories: [] };
 }
 
 async function finish(
-  { gathered, audit: audited }: Audited,
+  { gathered, audit: audited, histories }: Audited,
   invocation: Invocation,
   surroundings: Surroundings,
 ): Promise<ExitStatus> {
@@ -111,7 +113,7 @@ async function finish(
       ? reportJson(report, version())
       : reportText(report, textOptions(invocation, surroundings)),
   );
-  return auditStatus({ gathered, audit: audited });
+  return auditStatus({ gathered, audit: audited, histories });
 }
 
 /** Held is 1 even where something could not run; a clearance with something not run is 3. */

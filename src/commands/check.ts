@@ -4,10 +4,12 @@ import { fitCases } from '../fit/fit-assembly.ts';
 import type { Joint } from '../fit/joint.ts';
 import { moduleInterfaces, type ReadSource } from '../fit/module-interfaces.ts';
 import { manifestsUnreadable } from '../manifests/load-manifests.ts';
+import { SAFETY_CAUTION } from '../model/caution.ts';
 import { type Finding, hasStop, sortFindings } from '../model/finding.ts';
 import { printable } from '../model/printable.ts';
 import { readSource } from '../readers/read-source.ts';
 import { findingsText } from '../report/finding-text.ts';
+import { wrap } from '../report/wrap.ts';
 import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
 import { type OpenedCode, openCode } from './open-code.ts';
 import { textOptions } from './text-options.ts';
@@ -65,6 +67,7 @@ function document(opened: OpenedCode | null, { joints, findings }: Checked) {
     document: 'mortise check',
     assembly: opened?.set.assembly?.value.assembly ?? null,
     revision: opened?.tree.revision ?? null,
+    caution: isSafetyRelated(opened) ? SAFETY_CAUTION : null,
     joints: joints.map((joint) => ({
       ...joint,
       adapter: joint.adapter === null ? null : { ...joint.adapter, source: adapterSource(joint.adapter) },
@@ -88,11 +91,16 @@ function text(
     parts.push(
       `${printable(name)} (${at}): ${plugged} ${plural(plugged, 'module')} plugged in, ${joints.length} ${plural(joints.length, 'joint')}\n`,
     );
+    if (isSafetyRelated(opened)) parts.push(`${wrap(SAFETY_CAUTION, textOptions(invocation, surroundings).width)}\n`);
     if (joints.length > 0) parts.push(jointsText(joints));
     for (const joint of joints) parts.push(...adapterText(joint, invocation.options.adapters === true));
   }
   parts.push(findingsText(findings, textOptions(invocation, surroundings)));
   return parts.join('\n');
+}
+
+function isSafetyRelated(opened: OpenedCode | null): boolean {
+  return opened?.set.assembly?.value.consequence === 'safety-related';
 }
 
 /** A line a joint, in columns. */

@@ -2,6 +2,8 @@
 import type { Command } from './command.ts';
 
 export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command }>>> = {
+  open: () => import('./open.ts'),
+  audit: () => import('./audit.ts'),
   compare: () => import('./compare.ts'),
   register: () => import('./register.ts'),
   notice: () => import('./notice.ts'),

@@ -127,13 +127,7 @@ function jointView(joint: Joint, outcomes: readonly CaseOutcome[]): JointView {
       says: printable([...row.differs, ...(row.differs.length === 0 ? [] : joint.differs)].join(' ')),
       footprint: visited[row.quantity] ?? null,
     })),
-    adapter:
-      joint.adapter === null
-        ? null
-        : {
-            file: `adapt-${joint.contract}${joint.expecting.language === 'fortran' ? '.f90' : '.ts'}`,
-            text: adapterSource(joint.adapter),
-          },
+    adapter: joint.adapter === null ? null : adapterSource(joint.adapter),
   };
 }
 
