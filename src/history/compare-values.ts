@@ -1,0 +1,144 @@
+/** What changed about numbers written in the code: named constants, physics literals, their precision. Pure. */
+import type { Change } from '../model/change.ts';
+import type { LiteralUse, NamedConstant } from '../model/interface.ts';
+import { type Part, pair, placeIn, type SourceSide } from './source-side.ts';
+
+export function compareConstants(before: readonly SourceSide[], after: readonly SourceSide[]): Change[] {
+  return pair(constants(before), constants(after)).pairs.flatMap(({ before: b, after: a }): Change[] => {
+    const sides = {
+      before: { text: b.it.text, place: placeIn(b.side, b.it) },
+      after: { text: a.it.text, place: placeIn(a.side, a.it) },
+    };
+    const was = numberOf(b.it);
+    const is = numberOf(a.it);
+    if (was === null || is === null) return [];
+    if (was !== is) {
+      const says = `constant ${a.name} is ${a.it.text}, was ${b.it.text}`;
+      return [{ kind: 'constant-value', subject: a.name, says, ...sides }];
+    }
+    return losesDigits(was, b.it.bytes, a.it.bytes)
+      ? [
+          {
+            kind: 'literal-kind',
+            subject: a.name,
+            says: precisionText(a.name, a.it.text, b.it.bytes, a.it.bytes),
+            ...sides,
+          },
+        ]
+      : [];
+  });
+}
+
+/**
+ * Literals of a physics value (several digits, or a power of ten far from one) by procedure. A value that goes while another
+ * comes, close to it, is the same literal changed; what merely comes or goes belongs to the body.
+ */
+export function compareLiterals(before: readonly SourceSide[], after: readonly SourceSide[]): Change[] {
+  const changes: Change[] = [];
+  const was = byProcedure(before);
+  const is = byProcedure(after);
+  for (const [procedure, fresh] of is) {
+    const old = was.get(procedure);
+    if (old === undefined) continue;
+    changes.push(...compareWithin(procedure, old, fresh));
+  }
+  return changes;
+}
+
+type Found = Part<LiteralUse>;
+
+function compareWithin(procedure: string, old: readonly Found[], fresh: readonly Found[]): Change[] {
+  const changes: Change[] = [];
+  const left = [...old];
+  const right: Found[] = [];
+  for (const a of fresh) {
+    const same = left.findIndex((b) => b.it.value === a.it.value && b.it.bytes === a.it.bytes);
+    if (same >= 0) left.splice(same, 1);
+    else right.push(a);
+  }
+  for (const a of right) {
+    const place = (b: Found) => ({
+      before: { text: b.it.text, place: placeIn(b.side, b.it) },
+      after: { text: a.it.text, place: placeIn(a.side, a.it) },
+    });
+    const kind = left.findIndex((b) => b.it.value === a.it.value);
+    if (kind >= 0) {
+      const [b] = left.splice(kind, 1) as [Found];
+      if (losesDigits(a.it.value, b.it.bytes, a.it.bytes)) {
+        const says = precisionText(`a literal of ${procedure}`, a.it.text, b.it.bytes, a.it.bytes);
+        changes.push({ kind: 'literal-kind', subject: procedure, says, ...place(b) });
+      }
+      continue;
+    }
+    const near = left.findIndex((b) => close(b.it.value, a.it.value));
+    if (near < 0) continue;
+    const [b] = left.splice(near, 1) as [Found];
+    const says = `a literal of ${procedure} is ${a.it.text}, was ${b.it.text}`;
+    changes.push({ kind: 'literal-value', subject: procedure, says, ...place(b) });
+  }
+  return changes;
+}
+
+/** Within a tenth: an edition of a constant, digits added or lost; not another number altogether. */
+function close(a: number, b: number): boolean {
+  return Math.abs(a - b) <= 0.1 * Math.max(Math.abs(a), Math.abs(b));
+}
+
+function byProcedure(sides: readonly SourceSide[]): Map<string, Found[]> {
+  const map = new Map<string, Found[]>();
+  for (const side of sides) {
+    for (const it of side.code.literals) {
+      if (it.procedure === null || it.role === 'named' || it.role === 'integer-division' || !isPhysics(it)) continue;
+      const found = map.get(it.procedure) ?? [];
+      found.push({ side, it, key: it.text, name: it.text });
+      map.set(it.procedure, found);
+    }
+  }
+  return map;
+}
+
+function isPhysics({ text, value }: LiteralUse): boolean {
+  if (!/[.eEdD]/.test(text) || value === 0) return false;
+  const digits = text
+    .replace(/[eEdD_].*$/, '')
+    .replace(/[^\d]/g, '')
+    .replace(/^0+/, '')
+    .replace(/0+$/, '');
+  return digits.length >= 4 || (digits.length >= 2 && Math.abs(Math.log10(Math.abs(value))) >= 5);
+}
+
+/** Integers and text inside a procedure size its scratch space; they are no physics. */
+function constants(sides: readonly SourceSide[]): Part<NamedConstant>[] {
+  return sides.flatMap((side) =>
+    side.code.constants
+      .filter((it) => it.condition === undefined && isReal(it))
+      .map((it) => ({ side, it, key: `${it.parent ?? ''}::${it.name}`, name: it.name })),
+  );
+}
+
+function isReal(it: NamedConstant): boolean {
+  return (
+    typeof it.value === 'number' &&
+    (/real|double|float|complex|number/.test(it.type) || /[.]|\d[eEdD][+-]?\d/.test(it.text))
+  );
+}
+
+function numberOf(it: NamedConstant): number | null {
+  return typeof it.value === 'number' && Number.isFinite(it.value) ? it.value : null;
+}
+
+/** A value that single precision holds exactly is the same in both. */
+function losesDigits(value: number, before: number | null, after: number | null): boolean {
+  return (
+    before !== null &&
+    after !== null &&
+    before !== after &&
+    Math.min(before, after) === 4 &&
+    Math.fround(value) !== value
+  );
+}
+
+function precisionText(name: string, text: string, before: number | null, after: number | null): string {
+  const bits = (bytes: number | null) => (bytes === 4 ? 'single' : bytes === 8 ? 'double' : `${bytes}-byte`);
+  return `${name}, ${text}, is in ${bits(after)} precision, was in ${bits(before)}`;
+}
