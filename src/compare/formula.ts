@@ -47,6 +47,7 @@ const FUNCTIONS: Readonly<Record<string, (x: number) => number>> = {
  * @returns the number and its unit, or why there is none: at which character, and what was expected
  */
 export function evaluateFormula(formula: string, quantities: ReadonlyMap<string, Series>): FormulaOutcome {
+  if (formula.length > 4000) return { why: `a formula of ${formula.length} characters is too long: 4000 at most` };
   try {
     const parser = new Parser(formula, quantities);
     const value = parser.whole();

@@ -46,12 +46,20 @@ function compile(path: string): KernelModule | null {
   }
 }
 
-/** @param bytes of memory; the first page is left to the module itself, up to half of it */
-export function startKernel(module: KernelModule, bytes: number): Kernel {
+/**
+ * @param bytes   of memory; the first page is left to the module itself, up to half of it
+ * @param imports functions that the kernel calls
+ */
+export function startKernel(
+  module: KernelModule,
+  bytes: number,
+  imports: Readonly<Record<string, (...numbers: number[]) => number>> = {},
+): Kernel {
   const memory = new engine.Memory({ initial: Math.ceil(bytes / PAGE_BYTES) });
   const instance = new engine.Instance(module, {
     env: {
       memory,
+      ...imports,
       abort: () => {
         throw new Error('a kernel stopped at a broken invariant');
       },

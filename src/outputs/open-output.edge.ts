@@ -16,6 +16,7 @@ import { openNpz } from './npz.ts';
 import { type OutputFile, OutputProblem } from './output-file.ts';
 import { openRawBinary } from './raw-binary.ts';
 import { recognise } from './recognise.ts';
+import { textParser } from './text-kernel.edge.ts';
 import { layoutOf, openTextTable } from './text-table.ts';
 
 /** What a manifest declares about a file that says nothing about itself. */
@@ -81,7 +82,7 @@ function layoutFits(source: ByteSource, hints: OutputHints): boolean {
 
 function openText(source: ByteSource): OutputFile {
   const layout = layoutOf(source);
-  if (layout !== null) return openTextTable(source, layout);
+  if (layout !== null) return openTextTable(source, layout, textParser);
   const log = openLog(source);
   if (log !== null) return log;
   throw new OutputProblem('unsupported', source.path, 'holds text, but neither rows of numbers nor named numbers');

@@ -27,19 +27,7 @@ const NEWLINE = 10;
 /** @param separator byte between columns; null for any run of blanks */
 export function plainTextParser(separator: number | null, wanted: readonly boolean[]): TextParser {
   const marks = new Set([...REMARK_MARKS].map((mark) => mark.charCodeAt(0)));
-  const isBlank = (byte: number) => byte === 32 || byte === 9 || byte === 13;
   const width = wanted.filter(Boolean).length;
-
-  const cell = (bytes: Uint8Array, from: number, to: number): number | null => {
-    let [start, end] = [from, to];
-    while (start < end && isBlank(bytes[start]!)) start++;
-    while (end > start && isBlank(bytes[end - 1]!)) end--;
-    if (end - start >= 2 && bytes[start] === 34 && bytes[end - 1] === 34) {
-      start++;
-      end--;
-    }
-    return start === end ? Number.NaN : readDecimal(String.fromCharCode(...bytes.subarray(start, end)));
-  };
 
   return {
     parse(bytes, final, into) {
@@ -62,7 +50,7 @@ export function plainTextParser(separator: number | null, wanted: readonly boole
             else stopAt = cellEnd(bytes, at, end, separator);
             if (column >= wanted.length) return stop('ragged');
             if (wanted[column]) {
-              const value = cell(bytes, at, stopAt);
+              const value = cellValue(bytes, at, stopAt);
               if (value === null) return stop('not-a-number');
               into[written++] = value;
             }
@@ -82,6 +70,22 @@ export function plainTextParser(separator: number | null, wanted: readonly boole
       return stop(null);
     },
   };
+}
+
+const isBlank = (byte: number) => byte === 32 || byte === 9 || byte === 13;
+
+/** The number in a cell, blanks and quotes around it taken off; NaN for an empty cell, null for a word. */
+export function cellValue(bytes: Uint8Array, from: number, to: number): number | null {
+  let [start, end] = [from, to];
+  while (start < end && isBlank(bytes[start]!)) start++;
+  while (end > start && isBlank(bytes[end - 1]!)) end--;
+  if (end - start >= 2 && bytes[start] === 34 && bytes[end - 1] === 34) {
+    start++;
+    end--;
+  }
+  return start === end
+    ? Number.NaN
+    : readDecimal(String.fromCharCode(...bytes.subarray(start, Math.min(end, start + 4000))));
 }
 
 function cellEnd(bytes: Uint8Array, from: number, end: number, separator: number): number {
