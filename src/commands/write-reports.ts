@@ -1,6 +1,9 @@
 /** `--report FILE`: the report in the form that the file's suffix names. */
 import type { Report } from '../report/report.ts';
+import { reportHtml } from '../report/report-html.ts';
 import { reportJson } from '../report/report-json.ts';
+import { reportJunit } from '../report/report-junit.ts';
+import { reportMarkdown } from '../report/report-markdown.ts';
 import { reportText } from '../report/report-text.ts';
 import { type Surroundings, UsageError } from './command.ts';
 import { writeWhole } from './files.edge.ts';
@@ -10,6 +13,9 @@ type Form = (report: Report) => string | Promise<string>;
 
 const FORMS: Readonly<Record<string, Form>> = {
   '.txt': (report) => reportText(report, { width: 100, colour: false }),
+  '.md': reportMarkdown,
+  '.html': reportHtml,
+  '.xml': reportJunit,
   '.json': (report) => reportJson(report, version()),
 };
 
