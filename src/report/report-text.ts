@@ -15,7 +15,9 @@ export function reportText(report: Report, options: TextOptions): string {
       fitToWidth(fact.name, nameWidth + 2) + wrap(printableLines(fact.value), options.width - nameWidth - 2, indent),
     );
   }
-  for (const section of report.sections) parts.push('', sectionText(section, options));
+  for (const section of report.sections) {
+    if (section.rows.length > 0 || (section.lines ?? []).length > 0) parts.push('', sectionText(section, options));
+  }
   parts.push('');
   for (const finding of report.findings) parts.push(findingText(finding, options));
   if (report.accepted.length > 0) {

@@ -5,11 +5,12 @@ import textWidth from './text-width.ts';
 export function wrap(text: string, width: number, indent = ''): string {
   const lines: string[] = [];
   for (const paragraph of text.split('\n')) {
-    let line = '';
-    for (const word of paragraph.split(/ +/)) {
-      const joined = line === '' ? word : `${line} ${word}`;
+    const [, start = '', words = ''] = /^( *)(.*)$/s.exec(paragraph) ?? [];
+    let line = start;
+    for (const word of words.split(/ +/)) {
+      const joined = line === start ? start + word : `${line} ${word}`;
       const room = width - (lines.length === 0 ? 0 : indent.length);
-      if (line !== '' && textWidth(joined) > room) {
+      if (line !== start && textWidth(joined) > room) {
         lines.push(line);
         line = word;
       } else {
