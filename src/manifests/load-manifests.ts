@@ -139,7 +139,8 @@ class Loader {
 
   private keep(declaration: ManifestDeclaration<unknown>, sort: ManifestSort): void {
     const name = (declaration.value as Record<string, string>)[sort]!;
-    const key = sort === 'accepted' ? 'accepted' : name;
+    // There is one assembly and one list of accepted findings, whatever they are called.
+    const key = sort === 'accepted' || sort === 'assembly' ? sort : name;
     const first = this.sound[sort].get(key);
     if (first === undefined) {
       this.sound[sort].set(key, declaration);
@@ -150,8 +151,14 @@ class Loader {
       ...problemFinding(declaration.source, {
         kind: 'manifest-duplicate',
         span: declaration.spanOf([sort]),
-        says: `The ${sort} ${quoted(name)} is declared a second time; this file is not used.`,
-        next: `give it another name, or remove one of the two files.`,
+        says:
+          key === sort
+            ? `There is a second ${sort === 'accepted' ? 'list of accepted findings' : 'assembly'} here; it is not used.`
+            : `The ${sort} ${quoted(name)} is declared a second time; this file is not used.`,
+        next:
+          key === 'assembly'
+            ? 'move it away, or name the one that is meant with --assembly FILE.'
+            : 'give it another name, or remove one of the two files.',
       }),
       evidence: [
         { says: 'the line meant', excerpt: declaration.source.excerpt(declaration.spanOf([sort])) },

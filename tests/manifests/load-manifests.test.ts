@@ -382,6 +382,14 @@ author: me
     expect(findings[0]!.evidence[1]!.place?.file).toBe('manifests/modules/hydro.yaml');
   });
 
+  it('of a second assembly says which is used, unless one of them was named', () => {
+    const second = { 'manifests/assembly.yml': 'assembly: other\nplugged: {hydrodynamics: hydro}\n' };
+    expect(lines(load(second).findings)).toEqual(['assembly.yml:1:11 manifest-duplicate']);
+    const named = load(second, { assembly: 'manifests/assembly.yml' });
+    expect(named.findings).toEqual([]);
+    expect(named.set.assembly?.value.assembly).toBe('other');
+  });
+
   it('for a manifest in the wrong folder says where it belongs, and nothing else', () => {
     const { findings } = load({ 'manifests/cases/gas.yaml': SOUND['manifests/contracts/gas-state.yaml']! });
     expect(findings.map((one) => one.next)).toEqual(['move it to contracts/ in the folder of the manifests.']);
