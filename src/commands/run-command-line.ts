@@ -1,6 +1,7 @@
 /** Finds the command named on the command line, parses its options, runs it, and turns what it throws into a message and an exit status. */
 import { parseArgs } from 'node:util';
-import { printable } from '../model/printable.ts';
+import { didYouMean } from '../model/nearest.ts';
+import { printable, printableLines } from '../model/printable.ts';
 import { SourceProblem } from '../sources/source-problem.ts';
 import {
   COMMON_OPTIONS,
@@ -8,10 +9,10 @@ import {
   EXIT,
   type ExitStatus,
   type Invocation,
-  type OptionSpec,
   type Surroundings,
   UsageError,
 } from './command.ts';
+import { commandHelp } from './command-help.ts';
 import { COMMANDS } from './table.ts';
 
 export async function runCommandLine(words: readonly string[]): Promise<ExitStatus> {
@@ -41,7 +42,8 @@ export async function dispatch(words: readonly string[], surroundings: Surroundi
   try {
     const [name = 'open', ...rest] = words[0]?.startsWith('-') ? ['open', ...words] : words;
     const load = COMMANDS[name === '--help' ? 'help' : name];
-    if (load === undefined) throw new UsageError(`there is no command "${name}"${nearest(name)}`);
+    if (load === undefined)
+      throw new UsageError(`there is no command "${name}"${didYouMean(name, Object.keys(COMMANDS))}`);
     const { command } = await load();
     const invocation = parse(command, rest);
     if (invocation.options.help === true) {
@@ -54,10 +56,23 @@ export async function dispatch(words: readonly string[], surroundings: Surroundi
       surroundings.err(`mortise: ${printable(error.message)}\nNext: ${printable(error.next)}\n`);
       return EXIT.usage;
     }
-    if (!(error instanceof UsageError)) throw error;
-    surroundings.err(`mortise: ${error.message}\nNext: run "mortise help" for the commands and their options.\n`);
-    return EXIT.usage;
+    if (error instanceof UsageError) {
+      surroundings.err(
+        `mortise: ${printable(error.message)}\nNext: run "mortise help" for the commands and their options.\n`,
+      );
+      return EXIT.usage;
+    }
+    surroundings.err(failureText(error));
+    return EXIT.incomplete;
   }
+}
+
+/** A failing machine is named with its code; anything else is a fault of this program, told with where it stands. */
+function failureText(error: unknown): string {
+  const { message, stack, code } = error as NodeJS.ErrnoException;
+  if (code !== undefined && /^E[A-Z]+$/.test(code))
+    return `mortise: the machine could not do it: ${printable(message)}\nNext: mend that, and run the command again.\n`;
+  return `mortise: a fault of this program: ${printableLines(stack ?? String(error))}\nNext: report these lines with the command that was run.\n`;
 }
 
 function parse(command: Command, words: readonly string[]): Invocation {
@@ -74,17 +89,4 @@ function parse(command: Command, words: readonly string[]): Invocation {
   } catch (error) {
     throw new UsageError(`${command.usage}: ${(error as Error).message}`);
   }
-}
-
-export function commandHelp(command: Command): string {
-  const line = ([name, spec]: [string, OptionSpec]) =>
-    `  ${`--${name}${spec.type === 'string' ? ` ${spec.value ?? 'VALUE'}` : ''}`.padEnd(24)} ${spec.says}\n`;
-  const own = Object.entries(command.options).map(line).join('');
-  const common = Object.entries(COMMON_OPTIONS).map(line).join('');
-  return `${command.usage}\n${command.answers}\n\n${command.help.trim()}\n\n${own === '' ? '' : `Options:\n${own}\n`}Everywhere:\n${common}`;
-}
-
-function nearest(name: string): string {
-  const known = Object.keys(COMMANDS).filter((candidate) => candidate[0] === name[0]);
-  return known.length === 0 ? '' : ` (did you mean ${known.map((candidate) => `"${candidate}"`).join(' or ')}?)`;
 }

@@ -30,6 +30,11 @@ export function describeWith(tools: readonly string[], title: string, body: () =
 export const PYTHON = spawnSync('/usr/bin/python3', ['--version']).status === 0 ? '/usr/bin/python3' : 'python3';
 
 function probe(tool: string): boolean {
+  // Slurm's programs alone are not enough: a node has to answer. start-slurm.sh brings one up.
+  if (tool === 'slurm') {
+    const told = spawnSync('sinfo', ['-h', '-o', '%T'], { timeout: 10_000, encoding: 'utf8' });
+    return /idle|mixed|allocated/.test(told.stdout ?? '');
+  }
   const [program = tool, module] = tool.split(':');
   const command = program === 'python3' ? PYTHON : program;
   const words = module === undefined ? ['--version'] : ['-c', `import ${module}`];

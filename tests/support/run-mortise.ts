@@ -1,0 +1,34 @@
+/** The whole program in this process, as a function of its words: what it prints and its exit status. */
+import { mkdtempSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { Readable } from 'node:stream';
+import { dispatch } from '../../src/commands/run-command-line.ts';
+
+// Tests never touch the caches of whoever runs them.
+process.env.XDG_CACHE_HOME ??= mkdtempSync(join(tmpdir(), 'mortise-cache-'));
+
+export interface Ran {
+  readonly status: number;
+  readonly out: string;
+  readonly err: string;
+}
+
+export async function mortise(cwd: string, ...words: readonly string[]): Promise<Ran> {
+  let [out, err] = ['', ''];
+  const status = await dispatch(words, {
+    cwd,
+    env: process.env,
+    stdin: Readable.from([]),
+    stdoutIsTerminal: false,
+    columns: 100,
+    out: (text) => {
+      out += text;
+    },
+    err: (text) => {
+      err += text;
+    },
+    signal: new AbortController().signal,
+  });
+  return { status, out, err };
+}
