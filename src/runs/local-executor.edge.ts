@@ -1,5 +1,6 @@
 /** Runs jobs on this machine, each as a process group of its own that is ended as a whole. */
 import { spawn } from 'node:child_process';
+import { setMaxListeners } from 'node:events';
 import { closeSync, fstatSync, openSync, readdirSync, readFileSync } from 'node:fs';
 import { availableParallelism } from 'node:os';
 import type { Guard } from './guard.edge.ts';
@@ -26,6 +27,8 @@ export function runLocally(job: ProcessJob, signal: AbortSignal, guard?: Guard):
   const seconds = () => (performance.now() - started) / 1000;
   const nothing = { exitCode: null, signal: null, peakMegabytes: null };
   if (signal.aborted) return Promise.resolve({ ...nothing, how: 'interrupted', seconds: 0 });
+  // Every run listens, and there may be more than the ten that Node takes for a leak.
+  setMaxListeners(0, signal);
   return new Promise((resolve) => {
     const log = openSync(job.log, 'a');
     const child = spawn(job.words[0]!, job.words.slice(1), {

@@ -23,6 +23,8 @@ export interface ProcessEnd {
 }
 
 export interface ProcessJob {
+  /** Of everything that can change what it does; tells it again after a lost login. */
+  readonly key: string;
   /** Names the job in queues and in the result store. */
   readonly name: string;
   readonly words: readonly string[];
@@ -38,6 +40,8 @@ export interface ProcessJob {
 export interface Executor {
   readonly kind: 'local' | 'slurm';
   readonly atOnce: number;
+  /** Absolute folder, with `out/` in it, for one run; the executor's own where runs outlive this process. */
+  runFolder?(key: string, fresh: boolean): string;
   /** Never throws for what the job does; aborting the signal ends the job and all its processes. */
   run(job: ProcessJob, signal: AbortSignal): Promise<ProcessEnd>;
   /** Gives back what it holds: allocations, guards. */
@@ -55,18 +59,22 @@ export function endText(end: ProcessEnd): string {
     case 'timed out':
       return `was ended after its time limit, at ${end.seconds.toFixed(1)} s`;
     case 'out of memory':
-      return `was ended at its memory limit${end.peakMegabytes === null ? '' : `, with ${Math.round(end.peakMegabytes)} MB`}`;
+      return `was ended at its memory limit${end.peakMegabytes === null ? '' : `, with ${Math.round(end.peakMegabytes)} MB`}${because(end)}`;
     case 'too much output':
       return 'was ended because it wrote too much to its log';
     case 'interrupted':
-      return 'was interrupted';
+      return `was interrupted${because(end)}`;
     case 'preempted':
-      return 'was preempted by the queue';
+      return `was preempted by the queue${because(end)}`;
     case 'node failed':
-      return 'was lost with its node';
+      return `was lost with its node${because(end)}`;
   }
 }
 
 export function endedWell(end: ProcessEnd): boolean {
   return end.how === 'ended' && end.exitCode === 0;
+}
+
+function because(end: ProcessEnd): string {
+  return end.why === undefined ? '' : `: ${end.why}`;
 }

@@ -12,6 +12,7 @@ import { producedBy } from './produced.ts';
 import { alteredOutputs, readReferenceIn, referencePlace, referenceStands } from './reference-files.edge.ts';
 import { ReferenceDamaged } from './reference-record.ts';
 import type { RunEvent } from './run-event.ts';
+import { slurmExecutor } from './slurm-executor.edge.ts';
 import { closeStore, expectedSeconds, openStore, type Store, storeFolder } from './store.edge.ts';
 import { listTree, type TreeListing } from './tree-files.edge.ts';
 import { type RunResult, Workshop } from './workshop.ts';
@@ -116,6 +117,7 @@ export class Laboratory {
     this.workshop = new Workshop({
       store,
       executor,
+      builder: executor.kind === 'local' ? executor : localExecutor(store.guard),
       signal: request.signal ?? new AbortController().signal,
       say: request.onEvent ?? (() => {}),
       manifestFolder: this.manifestFolder,
@@ -281,7 +283,7 @@ function declaredExecutor(request: Pick<RerunRequest, 'manifests' | 'executor'>)
 function executorOf(request: LaboratoryRequest, store: Store): Executor {
   const declared = declaredExecutor(request);
   const atOnce = request.jobs ?? declared?.['at-once'];
-  if (declared?.kind === 'slurm') throw new NotDeclared('executors of kind slurm cannot be used yet');
+  if (declared?.kind === 'slurm') return slurmExecutor(store.folder, declared, atOnce);
   return localExecutor(store.guard, atOnce);
 }
 

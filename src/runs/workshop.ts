@@ -86,6 +86,8 @@ type Built = { readonly place: BuildPlace } | { readonly failed: RunResult };
 export interface WorkshopParts {
   readonly store: Store;
   readonly executor: Executor;
+  /** Where it is built. */
+  readonly builder: Executor;
   readonly signal: AbortSignal;
   readonly say: (event: RunEvent) => void;
   readonly manifestFolder: string;
@@ -197,11 +199,12 @@ export class Workshop {
     if ('failed' in built) return this.failed(task, keys, built.failed);
     return this.pool.with(async () => {
       if (signal.aborted) return INTERRUPTED;
-      const folder = runFolder(store);
+      const folder = executor.runFolder?.(keys.run, task.fresh) ?? runFolder(store);
       say({ what: 'started', case: task.case, expectedSeconds: expectedSeconds(store, task.case) });
       const log = `${folder}/log.txt`;
       const end = await executor.run(
         {
+          key: keys.run,
           name: task.case,
           words: fillCommand(task.words, { out: `${folder}/out`, root: built.place.tree }),
           folder: built.place.tree,
@@ -258,7 +261,7 @@ export class Workshop {
   }
 
   private async build(task: RunTask, key: string): Promise<Built> {
-    const { store, executor, signal, say } = this.parts;
+    const { store, builder, signal, say } = this.parts;
     if (signal.aborted) return { failed: INTERRUPTED };
     const place = await takeBuild(store, key, signal).catch(() => null);
     if (place === null) return { failed: INTERRUPTED };
@@ -269,8 +272,10 @@ export class Workshop {
       if (task.build !== null) {
         const name = `build ${key.slice(0, 12)}`;
         say({ what: 'building', build: name, expectedSeconds: expectedSeconds(store, 'build') });
-        const end = await executor.run(
+        // Built where Mortise runs: login nodes have the compilers, and a build must not be lost in a queue.
+        const end = await builder.run(
           {
+            key,
             name,
             words: fillCommand(task.build, { root: place.tree }),
             folder: place.tree,

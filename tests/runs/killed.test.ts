@@ -33,7 +33,9 @@ beforeAll(async () => {
     platform: 'node',
     format: 'esm',
     external: ['h5wasm', 'h5wasm/node', 'ts-morph', 'better-sqlite3'],
-    banner: { js: "import{createRequire as __requireFrom}from'node:module';const require=__requireFrom(import.meta.url);" },
+    banner: {
+      js: "import{createRequire as __requireFrom}from'node:module';const require=__requireFrom(import.meta.url);",
+    },
     define: { 'import.meta.dirname': JSON.stringify(import.meta.dirname) },
     logLevel: 'silent',
   });

@@ -13,6 +13,7 @@ beforeEach(() => {
 afterEach(() => rmSync(folder, { recursive: true, force: true }));
 
 const job = (script: string, more: Partial<ProcessJob> = {}): ProcessJob => ({
+  key: 'test',
   name: 'test',
   words: [process.execPath, '-e', script],
   folder,
