@@ -6,9 +6,8 @@ import { compareText } from '../model/place.ts';
 import { type OutputHints, openOutput } from '../outputs/open-output.edge.ts';
 import { type DatasetInfo, elementsOf, type OutputFile, OutputProblem } from '../outputs/output-file.ts';
 import { classify } from './compare-arrays.ts';
-import { measureKernel } from './measure-kernel.edge.ts';
-import { measureTables, type Streamed } from './measure-streams.ts';
-import { measureTogether } from './measure-together.edge.ts';
+import type { Streamed } from './measure-streams.ts';
+import { measureTablesTogether, measureTogether } from './measure-together.edge.ts';
 import { grainOf } from './series.ts';
 import { completeTolerance, weighingOf } from './tolerance.ts';
 import { unitFactor } from './unit-factor.ts';
@@ -168,7 +167,6 @@ async function measureShared(
   shared: readonly Shared[],
   options: FileOptions,
 ): Promise<Map<string, Deviation>> {
-  const kernel = measureKernel();
   const tolerance = completeTolerance(options.tolerance);
   const weighing = weighingOf(tolerance);
   const deviations = new Map<string, Deviation>();
@@ -190,15 +188,13 @@ async function measureShared(
   for (let first = 0; first < asTable.length; first += COLUMNS_AT_ONCE) {
     const some = asTable.slice(first, first + COLUMNS_AT_ONCE);
     try {
-      const a = reference.table(some.map((one) => one.reference.name))!;
-      const b = result.table(some.map((one) => one.result.name))!;
-      const streamed = await measureTables(
-        a,
-        b,
-        some.map(() => weighing),
-        kernel,
-        options.signal,
-      );
+      const names = (side: 'reference' | 'result') => some.map((one) => one[side].name);
+      const [a, b] = [
+        { file: reference, names: names('reference') },
+        { file: result, names: names('result') },
+      ];
+      const { signal } = options;
+      const streamed = await measureTablesTogether(a, b, weighing, { hints: hintsOf(options), signal });
       some.forEach((one, index) => {
         conclude(one, streamed[index]!);
       });

@@ -55,49 +55,64 @@ export async function measureStreams(
   return { measured: conclude([measuring.part()], ledger.totals()), referenceCount, resultCount, absentOnOneSide };
 }
 
+/** Rows of a table, a block at a time; one may come from another thread. */
+export interface TableRows {
+  /** The next BLOCK rows, an array a column; fewer only at the end. The arrays are valid until the next call. */
+  next(): Promise<{ readonly count: number; readonly columns: readonly Float64Array[] }>;
+}
+
+/** A table read by this thread. */
+export function rowsOf(table: TableCursor, columns: number): TableRows {
+  const arrays = Array.from({ length: columns }, () => new Float64Array(BLOCK));
+  return { next: async () => ({ count: table.fill(arrays), columns: arrays }) };
+}
+
 /** All columns of two tables in one pass over either. */
 export async function measureTables(
-  reference: TableCursor,
-  result: TableCursor,
+  reference: TableRows,
+  result: TableRows,
   weighings: readonly Weighing[],
   kernel: MeasureKernel,
   signal?: AbortSignal,
 ): Promise<readonly Streamed[]> {
   const columns = weighings.map((weighing) => {
     const ledger = new RunningLedger();
-    const measuring = new Measuring(kernel, weighing, ledger);
-    return { ledger, measuring, reference: new Float64Array(BLOCK), result: new Float64Array(BLOCK) };
+    return { ledger, measuring: new Measuring(kernel, weighing, ledger) };
   });
-  const references = columns.map((column) => column.reference);
-  const results = columns.map((column) => column.result);
   let [referenceCount, resultCount, sincePause] = [0, 0, 0];
   for (;;) {
-    const a = reference.fill(references);
-    const b = result.fill(results);
-    const both = Math.min(a, b);
-    for (const column of columns) {
-      kernel.reference.set(column.reference.subarray(0, both));
-      kernel.result.set(column.result.subarray(0, both));
-      column.measuring.take(both);
-    }
-    referenceCount += a;
-    resultCount += b;
-    if (a !== b || a < BLOCK) break;
-    sincePause += a * columns.length;
+    const b = await result.next();
+    const a = await reference.next();
+    const both = Math.min(a.count, b.count);
+    columns.forEach(({ measuring }, index) => {
+      kernel.reference.set(a.columns[index]!.subarray(0, both));
+      kernel.result.set(b.columns[index]!.subarray(0, both));
+      measuring.take(both);
+    });
+    referenceCount += a.count;
+    resultCount += b.count;
+    if (a.count !== b.count || a.count < BLOCK) break;
+    sincePause += a.count * columns.length;
     if (sincePause >= PAUSE_ELEMENTS) {
       sincePause = 0;
       await pause(signal);
     }
   }
-  for (let more = BLOCK; more === BLOCK && referenceCount > resultCount; )
-    referenceCount += more = reference.fill(references);
-  for (let more = BLOCK; more === BLOCK && resultCount > referenceCount; ) resultCount += more = result.fill(results);
+  if (referenceCount > resultCount) referenceCount += await moreRows(reference, referenceCount);
+  if (resultCount > referenceCount) resultCount += await moreRows(result, resultCount);
   return columns.map(({ measuring, ledger }) => ({
     measured: conclude([measuring.part()], ledger.totals()),
     referenceCount,
     resultCount,
     absentOnOneSide: 0,
   }));
+}
+
+/** How many more rows a table has; its last block was a short one when it has none. */
+async function moreRows(rows: TableRows, sofar: number): Promise<number> {
+  let more = 0;
+  for (let count = sofar % BLOCK === 0 ? BLOCK : 0; count === BLOCK; more += count) count = (await rows.next()).count;
+  return more;
 }
 
 /**

@@ -12,11 +12,13 @@
 @external("env", "cell")
 declare function cell(at: usize, end: usize): f64;
 
-// Places in the first page; the host writes the powers and the wanted columns, and reads the rest.
+// Places in the first page; the host writes the powers of five and of ten and the wanted columns, and reads the rest.
 const USED: usize = 32768;
 const LINES: usize = 32776;
 const STOPPED: usize = 32784;
 const FAULT: usize = 32792;
+/** 10^0 to 10^7. */
+const TENS: usize = 32800;
 
 const SMALLEST_POWER = -342;
 const LARGEST_POWER = 308;
@@ -24,14 +26,18 @@ const LARGEST_POWER = 308;
 function isBlank(byte: u8): bool { return byte == 32 || byte == 9 || byte == 13; }
 function isDigit(byte: u8): bool { return <u8>(byte - 48) < 10; }
 
-/** 0 all read or room is full, 1 ragged row, 2 not a number. Returns the number of rows. */
+/**
+ * Parses up to `room` rows; the value of row r in the c-th wanted column goes to output + 8 (c room + r).
+ * Leaves behind the bytes and lines used, and why it stopped: 0 all read or room is full, 1 ragged row, 2 not a number.
+ */
 export function parse(
-  input: usize, length: i32, final: i32, separator: i32, columns: i32, wanted: usize, powers: usize, output: usize, most: i32,
+  input: usize, length: i32, final: i32, separator: i32, columns: i32, wanted: usize, powers: usize, output: usize, room: i32,
 ): i32 {
   const stop = input + <usize>length;
-  let used = input, rows = 0, lines = 0, out = output;
+  const stride = <usize>room << 3;
+  let used = input, rows = 0, lines = 0;
   store<i32>(STOPPED, 0);
-  while (used < stop && rows < most) {
+  while (used < stop && rows < room) {
     let at = used;
     while (at < stop && isBlank(load<u8>(at))) at++;
     let end: usize;
@@ -46,7 +52,7 @@ export function parse(
     end = lineEnd(at, stop);
     if (end == stop && !final) break;
     let column = 0;
-    let row = out;
+    let row = output + (<usize>rows << 3);
     while (at <= end) {
       let next = at;
       let fault = 0;
@@ -60,7 +66,7 @@ export function parse(
           store<f64>(row, hosted(at, next));
           if (load<i32>(FAULT) != 0) fault = 2;
         } else store<f64>(row, value);
-        row += 8;
+        row += stride;
       } else {
         if (separator < 0) while (next < end && !isBlank(load<u8>(next))) next++;
         else next = cellEnd(at, end, <u8>separator);
@@ -73,7 +79,7 @@ export function parse(
             store<f64>(row, hosted(from, to));
             if (load<i32>(FAULT) != 0) fault = 2;
           }
-          row += 8;
+          row += stride;
         }
       }
       if (fault != 0) return leave(rows, used - input, lines, fault);
@@ -86,7 +92,6 @@ export function parse(
     }
     if (column != columns) return leave(rows, used - input, lines, 1);
     rows++;
-    out = row;
     used = end < stop ? end + 1 : stop;
     lines++;
   }
@@ -129,8 +134,9 @@ function cellEnd(at: usize, end: usize, separator: u8): usize {
 /** The number last read. */
 let value: f64 = 0;
 
-function eightDigits(word: u64): bool {
-  return ((word & 0xf0f0f0f0f0f0f0f0) | (((word + 0x0606060606060606) & 0xf0f0f0f0f0f0f0f0) >> 4)) == 0x3333333333333333;
+/** Zero when all eight bytes are digits; otherwise the lowest byte that is not zero is the first that is none. */
+function notDigits(word: u64): u64 {
+  return ((word & 0xf0f0f0f0f0f0f0f0) ^ 0x3030303030303030) | (((word + 0x0606060606060606) & 0xf0f0f0f0f0f0f0f0) ^ 0x3030303030303030);
 }
 
 /** Eight digits in one 64-bit word to their number, by three multiplications. */
@@ -140,29 +146,38 @@ function eightDigitValue(word: u64): u64 {
   return (((pairs & 0x000000ff000000ff) * 0x000f424000000064 + ((pairs >> 16) & 0x000000ff000000ff) * 0x0000271000000001) >> 32) & 0xffffffff;
 }
 
-/** Reads a number that ends at a blank or at `end`; its end, or 0 when the host must look at the cell. */
+/**
+ * Reads a number that ends at a blank or at `end`; its end, or 0 when the host must look at the cell.
+ * What stands at `end` is no digit: a line end, a separator, or the line end that the host puts behind the input.
+ */
 function number(start: usize, end: usize, powers: usize): usize {
   let at = start;
   const sign = load<u8>(at);
   if (sign == 45 || sign == 43) at++;
   let mantissa: u64 = 0;
   const digitsAt = at;
-  while (at < end && isDigit(load<u8>(at))) {
+  while (isDigit(load<u8>(at))) {
     mantissa = mantissa * 10 + <u64>(load<u8>(at) - 48);
     at++;
   }
   let digits = <i32>(at - digitsAt);
   let exponent: i64 = 0;
-  if (at < end && load<u8>(at) == 46) {
+  if (load<u8>(at) == 46) {
     at++;
     const fraction = at;
-    while (at + 8 <= end && eightDigits(load<u64>(at))) {
-      mantissa = mantissa * 100000000 + eightDigitValue(load<u64>(at));
+    let word = load<u64>(at);
+    let others = notDigits(word);
+    while (others == 0) {
+      mantissa = mantissa * 100000000 + eightDigitValue(word);
       at += 8;
+      word = load<u64>(at);
+      others = notDigits(word);
     }
-    while (at < end && isDigit(load<u8>(at))) {
-      mantissa = mantissa * 10 + <u64>(load<u8>(at) - 48);
-      at++;
+    // The last digits, moved behind zeros to make eight.
+    const bits = ctz<u64>(others) & 56;
+    if (bits != 0) {
+      mantissa = mantissa * load<u64>(TENS + <usize>bits) + eightDigitValue((word << (64 - bits)) | (0x3030303030303030 >> bits));
+      at += <usize>(bits >> 3);
     }
     digits += <i32>(at - fraction);
     exponent = -<i64>(at - fraction);

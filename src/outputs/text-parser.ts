@@ -13,26 +13,40 @@ export interface ParsedRows {
 }
 
 export interface TextParser {
+  /** The values last parsed, an array for each wanted column; as long as the rows that are parsed at once. */
+  readonly columns: readonly Float64Array[];
   /**
-   * @param bytes   starts at the start of a line
-   * @param final   true when the file ends with these bytes, so that the last line needs no line end
-   * @param wanted  one entry a column; a column that is not wanted is passed over unread
-   * @param into    rows one after another, a value for each wanted column
+   * Parses rows into `columns`, from their start.
+   *
+   * @param bytes starts at the start of a line
+   * @param final true when the file ends with these bytes, so that the last line needs no line end
    */
-  parse(bytes: Uint8Array, final: boolean, into: Float64Array): ParsedRows;
+  parse(bytes: Uint8Array, final: boolean): ParsedRows;
+}
+
+const VALUES_AT_ONCE = 1 << 16;
+
+/** Rows parsed at once into so many columns: few for wide tables, so that memory stays bounded. */
+export function rowsAtOnce(columns: number): number {
+  return Math.max(16, Math.min(8192, Math.floor(VALUES_AT_ONCE / Math.max(1, columns))));
 }
 
 const NEWLINE = 10;
 
-/** @param separator byte between columns; null for any run of blanks */
+/**
+ * @param separator byte between columns; null for any run of blanks
+ * @param wanted    one entry a column; a column that is not wanted is passed over unread
+ */
 export function plainTextParser(separator: number | null, wanted: readonly boolean[]): TextParser {
   const marks = new Set([...REMARK_MARKS].map((mark) => mark.charCodeAt(0)));
   const width = wanted.filter(Boolean).length;
+  const most = rowsAtOnce(width);
+  const columns = Array.from({ length: width }, () => new Float64Array(most));
 
   return {
-    parse(bytes, final, into) {
+    columns,
+    parse(bytes, final) {
       let [rows, used, lines] = [0, 0, 0];
-      const most = Math.floor(into.length / Math.max(1, width));
       const stop = (stopped: ParsedRows['stopped']) => ({ rows, used, lines, stopped });
       while (used < bytes.length && rows < most) {
         let end = bytes.indexOf(NEWLINE, used);
@@ -43,7 +57,7 @@ export function plainTextParser(separator: number | null, wanted: readonly boole
         while (at < end && isBlank(bytes[at]!)) at++;
         if (at < end && !marks.has(bytes[at]!)) {
           let column = 0;
-          let written = rows * width;
+          let slot = 0;
           while (at <= end) {
             let stopAt = at;
             if (separator === null) while (stopAt < end && !isBlank(bytes[stopAt]!)) stopAt++;
@@ -52,7 +66,7 @@ export function plainTextParser(separator: number | null, wanted: readonly boole
             if (wanted[column]) {
               const value = cellValue(bytes, at, stopAt);
               if (value === null) return stop('not-a-number');
-              into[written++] = value;
+              columns[slot++]![rows] = value;
             }
             column++;
             at = stopAt + 1;

@@ -16,7 +16,7 @@ export type MakeTextParser = (separator: number | null, wanted: readonly boolean
 /** Enough for any preamble met; a table whose first row comes later is not recognised. */
 export const HEAD_BYTES = 1 << 16;
 const PIECE_BYTES = 1 << 20;
-const ROWS = 8192;
+const LONGEST_LINE = 1 << 26;
 
 /** The layout found in the first bytes of a file; null when it is no table. */
 export function layoutOf(source: ByteSource): TextLayout | null {
@@ -80,9 +80,6 @@ function tableCursor(
     layout.columns.map((_, index) => distinct.includes(index)),
   );
   const slots = columns.map((column) => distinct.indexOf(column));
-  const width = distinct.length;
-  const rowsAtOnce = Math.max(64, Math.floor(ROWS / Math.max(1, width / 8)));
-  const parsed = new Float64Array(rowsAtOnce * width);
   let piece = new Uint8Array(PIECE_BYTES);
   let [start, end, offset, line] = [0, 0, 0, 0];
   let [ready, taken] = [0, 0];
@@ -93,6 +90,9 @@ function tableCursor(
     end -= start;
     start = 0;
     if (end === piece.length) {
+      if (piece.length >= LONGEST_LINE) {
+        throw new OutputProblem('damaged', source.path, `has a line ${line + 1} of more than ${LONGEST_LINE} bytes`);
+      }
       const larger = new Uint8Array(piece.length * 2);
       larger.set(piece);
       piece = larger;
@@ -114,14 +114,14 @@ function tableCursor(
     }
   };
 
-  /** Parses the next rows into `parsed`; false at the end of the file. */
+  /** Parses the next rows; false at the end of the file. */
   const refill = (): boolean => {
     if (offset === 0) {
       load();
       skipPreamble();
     }
     for (;;) {
-      const got = parser.parse(piece.subarray(start, end), ended, parsed);
+      const got = parser.parse(piece.subarray(start, end), ended);
       start += got.used;
       line += got.lines;
       ready = got.rows;
@@ -169,9 +169,7 @@ function tableCursor(
         if (taken === ready && !refill()) break;
         const count = Math.min(asked - filled, ready - taken);
         for (let slot = 0; slot < slots.length; slot++) {
-          const target = into[slot]!;
-          let from = taken * width + slots[slot]!;
-          for (let row = 0; row < count; row++, from += width) target[filled + row] = parsed[from]!;
+          into[slot]!.set(parser.columns[slots[slot]!]!.subarray(taken, taken + count), filled);
         }
         taken += count;
         filled += count;
