@@ -1,25 +1,31 @@
 /** `mortise register …`: which module versions produced which published result. */
 import { createHash } from 'node:crypto';
-import { basename } from 'node:path';
+import { basename, join } from 'node:path';
 import { parse } from 'yaml';
 import { unseal } from '../audit/clearance.ts';
+import { environmentHere } from '../audit/gather.ts';
 import { type Finding, hasStop } from '../model/finding.ts';
 import { printable } from '../model/printable.ts';
+import { decodeText } from '../readers/read-source.ts';
 import type { StandingEntry } from '../register/chain.ts';
 import { type CodeNow, entryFromCode, entryMistakes } from '../register/entry-from-code.ts';
 import { EXPORT_FORMS, type ExportForm, exportEntry } from '../register/exports/export-entry.ts';
 import type { Query } from '../register/find.ts';
 import { dayOf, resultText, standingText } from '../register/find.ts';
 import { canonicalOrcid, readArxiv, readDoi } from '../register/identifiers.ts';
+import { importCsv } from '../register/import-csv.ts';
 import { plainYaml } from '../register/plain-yaml.ts';
-import type { Digested, Entry, Person, Result } from '../register/record.ts';
+import type { Digested, Entry, Person, Remaking, Result } from '../register/record.ts';
 import { Register, writerFrom } from '../register/register.edge.ts';
+import { judgeRemaking } from '../register/remake.ts';
 import { verifyRegister } from '../register/verify.edge.ts';
 import { findingsText } from '../report/finding-text.ts';
 import { sectionText } from '../report/report-text.ts';
 import { contentId } from '../runs/key.ts';
-import { thisMachine } from '../runs/machine.edge.ts';
+import { digestOf as digestOfFile } from '../runs/reference-files.edge.ts';
+import { rerunCases } from '../runs/rerun.ts';
 import { listTree } from '../runs/tree-files.edge.ts';
+import { SourceProblem } from '../sources/source-problem.ts';
 import {
   type Command,
   EXIT,
@@ -47,7 +53,7 @@ const RESULT_OPTIONS: Readonly<Record<string, OptionSpec>> = {
 export const command: Command = {
   name: 'register',
   answers: 'which module versions produced which published result',
-  usage: 'mortise register add|list|show|find|amend|withdraw|verify|export [WORDS]',
+  usage: 'mortise register add|import|list|show|find|amend|withdraw|verify|remake|export [WORDS]',
   options: {
     ...RESULT_OPTIONS,
     person: {
@@ -87,6 +93,8 @@ overwritten: to correct an entry, amend it; to take it back, withdraw it.
   mortise register add --doi 10.1000/182 --figure 4 --person "R. Vale, 0000-0002-1825-0097, author" --output profile.csv
   mortise register find --module eos-ionising --versions ">=2.0.3 <2.1.2"
   mortise register show 2026-03-01-figure-4
+  mortise register import old-results.csv      title, doi, people, date, commit, modules, notes
+  mortise register remake 2026-03-01-figure-4  build and run it again at its revision
   mortise register verify
 
 "add" fills in revision, modules, versions, contents, contracts and machine from the assembly in the working folder.
@@ -109,7 +117,18 @@ Exit status: 0 done; 1 verify found something that is a stop, or nothing was fou
 
 type Action = (words: readonly string[], invocation: Invocation, surroundings: Surroundings) => Promise<ExitStatus>;
 
-const ACTIONS: Readonly<Record<string, Action>> = { add, list, show, find, amend, withdraw, verify, export: exportOne };
+const ACTIONS: Readonly<Record<string, Action>> = {
+  import: importOld,
+  remake,
+  add,
+  list,
+  show,
+  find,
+  amend,
+  withdraw,
+  verify,
+  export: exportOne,
+};
 
 interface Opened {
   readonly register: Register;
@@ -135,7 +154,6 @@ async function open(invocation: Invocation, surroundings: Surroundings): Promise
     const bytes = await opened.tree.read(file);
     digests.set(file, bytes === null ? null : digestOf(bytes));
   }
-  const { system, processor, library } = thisMachine();
   return {
     root,
     register: new Register(root),
@@ -144,7 +162,7 @@ async function open(invocation: Invocation, surroundings: Surroundings): Promise
       revision: listing.commit,
       contentOf: (file) => contentId(ids.get(file)),
       digestOf: (file) => digests.get(file) ?? null,
-      environment: { system, processor, ...(library === null ? {} : { library }), runtime: `node ${process.version}` },
+      environment: environmentHere(),
     },
   };
 }
@@ -428,6 +446,114 @@ async function exportOne(
   const { register } = await open(invocation, surroundings);
   surroundings.out(exportEntry(entryNamed(register, words), form as ExportForm));
   return EXIT.ok;
+}
+
+/** A spreadsheet of old results: every good row becomes an entry; the others are told by line and nothing of them is lost. */
+async function importOld(
+  words: readonly string[],
+  invocation: Invocation,
+  surroundings: Surroundings,
+): Promise<ExitStatus> {
+  const [file, ...more] = words;
+  if (file === undefined || more.length > 0) throw new UsageError('mortise register import takes one CSV file');
+  const { register } = await open(invocation, surroundings);
+  const { rows, problems } = importCsv(decodeText(await readWhole(surroundings.cwd, file)));
+  const by = writerFrom(surroundings.env);
+  const recorded = rows.map(({ line, title, entry }) => ({
+    line,
+    about: register.add({ kind: 'entry', by, title, content: entry }).about,
+  }));
+  const lines = [
+    ...recorded.map((one) => `line ${one.line}: recorded ${one.about}`),
+    ...problems.map((one) => `line ${one.line}: ${printable(one.says)}`),
+    `${recorded.length} of ${rows.length + problems.filter((one) => one.line > 1).length} rows recorded`,
+  ];
+  say(invocation, surroundings, { recorded, problems }, `${lines.join('\n')}\n`);
+  return problems.some((one) => one.line > 1) ? EXIT.stop : EXIT.ok;
+}
+
+/** Builds and runs the recorded cases at the recorded revision, and records what came of it. */
+async function remake(
+  words: readonly string[],
+  invocation: Invocation,
+  surroundings: Surroundings,
+): Promise<ExitStatus> {
+  const { register, root } = await open(invocation, surroundings);
+  const entry = entryNamed(register, words);
+  const content = await runAgain(root, entry.content, invocation, surroundings);
+  if (surroundings.signal.aborted) return EXIT.interrupted;
+  register.add({ kind: 'remaking', about: entry.id, by: writerFrom(surroundings.env), content });
+  say(
+    invocation,
+    surroundings,
+    { entry: entry.id, ...content },
+    `${entry.id}: ${content.standing}${content.because === undefined ? '' : `: ${printable(content.because)}`}\n`,
+  );
+  return content.standing === 'cannot be tried'
+    ? EXIT.incomplete
+    : content.standing === 'not remade'
+      ? EXIT.stop
+      : EXIT.ok;
+}
+
+async function runAgain(
+  root: string,
+  entry: Entry,
+  invocation: Invocation,
+  surroundings: Surroundings,
+): Promise<Remaking> {
+  const environment = environmentHere();
+  const nothing = { revision: null, outcomes: [], contentOf: () => null, environment };
+  const commit = entry.code[0]?.commit;
+  if (commit === undefined) return judgeRemaking(entry, nothing);
+  let then: Awaited<ReturnType<typeof openCode>>;
+  try {
+    then = await openCode({ ...invocation, options: { ...invocation.options, at: commit } }, surroundings);
+  } catch (error) {
+    if (error instanceof SourceProblem) return judgeRemaking(entry, nothing);
+    throw error;
+  }
+  if (then.place === null) return judgeRemaking(entry, nothing);
+  const recorded = [...new Set((entry.cases ?? []).map((one) => one.case))].filter((name) => then.set.cases.has(name));
+  const cases = recorded.length > 0 ? recorded : [...then.set.cases.keys()];
+  const outcomes = await rerunCases({
+    root,
+    manifests: then.set,
+    manifestFolder: then.place.folder,
+    cases,
+    at: commit,
+    env: surroundings.env,
+    signal: surroundings.signal,
+    fresh: true,
+  });
+  const ids = new Map(listTree(root, commit).files.map((file) => [file.path, file.id]));
+  return judgeRemaking(entry, {
+    revision: commit,
+    contentOf: (file) => contentId(ids.get(file)),
+    environment,
+    outcomes: await Promise.all(
+      outcomes.map(async (one) => ({
+        case: one.case,
+        state: one.state,
+        why: one.why,
+        class: one.class,
+        worst: one.deviations.find((each) => each.class === one.class)?.quantity ?? null,
+        outputs:
+          one.result === null
+            ? {}
+            : await outputDigests(
+                one.result,
+                then.set.cases.get(one.case)?.value.outputs.map((output) => output.file) ?? [],
+              ),
+      })),
+    ),
+  });
+}
+
+async function outputDigests(folder: string, files: readonly string[]): Promise<Record<string, string>> {
+  return Object.fromEntries(
+    await Promise.all(files.map(async (file) => [file, await digestOfFile(join(folder, file))])),
+  );
 }
 
 function say(invocation: Invocation, surroundings: Surroundings, value: unknown, plain: string): void {
