@@ -3,6 +3,7 @@ import type { Command } from './command.ts';
 
 export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command }>>> = {
   open: () => import('./open.ts'),
+  check: () => import('./check.ts'),
   audit: () => import('./audit.ts'),
   compare: () => import('./compare.ts'),
   register: () => import('./register.ts'),
