@@ -57,7 +57,10 @@ function separatorOf(lines: readonly string[]): string | null {
   const tail = sample.length > 3 ? sample.slice(-3) : sample.slice(-1);
   for (const separator of SEPARATORS) {
     const counts = tail.map((line) => line.split(separator).length);
-    if (counts[0]! > 1 && counts.every((count) => count === counts[0])) return separator;
+    if (!(counts[0]! > 1 && counts.every((count) => count === counts[0]))) continue;
+    // Tabs are blanks like others, unless cells are empty or hold blanks themselves.
+    if (separator !== '\t' || sample.some((line) => /\t\s*\t|\S [^\t]*\t|\t[^\t]*\S \S/.test(line.trim())))
+      return separator;
   }
   return null;
 }
@@ -67,7 +70,7 @@ interface Line {
   readonly index: number;
 }
 
-/** The first line of numbers only; failing that, the first with a number in it that the next line matches in cells. */
+/** The first line of numbers only; failing that, the first with a number in it that most later lines match cell by cell. */
 function firstRow(lines: readonly Line[], separator: string | null): Line | null {
   const cells = (line: Line) => splitRow(line.text, separator);
   const isNumber = (cell: string) => readDecimal(cell) !== null;
@@ -78,11 +81,14 @@ function firstRow(lines: readonly Line[], separator: string | null): Line | null
   );
   if (all !== undefined) return all;
   const mixed = lines.find((line, at) => {
-    const next = lines[at + 1];
-    if (next === undefined || cells(line).length < 2) return false;
+    if (cells(line).length < 2) return false;
     const numbers = cells(line).map(isNumber);
     const share = numbers.filter(Boolean).length / numbers.length;
-    return share >= (separator === null ? 0.5 : 0.01) && cells(next).map(isNumber).join() === numbers.join();
+    const alike = (other: Line) => cells(other).map(isNumber).join() === numbers.join();
+    const after = lines.slice(at + 1, at + 50);
+    // Most of what follows has to look the same, or it is a log.
+    const isTable = after.length > 0 && after.filter(alike).length >= after.length / 2;
+    return share >= (separator === null ? 0.5 : 0.01) && isTable;
   });
   return mixed ?? null;
 }
