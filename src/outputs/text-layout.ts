@@ -85,9 +85,9 @@ function firstRow(lines: readonly Line[], separator: string | null): Line | null
     const numbers = cells(line).map(isNumber);
     const share = numbers.filter(Boolean).length / numbers.length;
     const alike = (other: Line) => cells(other).map(isNumber).join() === numbers.join();
-    const after = lines.slice(at + 1, at + 50);
+    const after = lines.slice(at + 1, at + 50).filter((other) => cells(other).some(isNumber));
     // Most of what follows has to look the same, or it is a log.
-    const isTable = after.length > 0 && after.filter(alike).length >= after.length / 2;
+    const isTable = after.length > 0 && after.filter(alike).length >= after.length * 0.7;
     return share >= (separator === null ? 0.5 : 0.01) && isTable;
   });
   return mixed ?? null;
