@@ -1,12 +1,11 @@
 /** Asks every earlier stage about one code and brings the answers together for `audit`. Holds no judgement of its own. */
 import { createHash } from 'node:crypto';
-import { fitAssembly } from '../fit/fit-assembly.ts';
+import { codeInterfaces } from '../fit/code-interfaces.ts';
+import { fitCases } from '../fit/fit-assembly.ts';
 import type { Joint } from '../fit/joint.ts';
-import { moduleInterfaces } from '../fit/module-interfaces.ts';
 import type { Finding } from '../model/finding.ts';
 import type { FileInterface } from '../model/interface.ts';
 import type { ManifestSet } from '../model/manifest.ts';
-import { readSource } from '../readers/read-source.ts';
 import type { CaseOutcome } from '../runs/case-outcome.ts';
 import { contentId } from '../runs/key.ts';
 import { thisMachine } from '../runs/machine.edge.ts';
@@ -52,13 +51,8 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
   const findings: Finding[] = [...request.findings];
 
   say({ what: 'step', step: 'joints' });
-  const interfaces = await moduleInterfaces(
-    manifests,
-    tree,
-    (path, bytes) => readSource(path, bytes),
-    manifests.modules.keys(),
-  );
-  const fit = fitAssembly(manifests, interfaces);
+  const interfaces = await codeInterfaces(manifests, tree, manifests.modules.keys());
+  const fit = fitCases(manifests, interfaces);
   findings.push(...fit.findings);
 
   const listing = listTree(

@@ -1,13 +1,12 @@
 /** `mortise check`: are the manifests sound and does every joint fit. Nothing is run. */
 import { adapterSource, stepText } from '../fit/adapter.ts';
+import { codeInterfaces } from '../fit/code-interfaces.ts';
 import { fitCases } from '../fit/fit-assembly.ts';
 import type { Joint } from '../fit/joint.ts';
-import { moduleInterfaces, type ReadSource } from '../fit/module-interfaces.ts';
 import { manifestsUnreadable } from '../manifests/load-manifests.ts';
 import { SAFETY_CAUTION } from '../model/caution.ts';
 import { type Finding, hasStop, sortFindings } from '../model/finding.ts';
 import { printable } from '../model/printable.ts';
-import { readSource } from '../readers/read-source.ts';
 import { findingsText } from '../report/finding-text.ts';
 import { wrap } from '../report/wrap.ts';
 import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
@@ -49,10 +48,7 @@ interface Checked {
 }
 
 async function check(opened: OpenedCode): Promise<Checked> {
-  const define = opened.set.assembly?.value.build?.define;
-  const read: ReadSource = (path, bytes, include) =>
-    readSource(path, bytes, { include, ...(define === undefined ? {} : { define }) });
-  const interfaces = await moduleInterfaces(opened.set, opened.tree, read);
+  const interfaces = await codeInterfaces(opened.set, opened.tree);
   const { joints, findings } = fitCases(opened.set, interfaces);
   return { joints, findings: sortFindings([...opened.findings, ...findings]) };
 }

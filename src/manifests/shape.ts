@@ -6,8 +6,8 @@ export type Shape =
   | { readonly is: 'choice'; readonly of: readonly string[] }
   | { readonly is: 'number'; readonly least?: number; readonly above?: number; readonly whole?: boolean }
   | { readonly is: 'flag' }
-  /** Text, number or flag. */
-  | { readonly is: 'scalar' }
+  /** Text, number or flag; `asText` gives a number or flag as it is written, for what ends up as text anyway. */
+  | { readonly is: 'scalar'; readonly asText?: boolean }
   /** `[low, high]`, where null is unbounded. */
   | { readonly is: 'range' }
   | { readonly is: 'list'; readonly of: Shape; readonly atLeast?: number }

@@ -203,14 +203,14 @@ export const ASSEMBLY: RecordShape = record('an assembly', {
         map(['real', 'double precision', 'complex', 'integer', 'logical'], count),
         "Bytes that the build's switches give a declared default: {real: 8}.",
       ),
-      define: may(map('variable', { is: 'scalar' }), 'Preprocessor names that the build sets.'),
+      define: may(map('variable', { is: 'scalar', asText: true }), 'Preprocessor names that the build sets.'),
     }),
     'How the code is built.',
   ),
   environment: may(
     record('an environment', {
       pass: may(list(text('variable')), 'Variables passed on; PATH and HOME always are.'),
-      set: may(map('variable', { is: 'scalar' }), 'Variables set for every run.'),
+      set: may(map('variable', { is: 'scalar', asText: true }), 'Variables set for every run.'),
     }),
     'The environment of builds and runs.',
   ),

@@ -187,7 +187,7 @@ function checkScalar(
     if (typeof node.value === 'boolean') return node.value;
     return problem(validation, node.span, `"${where}" is yes or no; this is ${what(node)}.`, 'write true or false.');
   }
-  if (shape.is === 'scalar') return checkPlain(node, validation);
+  if (shape.is === 'scalar') return checkPlain(node, shape.asText === true, validation);
   const value = asText(node, shape);
   if (value === null) {
     return problem(
@@ -227,7 +227,8 @@ function instead(form: FormName, node: ScalarNode): string {
     : TEXT_FORMS[form].mend(node.written);
 }
 
-function checkPlain(node: ScalarNode, validation: Validation): Checked {
+function checkPlain(node: ScalarNode, asText: boolean, validation: Validation): Checked {
+  if (asText && typeof node.value !== 'string') return node.written;
   if (typeof node.value === 'number' && !Number.isFinite(node.value)) {
     return problem(
       validation,

@@ -63,6 +63,14 @@ describe('sound manifests', () => {
     expect(load({}, { shipped }).set.contracts.get('gas-state')!.file).toBe('manifests/contracts/gas-state.yaml');
   });
 
+  it('give preprocessor names and variables of the environment as text, as it is written', () => {
+    const { set, findings } = load({
+      'manifests/assembly.yaml': `${SOUND['manifests/assembly.yaml']}build: {run: make, makes: [run], define: {MPI: 1, NX: 0x10, MODE: fast, ON: true}}\n`,
+    });
+    expect(findings).toEqual([]);
+    expect(set.assembly!.value.build!.define).toEqual({ MPI: '1', NX: '0x10', MODE: 'fast', ON: 'true' });
+  });
+
   it('hold a quantity called like a property of every object without mistaking it', () => {
     const contract = SOUND['manifests/contracts/gas-state.yaml']!.replace('pressure:       ', 'constructor:    ');
     const { findings } = load({ 'manifests/contracts/gas-state.yaml': contract });
