@@ -6,6 +6,7 @@ export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command 
   check: () => import('./check.ts'),
   audit: () => import('./audit.ts'),
   compare: () => import('./compare.ts'),
+  drift: () => import('./drift.ts'),
   register: () => import('./register.ts'),
   notice: () => import('./notice.ts'),
   rerun: () => import('./rerun.ts'),

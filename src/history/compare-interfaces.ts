@@ -68,3 +68,20 @@ function withoutExplained(changes: readonly Change[]): Change[] {
   const telling = new Set(changes.filter(({ kind }) => kind !== 'implementation').map(({ subject }) => subject));
   return changes.filter(({ kind, subject }) => kind !== 'implementation' || !telling.has(subject));
 }
+
+/** Places get their commit: the state after lies in it, the state before in its parent. */
+export function stamped(change: Change, commit: string): Change {
+  const after =
+    change.after?.place === undefined
+      ? change.after
+      : { ...change.after, place: { ...change.after.place, revision: commit } };
+  const before =
+    change.before?.place === undefined
+      ? change.before
+      : { ...change.before, place: { ...change.before.place, revision: `${commit}^` } };
+  return {
+    ...change,
+    ...(before === undefined ? {} : { before }),
+    ...(after === undefined ? {} : { after }),
+  };
+}

@@ -48,7 +48,12 @@ export type FitKind =
   | 'argument-intent'
   | 'table-range'
   | 'claim-contradicts';
-export type DriftKind = never;
+export type DriftKind =
+  | 'drift-undeclared'
+  | 'drift-unversioned'
+  | 'reference-renewed'
+  | 'tolerance-widened'
+  | 'copy-behind';
 export type ComparisonKind = never;
 export type RunKind = never;
 export type RegisterKind =

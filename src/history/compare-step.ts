@@ -1,0 +1,117 @@
+/** Compares the files of one commit with those of its parents. Pure. */
+import type { Change } from '../model/change.ts';
+import { compareSides, stamped } from './compare-interfaces.ts';
+import { sharedPrints } from './fingerprint.ts';
+import type { ScanAnswer, ScanStep } from './scan-step.ts';
+import type { SourceSide } from './source-side.ts';
+
+/** A blob read, or why not. */
+export type Reading = { readonly side: SourceSide } | { readonly why: string };
+
+/** Contents that agree this far are one file under two paths. */
+const MOVED_SIMILARITY = 0.5;
+
+/**
+ * @param reading  gives a blob as it was read under a path
+ * @param sameUnit  whether two spellings mean the same unit
+ */
+export function compareStep(
+  step: ScanStep,
+  reading: (id: string, path: string) => Reading,
+  sameUnit: (a: string, b: string) => boolean,
+): ScanAnswer {
+  const missing = new Map<string, string>();
+  const take = (id: string | null, path: string): SourceSide | null => {
+    if (id === null) return null;
+    const found = reading(id, path);
+    if ('side' in found) {
+      const { incomplete } = found.side.code;
+      const failed = incomplete.find((one) => one.why.startsWith('the reader failed'));
+      if (failed !== undefined) missing.set(path, failed.why);
+      return { ...found.side, path };
+    }
+    missing.set(path, found.why);
+    return null;
+  };
+  const parents = Math.max(...step.files.map((file) => file.before.length));
+  const perParent: Change[][] = [];
+  let moved: ScanAnswer['moved'] = [];
+  for (let parent = 0; parent < parents; parent += 1) {
+    const before: SourceSide[] = [];
+    const after: SourceSide[] = [];
+    const gone: { path: string; id: string; side: SourceSide }[] = [];
+    const fresh: { path: string; id: string; side: SourceSide }[] = [];
+    for (const file of step.files) {
+      const id = file.before[parent] ?? null;
+      if (id === file.after) continue;
+      const b = take(id, file.path);
+      const a = take(file.after, file.path);
+      // With one side unknown nothing can be said of the file; it must not look born or dead.
+      if ((b === null && id !== null) || (a === null && file.after !== null)) continue;
+      if (b !== null) before.push(b);
+      if (a !== null) after.push(a);
+      if (b !== null && a === null) gone.push({ path: file.path, id: id!, side: b });
+      if (a !== null && b === null) fresh.push({ path: file.path, id: file.after!, side: a });
+    }
+    if (parent === 0) moved = findMoved(gone, fresh);
+    perParent.push(compareSides(before, after, sameUnit));
+  }
+  return {
+    commit: step.commit,
+    changes: againstAll(perParent).map((change) => stamped(change, step.commit)),
+    moved,
+    missing: [...missing].map(([path, why]) => ({ path, why })),
+  };
+}
+
+/** A change that one side of a merge already had is none of the merge. */
+function againstAll(perParent: readonly Change[][]): Change[] {
+  const [first = [], ...others] = perParent;
+  return first.filter((change) =>
+    others.every((changes) => changes.some((one) => one.kind === change.kind && one.subject === change.subject)),
+  );
+}
+
+interface Candidate {
+  readonly path: string;
+  readonly id: string;
+  readonly side: SourceSide;
+}
+
+/** The same content first; then the most procedures in common, by name or by what they do. */
+function findMoved(gone: readonly Candidate[], fresh: readonly Candidate[]): { from: string; to: string }[] {
+  const pairs: { from: string; to: string; score: number }[] = [];
+  for (const b of gone) {
+    for (const a of fresh) {
+      const score = b.id === a.id ? 2 : Math.max(sharedNames(b.side, a.side), sharedBodies(b.side, a.side));
+      if (score >= MOVED_SIMILARITY) pairs.push({ from: b.path, to: a.path, score });
+    }
+  }
+  pairs.sort((x, y) => y.score - x.score || baseSame(y) - baseSame(x) || (x.from + x.to < y.from + y.to ? -1 : 1));
+  const used = new Set<string>();
+  return pairs
+    .filter(({ from, to }) => {
+      if (used.has(`b${from}`) || used.has(`a${to}`)) return false;
+      used.add(`b${from}`).add(`a${to}`);
+      return true;
+    })
+    .map(({ from, to }) => ({ from, to }));
+}
+
+function baseSame({ from, to }: { from: string; to: string }): number {
+  return from.slice(from.lastIndexOf('/')) === to.slice(to.lastIndexOf('/')) ? 1 : 0;
+}
+
+function sharedNames(b: SourceSide, a: SourceSide): number {
+  const was = new Set(b.code.procedures.map((one) => one.name.toLowerCase()));
+  const is = new Set(a.code.procedures.map((one) => one.name.toLowerCase()));
+  const shared = [...was].filter((name) => is.has(name)).length;
+  return was.size === 0 || is.size === 0 ? 0 : shared / Math.max(was.size, is.size);
+}
+
+function sharedBodies(b: SourceSide, a: SourceSide): number {
+  const prints = (side: SourceSide) =>
+    [...new Set([...(side.bodies?.values() ?? [])].flatMap((body) => body.prints))].sort((x, y) => x - y);
+  const [was, is] = [prints(b), prints(a)];
+  return was.length === 0 || is.length === 0 ? 0 : sharedPrints(was, is) / Math.max(was.length, is.length);
+}
