@@ -50,17 +50,16 @@ function isRemark(line: string): boolean {
   return REMARK_MARKS.includes(line.trimStart()[0] ?? ' ');
 }
 
-/** The separator that stands equally often, and at least once, in the first lines; null for blanks. */
+/** The separator that stands equally often in at least half of the first lines; null for blanks. */
 function separatorOf(lines: readonly string[]): string | null {
   const sample = lines.slice(0, 12);
-  // Preambles differ from the table, so the tail of the sample decides.
-  const tail = sample.length > 3 ? sample.slice(-3) : sample.slice(-1);
   for (const separator of SEPARATORS) {
-    const counts = tail.map((line) => line.split(separator).length);
-    if (!(counts[0]! > 1 && counts.every((count) => count === counts[0]))) continue;
+    const counts = sample.map((line) => line.split(separator).length).filter((count) => count > 1);
+    const alike = Math.max(0, ...counts.map((count) => counts.filter((other) => other === count).length));
+    if (alike === 0 || alike < sample.length / 2) continue;
     // Tabs are blanks like others, unless cells are empty or hold blanks themselves.
-    if (separator !== '\t' || sample.some((line) => /\t\s*\t|\S [^\t]*\t|\t[^\t]*\S \S/.test(line.trim())))
-      return separator;
+    const isBlank = separator === '\t' && !sample.some((line) => /\t\s*\t|\S [^\t]*\t|\t[^\t]*\S \S/.test(line.trim()));
+    if (!isBlank) return separator;
   }
   return null;
 }
