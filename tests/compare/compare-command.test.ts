@@ -57,7 +57,7 @@ describe('mortise compare', () => {
   });
 
   it('is content with a tolerance that is wide enough, in any norm', async () => {
-    for (const options of [
+    const enough: readonly Record<string, string>[] = [
       { relative: '1e-3' },
       { absolute: '0.02' },
       { ulp: '1e12' },
