@@ -53,7 +53,7 @@ export interface RerunRequest {
 export async function rerunCases(request: RerunRequest): Promise<CaseOutcome[]> {
   const cases = casesNamed(request.manifests, request.cases ?? []);
   return withLaboratory(request, async (laboratory) => {
-    const tree = laboratory.tree(request.at ?? null);
+    const tree = await laboratory.tree(request.at ?? null);
     const say = request.onEvent ?? (() => {});
     const planned = cases.map((one) => ({
       case: one.case,
@@ -130,8 +130,9 @@ export class Laboratory {
    * @param revision  null for the work tree
    * @throws {GitFailed} when the revision can't be read
    */
-  tree(revision: string | null, manifests: ManifestSet = this.request.manifests): TreeRuns {
-    return new TreeRuns(this, listTree(this.request.root, revision, declaredFiles(manifests)), manifests);
+  async tree(revision: string | null): Promise<TreeRuns> {
+    const { root, manifests } = this.request;
+    return new TreeRuns(this, await listTree(root, revision, declaredFiles(manifests)), manifests);
   }
 }
 
@@ -145,6 +146,11 @@ export class TreeRuns {
     this.laboratory = laboratory;
     this.listing = listing;
     this.manifests = manifests;
+  }
+
+  /** The same tree, built and run as other manifests say. */
+  by(manifests: ManifestSet): TreeRuns {
+    return new TreeRuns(this.laboratory, this.listing, manifests);
   }
 
   /** Builds and runs one case, without comparing it. */

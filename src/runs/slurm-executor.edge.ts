@@ -84,6 +84,8 @@ class SlurmPool implements Executor {
       signal.addEventListener('abort', onAbort, { once: true });
       this.waiting.set(job.key, { job, resolve: settled, reject, lost: 0 });
       if (!this.isDone(job) && !this.standing(job.key)) this.put(job);
+      // A first look after a moment, when all that are to come at once have come.
+      if (this.timer === undefined) this.askedQueue = Date.now() - QUEUE_MILLISECONDS + 2 * POLL_MILLISECONDS;
       this.timer ??= setInterval(() => this.poll(), POLL_MILLISECONDS);
     });
   }

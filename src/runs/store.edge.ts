@@ -147,13 +147,22 @@ export function resultFolder(store: Store, key: string): string {
   return join(store.folder, 'results', key);
 }
 
-/** The record of a kept result; null when there is none. */
-export function keptResult<T>(store: Store, key: string): T | null {
+/** The record of a kept result; null when there is none, or its files are not as they were when it was kept. */
+export function keptResult<T extends { files: Readonly<Record<string, number>> }>(store: Store, key: string): T | null {
+  const folder = resultFolder(store, key);
   try {
-    return JSON.parse(readFileSync(join(resultFolder(store, key), 'result.json'), 'utf8')) as T;
+    const record = JSON.parse(readFileSync(join(folder, 'result.json'), 'utf8')) as T;
+    const whole = Object.entries(record.files).every(
+      ([file, bytes]) => statSync(join(folder, 'out', file)).size === bytes,
+    );
+    return whole ? record : null;
   } catch {
     return null;
   }
+}
+
+function dropResult(store: Store, key: string): void {
+  renameSync(resultFolder(store, key), join(store.scratch, `old-${randomBytes(6).toString('hex')}`));
 }
 
 /** A new folder with `out/` in it, for one run. */
@@ -165,9 +174,10 @@ export function runFolder(store: Store): string {
 
 /** Puts a finished run where it is kept, whole or not at all. Whoever was first is kept. */
 export function keepResult(store: Store, key: string, folder: string, record: object, instead = false): string {
-  writeWhole(join(folder, 'result.json'), JSON.stringify(record));
+  // Not forced to the disk: should the machine fail, the sizes in the record tell that files were cut short.
+  writeWhole(join(folder, 'result.json'), JSON.stringify(record), false);
   const place = resultFolder(store, key);
-  if (instead && existsSync(place)) renameSync(place, join(store.scratch, `old-${randomBytes(6).toString('hex')}`));
+  if (existsSync(place) && (instead || keptResult(store, key) === null)) dropResult(store, key);
   try {
     renameSync(folder, place);
   } catch (error) {
@@ -211,12 +221,13 @@ export function keepFailure(store: Store, key: string, record: object): void {
   writeWhole(join(store.folder, 'failures', `${key}.json`), JSON.stringify(record), false);
 }
 
-/** The files below a folder, relative to it, with `/`. */
-export function outFiles(folder: string): string[] {
-  return readdirSync(folder, { recursive: true, withFileTypes: true })
+/** The files below a folder, relative to it with `/`, and their sizes in bytes. */
+export function outFiles(folder: string): Record<string, number> {
+  const files = readdirSync(folder, { recursive: true, withFileTypes: true })
     .filter((entry) => entry.isFile())
     .map((entry) => relative(folder, join(entry.parentPath, entry.name)).split(sep).join('/'))
     .sort();
+  return Object.fromEntries(files.map((file) => [file, statSync(join(folder, file)).size]));
 }
 
 /** Of what a build is to make, what is not there. */

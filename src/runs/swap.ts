@@ -74,7 +74,7 @@ export async function swapModules(request: SwapRequest): Promise<CaseSwap[]> {
   const cases = casesNamed(request.manifests, request.cases ?? []);
   checkExchanges(request, cases);
   return withLaboratory(request, async (laboratory) => {
-    const tree = laboratory.tree(request.at ?? null);
+    const tree = await laboratory.tree(request.at ?? null);
     const asked = (request.cases ?? []).length > 0;
     // Cases that do not use an exchanged component can't move; they are left out unless asked for by name.
     const concerned = asked ? cases : cases.filter((one) => concerns(request, one));

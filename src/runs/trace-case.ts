@@ -184,11 +184,10 @@ class Tracing {
   private tree(commit: string): Promise<TreeRuns> {
     let tree = this.trees.get(commit);
     if (tree === undefined) {
-      const listed = this.laboratory.tree(commit);
-      tree = manifestsOf(listed.listing, this.folder).then((own) => {
+      tree = this.laboratory.tree(commit).then(async (listed) => {
+        const own = await manifestsOf(listed.listing, this.folder);
         // Before manifests were written, the code is built and run as the newest ones say.
-        const manifests = own.assembly === null ? this.laboratory.request.manifests : own;
-        return this.laboratory.tree(commit, manifests);
+        return own.assembly === null ? listed : listed.by(own);
       });
       this.trees.set(commit, tree);
     }
@@ -305,7 +304,7 @@ class Tracing {
       withManifests: boolean,
     ): Promise<boolean> => {
       const manifests = withManifests ? before.manifests : after.manifests;
-      const tree = withManifests ? this.laboratory.tree(step.after, manifests) : after;
+      const tree = after.by(manifests);
       const { result } = await tree.run(this.caseAt(manifests), [], { replaced, keepFailures: true });
       const measured = this.usable(result);
       return measured !== null && (await this.distance(reference, measured, step.quantity)) <= threshold;

@@ -1,5 +1,5 @@
 /** The files of a code at a revision or in its work tree: listed with their content ids, and laid into a scratch folder without running hooks or filters. */
-import { spawn, spawnSync } from 'node:child_process';
+import { execFile, spawn, spawnSync } from 'node:child_process';
 import {
   closeSync,
   constants,
@@ -63,14 +63,35 @@ export function git(root: string, words: readonly string[]): Buffer {
   return done.stdout;
 }
 
-/** The folder that git keeps for the whole repository; null outside git. */
+/** The same without holding up what else goes on. @throws {GitFailed} */
+export function gitSoon(root: string, words: readonly string[]): Promise<Buffer> {
+  return new Promise((resolve, reject) => {
+    execFile(
+      'git',
+      [...SAFE, ...words],
+      { cwd: root, env: ENVIRONMENT, maxBuffer: 2 ** 30, encoding: 'buffer' },
+      (error, stdout, stderr) => {
+        if (error === null) resolve(stdout);
+        else reject(new GitFailed(stderr.toString('utf8').trim() || error.message, { cause: error }));
+      },
+    );
+  });
+}
+
+const folders = new Map<string, string | null>();
+
+/** The folder that git keeps for the whole repository; null outside git. Asked once a repository. */
 export function gitFolder(root: string): string | null {
+  const known = folders.get(root);
+  if (known !== undefined) return known;
+  let folder: string | null = null;
   try {
-    const told = git(root, ['rev-parse', '--path-format=absolute', '--git-common-dir']).toString('utf8').trimEnd();
-    return told === '' ? null : told;
+    folder = git(root, ['rev-parse', '--path-format=absolute', '--git-common-dir']).toString('utf8').trimEnd() || null;
   } catch {
-    return null;
+    // No repository, or one that git refuses to read.
   }
+  folders.set(root, folder);
+  return folder;
 }
 
 /** `Name <address>` as git knows who commits here; null when it does not. */
@@ -104,10 +125,15 @@ export function commitOf(root: string, revision: string): string {
  * @param declared  files that manifests name
  * @throws {GitFailed}
  */
-export function listTree(root: string, revision: string | null, declared: readonly string[] = []): TreeListing {
+export async function listTree(
+  root: string,
+  revision: string | null,
+  declared: readonly string[] = [],
+): Promise<TreeListing> {
   if (revision !== null) {
     const commit = commitOf(root, revision);
-    const files = splitNul(git(root, ['ls-tree', '-r', '-z', '--full-tree', commit])).map((entry): TreeFile => {
+    const listed = await gitSoon(root, ['ls-tree', '-r', '-z', '--full-tree', commit]);
+    const files = splitNul(listed).map((entry): TreeFile => {
       const tab = entry.indexOf(9);
       const [mode, , id] = entry.subarray(0, tab).toString('latin1').split(' ');
       return { mode: mode!, id: id!, path: pathOf(entry.subarray(tab + 1)) };
@@ -115,43 +141,63 @@ export function listTree(root: string, revision: string | null, declared: readon
     return { root, commit, workTree: false, changed: [], files };
   }
   if (gitFolder(root) === null) return listFolder(root);
-  let commit: string | null = null;
-  try {
-    commit = commitOf(root, 'HEAD');
-  } catch {
-    // No commit yet: everything is new.
-  }
-  const changed = new Set(splitNul(git(root, ['diff-files', '--name-only', '-z'])).map(pathOf));
-  const staged =
-    commit === null
-      ? new Set<string>()
-      : new Set(splitNul(git(root, ['diff-index', '--cached', '--name-only', '-z', commit])).map(pathOf));
+  // What differs from the commit, by the index and by the times of files; asked together, since each start of git costs.
+  const [head, listed, differing] = await Promise.all([
+    gitSoon(root, ['rev-parse', '--verify', '--quiet', 'HEAD^{commit}']).catch(() => null),
+    gitSoon(root, ['ls-files', '-s', '-z']),
+    gitSoon(root, [
+      'diff-index',
+      '--raw',
+      '-z',
+      '--no-renames',
+      '--no-abbrev',
+      '--ignore-submodules=all',
+      'HEAD',
+    ]).catch(() => null),
+  ]);
+  const commit = head === null ? null : head.toString('latin1').trim();
+  const differs = readRawDifferences(differing);
   const files: TreeFile[] = [];
-  const really = new Set<string>(staged);
+  const changed = new Set<string>();
   const known = new Set<string>();
-  for (const entry of splitNul(git(root, ['ls-files', '-s', '-z']))) {
+  for (const entry of splitNul(listed)) {
     const tab = entry.indexOf(9);
     const [mode, id] = entry.subarray(0, tab).toString('latin1').split(' ') as [string, string];
     const path = pathOf(entry.subarray(tab + 1));
     if (known.has(path)) continue;
     known.add(path);
-    if (mode === '160000' || !changed.has(path)) {
+    const difference = differs.get(path);
+    // Without a commit nothing can be told from the index: every file is read.
+    if (mode === '160000' || (differing !== null && difference === undefined)) {
       files.push({ path, id, mode });
       continue;
     }
     const now = fileNow(root, path);
-    if (now === null || now.id !== id || now.mode !== mode) really.add(path);
     if (now !== null) files.push(now);
+    // A file that was only touched has another time but the same content.
+    if (now === null || now.id !== difference?.id || now.mode !== difference.mode) changed.add(path);
   }
+  for (const path of differs.keys()) if (!known.has(path)) changed.add(path);
   for (const path of declared) {
     if (known.has(path) || !isInside(path)) continue;
     const now = fileNow(root, path);
     if (now === null) continue;
     known.add(path);
     files.push(now);
-    really.add(path);
+    changed.add(path);
   }
-  return { root, commit, workTree: true, changed: [...really].sort(), files };
+  return { root, commit, workTree: true, changed: [...changed].sort(), files };
+}
+
+/** `git diff-index --raw -z`: path to what the commit has there. */
+function readRawDifferences(bytes: Buffer | null): Map<string, { id: string; mode: string }> {
+  const differences = new Map<string, { id: string; mode: string }>();
+  const parts = splitNul(bytes ?? Buffer.alloc(0));
+  for (let i = 0; i + 1 < parts.length; i += 2) {
+    const [mode, , id] = parts[i]!.toString('latin1').slice(1).split(' ');
+    differences.set(pathOf(parts[i + 1]!), { mode: mode!, id: id! });
+  }
+  return differences;
 }
 
 function listFolder(root: string): TreeListing {

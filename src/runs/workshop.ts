@@ -76,7 +76,7 @@ interface KeptRecord {
   readonly key: string;
   readonly seconds: number;
   readonly peakMegabytes: number | null;
-  readonly files: readonly string[];
+  readonly files: Readonly<Record<string, number>>;
   readonly words: readonly string[];
   readonly date: string;
 }
@@ -185,7 +185,7 @@ export class Workshop {
       state: 'ran',
       key,
       out: `${folder}/out`,
-      files: record.files,
+      files: Object.keys(record.files),
       seconds: record.seconds,
       peakMegabytes: record.peakMegabytes,
       kept: true,
@@ -236,7 +236,7 @@ export class Workshop {
         state: 'ran',
         key: keys.run,
         out: `${place}/out`,
-        files,
+        files: Object.keys(files),
         seconds: end.seconds,
         peakMegabytes: end.peakMegabytes,
         kept: false,

@@ -1,4 +1,4 @@
-import { execFileSync } from 'node:child_process';
+import { execFileSync, spawnSync } from 'node:child_process';
 import { existsSync, mkdtempSync, readdirSync, readFileSync, rmSync } from 'node:fs';
 import { cpus, tmpdir } from 'node:os';
 import { join } from 'node:path';
@@ -135,7 +135,11 @@ describeWith(['slurm'], 'slurmExecutor', () => {
     );
     await soon(() => starts() === 1);
     execFileSync('scontrol', ['update', `nodename=${node}`, 'state=down', 'reason=test']);
-    execFileSync('scontrol', ['update', `nodename=${node}`, 'state=resume']);
+    // Slurm may take it back by itself first, and then refuses to be told.
+    await soon(() => {
+      spawnSync('scontrol', ['update', `nodename=${node}`, 'state=resume']);
+      return /idle|mixed|allocated/.test(execFileSync('sinfo', ['-h', '-o', '%T'], { encoding: 'utf8' }));
+    });
     expect(await running).toMatchObject({ how: 'ended', exitCode: 0 });
     expect(starts()).toBe(2);
   }, 90_000);
