@@ -21,6 +21,12 @@ export const command: Command = {
     relative: { type: 'string', value: 'N', says: 'allow N times |reference|, added to the absolute part' },
     ulp: { type: 'string', value: 'N', says: 'allow N units in the last place' },
     norm: { type: 'string', value: 'NORM', says: 'pointwise (the default), L1, L2 or Linf' },
+    along: {
+      type: 'string',
+      value: 'NAME',
+      says: 'the data set that is the axis: fields on unlike grids are put onto the coarser one',
+    },
+    match: { type: 'string', value: 'NAME', says: 'pair elements by the values of this data set (ids, coordinates)' },
     only: { type: 'string', value: 'NAME', multiple: true, says: 'compare this data set; may be given several times' },
   },
   help: `
@@ -47,11 +53,17 @@ Exit status 1 when anything is beyond tolerance, not comparable, or on one side 
     }
     const tolerance = toleranceOf(invocation);
     const only = invocation.options.only as readonly string[] | undefined;
+    const textOption = (name: 'along' | 'match') => {
+      const value = invocation.options[name];
+      return typeof value === 'string' ? { [name]: value } : {};
+    };
     let comparison: FileComparison;
     try {
       comparison = await compareFiles(resolve(surroundings.cwd, reference), resolve(surroundings.cwd, result), {
         ...(tolerance === null ? {} : { tolerance }),
         ...(only === undefined ? {} : { only }),
+        ...textOption('along'),
+        ...textOption('match'),
         signal: surroundings.signal,
       });
     } catch (error) {

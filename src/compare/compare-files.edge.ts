@@ -6,8 +6,11 @@ import { compareText } from '../model/place.ts';
 import { type OutputHints, openOutput } from '../outputs/open-output.edge.ts';
 import { type DatasetInfo, elementsOf, type OutputFile, OutputProblem } from '../outputs/output-file.ts';
 import { classify } from './compare-arrays.ts';
+import { fieldDeviation } from './field-deviation.ts';
+import { measureKernel } from './measure-kernel.edge.ts';
 import type { Streamed } from './measure-streams.ts';
 import { measureTablesTogether, measureTogether } from './measure-together.edge.ts';
+import { LARGEST_HELD, readPair } from './read-pair.edge.ts';
 import { grainOf } from './series.ts';
 import { completeTolerance, weighingOf } from './tolerance.ts';
 import { unitFactor } from './unit-factor.ts';
@@ -30,6 +33,10 @@ export interface FileOptions extends OutputHints {
   readonly tolerance?: Partial<Tolerance>;
   /** Data sets to compare; all when absent. */
   readonly only?: readonly string[];
+  /** Data set that is the axis: fields on unlike grids are brought onto the coarser one. */
+  readonly along?: string;
+  /** Data set whose values pair the elements of both sides. */
+  readonly match?: string;
   readonly signal?: AbortSignal;
 }
 
@@ -132,6 +139,9 @@ async function compareOpened(
   for (const info of result.datasets().filter(isWanted)) {
     if (reference.find(info.name) === null) missing.push({ file, dataset: info.name, from: 'reference' });
   }
+  if (options.along !== undefined || options.match !== undefined) {
+    return { deviations: await alignEach(file, reference, result, order, options), missing };
+  }
   if (order.length === 0 && missing.length === 0) {
     return {
       deviations: [
@@ -142,6 +152,37 @@ async function compareOpened(
   }
   const measured = await measureShared(file, reference, result, shared, options);
   return { deviations: order.map((name) => failed.get(name) ?? measured.get(name)!), missing };
+}
+
+/** Field by field, both sides in memory, aligned as a case would be. */
+async function alignEach(
+  file: string,
+  reference: OutputFile,
+  result: OutputFile,
+  names: readonly string[],
+  options: FileOptions,
+): Promise<Deviation[]> {
+  const { along, match, tolerance = {} } = options;
+  // What elements are told apart by is not compared itself: it differs where alignment is needed.
+  const isKey = (name: string) => [along, match].some((key) => key !== undefined && reference.find(key)?.name === name);
+  const deviations: Deviation[] = [];
+  for (const name of names.filter((one) => !isKey(one))) {
+    options.signal?.throwIfAborted();
+    const quantity = { dataset: name, unit: reference.find(name)!.unit ?? '', tolerance };
+    const output = {
+      file: file === '' ? 'the file' : file,
+      quantities: {},
+      ...(along === undefined ? {} : { along }),
+      ...(match === undefined ? {} : { match }),
+    };
+    const base = { case: file, quantity: name, of: 'field', unit: quantity.unit } as const;
+    const pair = await readPair(name, quantity, output, reference, result);
+    if (pair.kind === 'long') {
+      const why = `more than ${LARGEST_HELD} elements are not aligned: compare without --along and --match`;
+      deviations.push(notComparable(file, name, quantity.unit, tolerance, why));
+    } else deviations.push(fieldDeviation(base, quantity, pair, measureKernel(), {}));
+  }
+  return deviations;
 }
 
 function unlike(reference: DatasetInfo, result: DatasetInfo): string | null {

@@ -3,32 +3,23 @@ import type { Deviation, Tolerance } from '../model/deviation.ts';
 import type { Case, Domain, Feature, OutputQuantity, Range } from '../model/manifest.ts';
 import { openDeclared } from '../outputs/open-output.edge.ts';
 import { type OutputFile, OutputProblem } from '../outputs/output-file.ts';
-import { type ArrayDeviation, classify, compareArrays } from './compare-arrays.ts';
-import { asComplex } from './complex-deviation.ts';
+import { compareArrays } from './compare-arrays.ts';
 import { compareConserved } from './conserved.ts';
 import { featureUnit, takeFeature } from './features.ts';
+import { type DeviationOf, fieldDeviation, notComparable } from './field-deviation.ts';
 import { evaluateFormula } from './formula.ts';
-import type { GridConvergence } from './grid-convergence.ts';
+import { type Allowances, judge, placed } from './judge.ts';
 import { measureKernel } from './measure-kernel.edge.ts';
 import { measureTogether } from './measure-together.edge.ts';
-import { type Measured, measureArrays } from './measuring.ts';
-import { type NoiseFloor, noiseTolerance } from './noise-floor.ts';
-import { profileOf } from './profile.ts';
+import { measureArrays } from './measuring.ts';
 import { LARGEST_HELD, type Pair, readPair } from './read-pair.edge.ts';
-import { grainOf, positionOf, type Series } from './series.ts';
-import { completeTolerance, tolerancesOf, weighingOf } from './tolerance.ts';
+import { grainOf, type Series } from './series.ts';
+import { completeTolerance, weighingOf } from './tolerance.ts';
 import { unitFactor } from './unit-factor.ts';
-import { withWeights } from './weighted-norms.ts';
 
-export interface CaseOptions {
-  /** By quantity or feature: what repeated runs of the reference differ by. The larger of this and the declared is allowed. */
-  readonly noise?: Readonly<Record<string, NoiseFloor>>;
-  /** By quantity or feature: the error of the grid, so that what is beyond tolerance but below it is said as such. */
-  readonly gridError?: Readonly<Record<string, GridConvergence>>;
+export interface CaseOptions extends Allowances {
   readonly signal?: AbortSignal;
 }
-
-type Base = Pick<Deviation, 'case' | 'quantity' | 'of' | 'unit'>;
 
 /**
  * Compares the outputs of a case with its reference.
@@ -60,7 +51,7 @@ export async function compareCase(
         const deviation =
           pair.kind === 'long'
             ? await longDeviation(base, quantity, pair, reference as OutputFile, result as OutputFile, options)
-            : fieldDeviation(base, quantity, pair, options);
+            : fieldDeviation(base, quantity, pair, measureKernel(), options);
         deviations.push(deviation);
         if (pair.kind === 'held' && pair.shift !== undefined) {
           shifts.push(shiftDeviation(theCase.case, name, pair, pair.shift, output.shift!.tolerance));
@@ -133,41 +124,8 @@ async function extremesOf(file: OutputFile, quantity: OutputQuantity): Promise<R
   return least <= greatest ? [least * factor, greatest * factor] : null;
 }
 
-function fieldDeviation(
-  base: Base,
-  quantity: OutputQuantity,
-  pair: Exclude<Pair, { kind: 'long' }>,
-  options: CaseOptions,
-): Deviation {
-  const declared = completeTolerance(quantity.tolerance);
-  if (pair.kind === 'none') return notComparable({ ...base, tolerance: declared }, pair.why);
-  const { reference, result, weight, notes } = pair;
-  const weighing = weighingOf(declared);
-  let measured = measureArrays(reference.values, result.values, weighing, measureKernel());
-  if (reference.type.startsWith('complex')) measured = asComplex(measured, reference.values, result.values, weighing);
-  if (weight !== null) {
-    const weighted = withWeights(measured, reference.values, result.values, weight);
-    if (typeof weighted === 'string') return notComparable({ ...base, tolerance: declared }, weighted);
-    measured = weighted;
-  }
-  const { deviation, tolerance } = judge(
-    base.quantity,
-    measured,
-    declared,
-    grainOf(reference.type, result.type),
-    options,
-  );
-  const profile = profileOf(reference, result, tolerance);
-  return {
-    ...base,
-    ...withNotes(placed(deviation, reference), notes),
-    tolerance,
-    ...(profile === null ? {} : { profile }),
-  };
-}
-
 async function longDeviation(
-  base: Base,
+  base: DeviationOf,
   quantity: OutputQuantity,
   pair: Extract<Pair, { kind: 'long' }>,
   reference: OutputFile,
@@ -195,46 +153,6 @@ async function longDeviation(
     const side = error.path === reference.path ? 'reference' : 'result';
     return notComparable({ ...base, tolerance: declared }, `the ${side} ${error.message}`);
   }
-}
-
-/** The class under the larger of the declared tolerance and the noise floor, with a word on the error of the grid. */
-function judge(
-  quantity: string,
-  measured: Measured,
-  declared: Tolerance | null,
-  grain: number,
-  options: CaseOptions,
-): { deviation: ArrayDeviation; tolerance: Tolerance | null } {
-  const noise = options.noise?.[quantity];
-  const floor = noise === undefined ? null : noiseTolerance(noise);
-  const byDeclared = classify(measured, declared, grain);
-  const byNoise = floor === null ? null : classify(measured, floor, grain);
-  const kinder =
-    byNoise !== null &&
-    (byNoise.tolerances ?? Number.POSITIVE_INFINITY) < (byDeclared.tolerances ?? Number.POSITIVE_INFINITY);
-  const [deviation, tolerance] = kinder ? [byNoise, floor] : [byDeclared, declared];
-  const grid = options.gridError?.[quantity];
-  if (deviation.class !== 'beyond tolerance' || grid === undefined || !grid.converging) return { deviation, tolerance };
-  const below = tolerancesOf(measured, { relative: grid.fineIndex, norm: 'Linf' }) <= 1;
-  const share = `${(grid.fineIndex * 100).toPrecision(2)} %`;
-  const says = below
-    ? `beyond tolerance, but below the error of the grid (${share}): the reference itself is no more certain`
-    : `beyond the error of the grid too (${share})`;
-  return { deviation: withNotes(deviation, [says]), tolerance };
-}
-
-function withNotes<T extends { readonly why?: string }>(deviation: T, notes: readonly string[]): T {
-  const all = [...(deviation.why === undefined ? [] : [deviation.why]), ...notes];
-  return all.length === 0 ? deviation : { ...deviation, why: all.join('; ') };
-}
-
-/** The worst element with its position along the axis. */
-function placed<T extends ArrayDeviation>(deviation: T, reference: Series): T {
-  const { worst } = deviation.measures;
-  const at = worst === null ? null : positionOf(reference, worst.index);
-  if (worst === null || at === null) return deviation;
-  const along = { value: at, unit: reference.along!.unit };
-  return { ...deviation, measures: { ...deviation.measures, worst: { ...worst, along } } };
 }
 
 function shiftDeviation(
@@ -317,8 +235,4 @@ function conservedDeviation(
   const own = pair.own!;
   const { tolerance, ...deviation } = compareConserved(own.reference.values, own.result.values, declared);
   return { ...base, unit: own.result.unit, tolerance, ...placed(deviation, own.result) };
-}
-
-function notComparable(base: Base & Pick<Deviation, 'tolerance'>, why: string): Deviation {
-  return { ...base, class: 'not comparable', measures: null, tolerances: null, why };
 }

@@ -117,6 +117,17 @@ describe('mortise compare', () => {
     expect((await run(['a.csv', 'b.csv'], { only: ['nothing'] })).status).toBe(EXIT.stop);
   });
 
+  it('puts unlike grids onto the coarser one along an axis, and pairs elements by key', async () => {
+    write('fine.csv', 'x[cm],T[K]\n0,10\n0.5,15\n1,20\n1.5,50\n2,80\n');
+    expect((await run(['a.csv', 'fine.csv'])).status).toBe(EXIT.stop);
+    const aligned = await run(['a.csv', 'fine.csv'], { along: 'x' });
+    expect(aligned.status).toBe(EXIT.ok);
+    expect(aligned.out).toContain("the grids differ: interpolated onto the 3 elements of the reference's");
+    write('turned.csv', 'x[cm],T[K]\n2,80\n0,10\n1,20\n');
+    expect((await run(['a.csv', 'turned.csv'], { match: 'x' })).status).toBe(EXIT.ok);
+    expect((await run(['a.csv', 'turned.csv'], { match: 'id' })).out).toContain('has no data set "id"');
+  });
+
   it('makes names from outside harmless', async () => {
     write('evil.csv', 'x,T\u001b[31m\n1,2\n');
     expect((await run(['evil.csv', 'evil.csv'])).out).not.toContain('\u001b');
