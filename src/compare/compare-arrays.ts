@@ -108,7 +108,14 @@ function remark({ measures, unlike }: Measured): string | null {
     return `the result is infinite in ${elements(infInResult)}, the reference in ${infInReference}`;
   if (unlike > 0) return `the reference is infinite in ${elements(infInReference)} where the result is not`;
   if (maxAbsolute === 0 && identical < count) return 'differs only in the sign of zeros';
+  const worst = measures.worst;
+  if (worst !== null && isDenormal(worst.reference) && Math.abs(worst.result) < SMALLEST_NORMAL) {
+    return 'the worst element is below the smallest normal number, where digits are lost';
+  }
   return null;
 }
 
+/** IEEE Std 754-2019, binary64. */
+const SMALLEST_NORMAL = 2 ** -1022;
+const isDenormal = (value: number) => value !== 0 && Math.abs(value) < SMALLEST_NORMAL;
 const elements = (count: number) => `${count} element${count === 1 ? '' : 's'}`;

@@ -52,7 +52,12 @@ export async function measureStreams(
   }
   referenceCount += rest(reference, referenceCount, resultCount, kernel.reference);
   resultCount += rest(result, resultCount, referenceCount, kernel.result);
-  return { measured: conclude([measuring.part()], ledger.totals()), referenceCount, resultCount, absentOnOneSide };
+  return {
+    measured: conclude([measuring.part()], ledger.totals(), weighing),
+    referenceCount,
+    resultCount,
+    absentOnOneSide,
+  };
 }
 
 /** Rows of a table, a block at a time; one may come from another thread. */
@@ -100,8 +105,8 @@ export async function measureTables(
   }
   if (referenceCount > resultCount) referenceCount += await moreRows(reference, referenceCount);
   if (resultCount > referenceCount) resultCount += await moreRows(result, resultCount);
-  return columns.map(({ measuring, ledger }) => ({
-    measured: conclude([measuring.part()], ledger.totals()),
+  return columns.map(({ measuring, ledger }, index) => ({
+    measured: conclude([measuring.part()], ledger.totals(), weighings[index]!),
     referenceCount,
     resultCount,
     absentOnOneSide: 0,

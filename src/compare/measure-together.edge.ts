@@ -72,6 +72,7 @@ export async function measureTogether(
         measured: conclude(
           both.map((one) => one.part),
           ledger.totals(),
+          weighing,
         ),
         referenceCount: count,
         resultCount: count,

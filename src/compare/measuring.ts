@@ -7,7 +7,9 @@ import { scaleOf } from './sum-of-squares.ts';
 /** Measures with what classes are decided from. */
 export interface Measured {
   readonly measures: Measures;
-  /** Largest |result - reference| / (absolute + relative * |reference|); Infinity across NaN. */
+  /** What the worst element was told by. */
+  readonly weighing: Weighing;
+  /** Largest |result - reference| / (absolute + relative * |reference|) of that weighing; Infinity across NaN. */
   readonly worstRatio: number;
   /** Elements beyond absolute + relative * |reference|. */
   readonly beyond: number;
@@ -120,7 +122,7 @@ export class Measuring {
 }
 
 /** The measures of everything that the parts saw; `norms` are of the same blocks, added in order. */
-export function conclude(parts: readonly Part[], norms: Totals): Measured {
+export function conclude(parts: readonly Part[], norms: Totals, weighing: Weighing): Measured {
   const all = parts.reduce(mergeParts);
   const { unlike, beyond, maxUlp, maxReference, worstRatio, maxAbsolute, maxRelative, worst, ...counts } = all;
   const bounded = (value: number) => (unlike > 0 ? Number.POSITIVE_INFINITY : value);
@@ -135,6 +137,7 @@ export function conclude(parts: readonly Part[], norms: Totals): Measured {
       linf: bounded(share(maxAbsolute, maxReference)),
       worst,
     },
+    weighing,
     worstRatio,
     beyond,
     unlike,
@@ -201,5 +204,5 @@ export function measureArrays(
     kernel.result.set(result.subarray(at, at + room));
     measuring.take(part.length);
   }
-  return conclude([measuring.part()], ledger.totals());
+  return conclude([measuring.part()], ledger.totals(), weighing);
 }

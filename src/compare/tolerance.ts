@@ -41,10 +41,17 @@ export function tolerancesOf(measured: Measured, tolerance: Tolerance): number {
     case 'pointwise': {
       const byUlp = ulp === undefined ? Number.POSITIVE_INFINITY : over(Number(measured.ulp), ulp);
       if (tolerance.absolute === undefined && tolerance.relative === undefined) return byUlp;
-      const byValue = absolute === 0 && relative === 0 ? over(maxAbsolute, 0) : measured.worstRatio;
+      const byValue = pointwise(measured, absolute, relative);
       return Math.min(byValue, byUlp);
     }
   }
+}
+
+/** Exact for the weighing that was measured, and for a purely absolute or relative tolerance; otherwise an upper bound. */
+function pointwise(measured: Measured, absolute: number, relative: number): number {
+  const { weighing, measures } = measured;
+  if (weighing.absolute === absolute && weighing.relative === relative) return measured.worstRatio;
+  return Math.min(over(measures.maxAbsolute, absolute), over(measures.maxRelative, relative));
 }
 
 function over(measured: number, allowed: number): number {
