@@ -202,6 +202,12 @@ class Check {
           next: 'add "level:" with a number.',
         });
       }
+      if (feature.take === 'formula' && feature.formula === undefined) {
+        this.add(declaration, ['features', name, 'take'], 'value', {
+          says: 'A formula feature needs its formula.',
+          next: 'add "formula:" with an expression such as maximum(pressure) / mean(pressure).',
+        });
+      }
     }
     for (const [at, total] of (one.conserved ?? []).entries()) {
       const [path, of] = typeof total === 'string' ? [['conserved', at], total] : [['conserved', at, 'of'], total.of];

@@ -135,6 +135,51 @@ export const MODULE: RecordShape = record('a module', {
 const output = record('an output', {
   file: must(text('path'), 'The file that the run writes, below {out}.'),
   along: may(text('symbol'), 'Data set or column that is the axis of the profile.'),
+  match: may(text('symbol'), 'Data set whose values (ids, coordinates) pair the elements when their order may differ.'),
+  patterns: may(
+    map('name', text('prose')),
+    'For a log: data set name to the text around its number, with {} where the number stands.',
+  ),
+  layout: may(
+    record('a layout', {
+      'byte-order': may(choice('little', 'big'), 'little when absent.'),
+      skip: may({ is: 'number', least: 0, whole: true }, 'Bytes before the first array.'),
+      arrays: must(
+        list(
+          record('an array', {
+            name: must(text('symbol'), 'Name of the data set.'),
+            type: must(
+              choice(
+                'float64',
+                'float32',
+                'float16',
+                'int8',
+                'uint8',
+                'int16',
+                'uint16',
+                'int32',
+                'uint32',
+                'int64',
+                'uint64',
+                'complex64',
+                'complex128',
+              ),
+              'Type of one element.',
+            ),
+            shape: must(list({ is: 'number', least: 0, whole: true }), 'Extents, the fastest last; [] for one number.'),
+            unit: may(text('unit'), 'Its unit.'),
+          }),
+          1,
+        ),
+        'The arrays in the order in which they lie in the file.',
+      ),
+    }),
+    'For plain binary and Fortran records, which say nothing about themselves.',
+  ),
+  shift: may(
+    record('a shift', { tolerance: must(positive, 'How far the result may lie shifted, in the unit of the axis.') }),
+    'The result may lie shifted along the axis; it is moved back before it is compared.',
+  ),
   quantities: must(
     map(
       'name',
@@ -142,6 +187,8 @@ const output = record('an output', {
         dataset: must(text('symbol'), 'Data set or column.'),
         unit: must(text('unit'), 'Its unit.'),
         tolerance: must(tolerance, 'How far it may move from the reference.'),
+        extensive: may(flag, 'True for an amount a cell: between unlike grids its total is kept, not its values.'),
+        weight: may(text('symbol'), 'Data set of weights (cell masses, volumes, time steps) for the norms.'),
       }),
       1,
     ),
@@ -163,10 +210,23 @@ export const CASE: RecordShape = record('a case', {
       record('a feature', {
         of: must(text('name'), 'The output quantity that it is made from.'),
         take: must(
-          choice('maximum', 'minimum', 'where-maximum', 'integral', 'final', 'mean', 'crossing'),
+          choice(
+            'maximum',
+            'minimum',
+            'where-maximum',
+            'integral',
+            'final',
+            'mean',
+            'crossing',
+            'half-width',
+            'slope',
+            'period',
+            'formula',
+          ),
           'How the number is made.',
         ),
         level: may({ is: 'number' }, 'The level that crossing looks for.'),
+        formula: may(text('prose'), 'For formula: ordinary notation over quantities, maximum(p) / mean(p).'),
         unit: may(text('unit'), 'Unit of the number.'),
         tolerance: must(tolerance, 'How far it may move from the reference.'),
       }),
