@@ -11,6 +11,7 @@ import type { RunEvent } from '../runs/run-event.ts';
 import { NoQuantity } from '../runs/trace-case.ts';
 import { GitFailed } from '../runs/tree-files.edge.ts';
 import { EXIT, type ExitStatus, type Invocation, type OptionSpec, type Surroundings, UsageError } from './command.ts';
+import { jobsOf } from './jobs.ts';
 import { type OpenedCode, openCode } from './open-code.ts';
 import { textOptions } from './text-options.ts';
 
@@ -33,6 +34,7 @@ export async function openForRuns(
 /** What every run is asked with. */
 export function runRequest(opened: OpenedCode, invocation: Invocation, surroundings: Surroundings): LaboratoryRequest {
   const { executor } = invocation.options;
+  const jobs = jobsOf(invocation);
   return {
     root: opened.place.root,
     manifests: opened.set,
@@ -41,17 +43,8 @@ export function runRequest(opened: OpenedCode, invocation: Invocation, surroundi
     signal: surroundings.signal,
     onEvent: progress(invocation, surroundings),
     ...(typeof executor === 'string' ? { executor } : {}),
-    ...jobsOf(invocation),
+    ...(jobs === undefined ? {} : { jobs }),
   };
-}
-
-function jobsOf(invocation: Invocation): { jobs?: number } {
-  const { jobs } = invocation.options;
-  if (jobs === undefined) return {};
-  const count = Number(jobs);
-  if (!Number.isInteger(count) || count < 1)
-    throw new UsageError(`--jobs takes a whole number from 1; "${String(jobs)}" is none`);
-  return { jobs: count };
 }
 
 /** A line an event, beside the answer and not in it; none where nobody watches. */

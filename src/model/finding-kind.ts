@@ -55,7 +55,7 @@ export type DriftKind =
   | 'tolerance-widened'
   | 'copy-behind';
 export type ComparisonKind = never;
-export type RunKind = never;
+export type RunKind = 'reference-altered' | 'tree-incomplete';
 export type RegisterKind =
   | 'record-unreadable'
   | 'record-altered'

@@ -40,6 +40,16 @@ export interface CaseOutcome {
   /** The last lines of its log, or of the build's where that failed. */
   readonly logTail: string;
   readonly produced: Produced | null;
+  /** Why its reference can't be trusted, where there is one. */
+  readonly damage?: string;
+  /** Files of the tree that could not be laid out for it. */
+  readonly absent?: readonly AbsentFile[];
+}
+
+/** A file of the tree that is not there where the code is built and run: a link that leads outside, a submodule, a missing object. */
+export interface AbsentFile {
+  readonly path: string;
+  readonly why: string;
 }
 
 /** What produced a result: enough to make it again, or to say what has changed since. */

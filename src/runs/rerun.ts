@@ -234,6 +234,7 @@ export class TreeRuns {
       key: result.key,
       result: result.out,
       footprint: await footprintOf(theCase, result.out),
+      ...(result.absent.length === 0 ? {} : { absent: result.absent }),
     };
     const missing = theCase.outputs.filter((output) => !result.files.includes(output.file));
     if (missing.length > 0) {
@@ -251,7 +252,7 @@ export class TreeRuns {
       return { ...ran, state: 'no reference', why: `no reference was recorded; ${next}` };
     }
     const damage = await referenceDamage(reference, theCase.case);
-    if (damage !== null) return { ...ran, state: 'no reference', why: damage };
+    if (damage !== null) return { ...ran, state: 'no reference', why: damage, damage };
     const deviations = await compareCase(theCase, reference, result.out);
     return { ...ran, state: 'compared', why: '', deviations, class: worstClass(deviations) };
   }

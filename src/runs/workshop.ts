@@ -1,6 +1,6 @@
 /** Builds once a configuration and runs once a key, on whatever executor; what is kept already is taken from the store. */
 
-import type { CaseState } from './case-outcome.ts';
+import type { AbsentFile, CaseState } from './case-outcome.ts';
 import { agreesOnReads, codeFiles, namesDigest, replacedFiles, wellFormed } from './code-files.ts';
 import { fillCommand } from './command-words.ts';
 import { filesDigest, type KeyedFile, keyOf } from './key.ts';
@@ -11,6 +11,7 @@ import { readsOf } from './reads.edge.ts';
 import type { RunEvent } from './run-event.ts';
 import {
   type BuildPlace,
+  buildRecord,
   dropBuild,
   expectedSeconds,
   finishBuild,
@@ -62,6 +63,7 @@ export type RunResult =
       readonly peakMegabytes: number | null;
       readonly kept: boolean;
       readonly logTail: string;
+      readonly absent: readonly AbsentFile[];
     }
   | {
       readonly state: Exclude<CaseState, 'compared' | 'no reference'>;
@@ -79,9 +81,15 @@ interface KeptRecord {
   readonly files: Readonly<Record<string, number>>;
   readonly words: readonly string[];
   readonly date: string;
+  readonly absent: readonly AbsentFile[];
 }
 
-type Built = { readonly place: BuildPlace } | { readonly failed: RunResult };
+interface BuildRecord {
+  readonly key: string;
+  readonly absent: readonly AbsentFile[];
+}
+
+type Built = { readonly place: BuildPlace; readonly absent: readonly AbsentFile[] } | { readonly failed: RunResult };
 
 export interface WorkshopParts {
   readonly store: Store;
@@ -189,6 +197,7 @@ export class Workshop {
       seconds: record.seconds,
       peakMegabytes: record.peakMegabytes,
       kept: true,
+      absent: record.absent,
       logTail: logTail(`${folder}/log.txt`),
     };
   }
@@ -197,6 +206,7 @@ export class Workshop {
     const { store, executor, signal, say } = this.parts;
     const built = await this.buildOnce(task, keys);
     if ('failed' in built) return this.failed(task, keys, built.failed);
+    const { absent } = built;
     return this.pool.with(async () => {
       if (signal.aborted) return INTERRUPTED;
       const folder = executor.runFolder?.(keys.run, task.fresh) ?? runFolder(store);
@@ -228,6 +238,7 @@ export class Workshop {
         files,
         words: task.words,
         date: new Date().toISOString(),
+        absent,
       };
       const reads = readsOf(store.scratch, built.place.tree, keys.files);
       const place = keepResult(store, keys.run, folder, record, task.fresh);
@@ -240,6 +251,7 @@ export class Workshop {
         seconds: end.seconds,
         peakMegabytes: end.peakMegabytes,
         kept: false,
+        absent,
         logTail: tail,
       };
     });
@@ -265,7 +277,7 @@ export class Workshop {
     if (signal.aborted) return { failed: INTERRUPTED };
     const place = await takeBuild(store, key, signal).catch(() => null);
     if (place === null) return { failed: INTERRUPTED };
-    if (place.done) return { place };
+    if (place.done) return { place, absent: buildRecord<BuildRecord>(place).absent };
     let done = false;
     try {
       const { absent } = await layTree(task.listing, place.tree, task.replaced);
@@ -304,9 +316,9 @@ export class Workshop {
         }
         rememberSeconds(store, 'build', end.seconds);
       }
-      finishBuild(place, { key, absent });
+      finishBuild(place, { key, absent } satisfies BuildRecord);
       done = true;
-      return { place: { ...place, done: true } };
+      return { place: { ...place, done: true }, absent };
     } finally {
       if (!done) dropBuild(place);
     }
