@@ -143,7 +143,7 @@ async function open(invocation: Invocation, surroundings: Surroundings): Promise
       `${opened.findings[0]?.says ?? 'there is no assembly here.'} The register belongs to an assembly`,
     );
   const { root } = opened.place;
-  const listing = listTree(
+  const listing = await listTree(
     root,
     opened.tree.revision,
     [...opened.set.modules.values()].map((one) => one.file),
@@ -526,7 +526,7 @@ async function runAgain(
     signal: surroundings.signal,
     fresh: true,
   });
-  const ids = new Map(listTree(root, commit).files.map((file) => [file.path, file.id]));
+  const ids = new Map((await listTree(root, commit)).files.map((file) => [file.path, file.id]));
   return judgeRemaking(entry, {
     revision: commit,
     contentOf: (file) => contentId(ids.get(file)),
