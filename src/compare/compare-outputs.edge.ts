@@ -15,7 +15,7 @@ import { measureArrays } from './measuring.ts';
 import { LARGEST_HELD, type Pair, readPair } from './read-pair.edge.ts';
 import { grainOf, type Series } from './series.ts';
 import { completeTolerance, weighingOf } from './tolerance.ts';
-import { unitFactor } from './unit-factor.ts';
+import { NO_CHANGE, unitChange } from './unit-factor.ts';
 
 export interface CaseOptions extends Allowances {
   readonly signal?: AbortSignal;
@@ -107,8 +107,9 @@ async function openOr(open: () => Promise<OutputFile>): Promise<OutputFile | Out
 async function extremesOf(file: OutputFile, quantity: OutputQuantity): Promise<Range | null> {
   let [least, greatest] = [Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY];
   const info = file.find(quantity.dataset);
-  const factor = unitFactor(info?.unit, quantity.unit);
-  if (typeof factor === 'string') return null;
+  const found = unitChange(info?.unit, quantity.unit);
+  if ('why' in found && !found.unreadable) return null;
+  const { factor, offset } = 'why' in found ? NO_CHANGE : found;
   try {
     for await (const piece of file.read(quantity.dataset)) {
       for (const value of piece) {
@@ -121,7 +122,7 @@ async function extremesOf(file: OutputFile, quantity: OutputQuantity): Promise<R
     if (error instanceof OutputProblem) return null;
     throw error;
   }
-  return least <= greatest ? [least * factor, greatest * factor] : null;
+  return least <= greatest ? [least * factor + offset, greatest * factor + offset] : null;
 }
 
 async function longDeviation(
@@ -214,10 +215,13 @@ function featureOf(
       'why' in one ? one : { value: one.value, unit: featureUnit(feature.take, series.unit, series.along?.unit ?? '') };
   }
   if ('why' in taken || feature.unit === undefined) return taken;
-  const factor = taken.unit === '' ? 1 : unitFactor(taken.unit, feature.unit);
-  return typeof factor === 'number'
-    ? { value: taken.value * factor, unit: feature.unit }
-    : { why: `it comes in ${taken.unit}, which is not ${feature.unit}` };
+  const change = taken.unit === '' ? NO_CHANGE : unitChange(taken.unit, feature.unit);
+  if ('why' in change) {
+    return change.unreadable
+      ? { ...taken, unit: feature.unit }
+      : { why: `it comes in ${taken.unit}, which cannot be brought to ${feature.unit}` };
+  }
+  return { value: taken.value * change.factor + change.offset, unit: feature.unit };
 }
 
 function conservedDeviation(

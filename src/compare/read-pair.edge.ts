@@ -4,7 +4,7 @@ import { type DatasetInfo, elementsOf, type OutputFile, OutputProblem } from '..
 import { type Aligned, moved, ontoCoarser, pairByKey, sameAxis, shiftOf } from './align.ts';
 import { settleAbsent } from './measure-streams.ts';
 import type { Axis, Series } from './series.ts';
-import { unitFactor } from './unit-factor.ts';
+import { applyChange, NO_CHANGE, type UnitChange, unitChange } from './unit-factor.ts';
 
 /** Fields up to this many values are held in memory, so that they can be aligned, plotted and made features of. */
 export const LARGEST_HELD = 1 << 22;
@@ -72,7 +72,7 @@ export async function readPair(
 
 interface Side {
   readonly info: DatasetInfo;
-  readonly factor: number;
+  readonly change: UnitChange;
   /** null when it is too long to hold. */
   readonly series: Series | null;
   readonly weight: Float64Array | null;
@@ -89,15 +89,17 @@ async function readSide(
   // Says which data sets there are.
   if (info === null) throw file.absent(quantity.dataset);
   const held = holdUpTo(file, quantity.dataset, info);
-  const factor = unitFactor(info.unit, quantity.unit);
-  if (typeof factor === 'string')
-    return `has ${info.name} in ${info.unit}, which cannot be brought to the declared ${quantity.unit}`;
-  if (held === null) return { info, factor, series: null, weight: null };
-  if (factor !== 1) for (let i = 0; i < held.length; i++) held[i] = held[i]! * factor;
+  const found = unitChange(info.unit, quantity.unit);
+  // A heading in brackets that is no unit says nothing against the declared one.
+  if ('why' in found && !found.unreadable)
+    return `has ${info.name} in ${info.unit}, but ${found.why} as the case declares it`;
+  const change = 'why' in found ? NO_CHANGE : found;
+  if (held === null) return { info, change, series: null, weight: null };
+  applyChange(held, change);
   const shape = info.shape.map((extent) => extent ?? held.length);
   const along = output.along === undefined ? null : await readAxis(output.along, file);
   const weight = quantity.weight === undefined ? null : await file.readAll(quantity.weight);
-  return { info, factor, series: { name, unit: quantity.unit, values: held, shape, type: info.type, along }, weight };
+  return { info, change, series: { name, unit: quantity.unit, values: held, shape, type: info.type, along }, weight };
 }
 
 function holdUpTo(file: OutputFile, dataset: string, info: DatasetInfo): Float64Array | null {
@@ -134,23 +136,26 @@ function long(name: string, output: CaseOutput, a: Side, b: Side): Pair {
   }
   if (output.match !== undefined)
     return none(`${name} is too long to be paired by ${output.match}: ${shapeText(a.info.shape)}`);
-  return { kind: 'long', reference: a.info, result: b.info, resultFactor: b.factor / a.factor };
+  if (a.change.offset !== 0 || b.change.offset !== 0)
+    return none(`${name} is too long to be brought from ${a.info.unit} or ${b.info.unit} by an offset`);
+  return { kind: 'long', reference: a.info, result: b.info, resultFactor: b.change.factor / a.change.factor };
 }
 
 function align(a: Side, b: Side, quantity: OutputQuantity, output: CaseOutput, said?: string): Pair {
   const notes = said === undefined ? [] : [said];
   let [reference, result] = [a.series!, b.series!];
-  const axisFactor = unitFactor(result.along?.unit || undefined, reference.along?.unit || undefined);
-  if (typeof axisFactor === 'string') return none(`the axes differ: ${axisFactor}`);
-  if (result.along !== null && axisFactor !== 1) {
-    const values = result.along.values.map((position) => position * axisFactor);
+  const axisChange = unitChange(result.along?.unit || undefined, reference.along?.unit || undefined);
+  if ('why' in axisChange) return none(`the axes differ: ${axisChange.why}`);
+  if (result.along !== null && axisChange !== NO_CHANGE) {
+    const values = result.along.values.slice();
+    applyChange(values, axisChange);
     result = { ...result, along: { ...result.along, unit: reference.along!.unit, values } };
   }
   const oneSided = settleAbsent(
     reference.values,
     result.values,
     Math.min(reference.values.length, result.values.length),
-    { reference: scaled(a), result: scaled(b) },
+    { reference: changed(a), result: changed(b) },
   );
   if (oneSided > 0) notes.push(`${oneSided} elements have a value on one side only`);
   const own = { reference, result };
@@ -185,8 +190,8 @@ function align(a: Side, b: Side, quantity: OutputQuantity, output: CaseOutput, s
   return { kind: 'held', reference, result, weight, notes, own, ...(shift === null ? {} : { shift }) };
 }
 
-function scaled({ info, factor }: Side): number | undefined {
-  return info.fill === undefined ? undefined : info.fill * factor;
+function changed({ info, change }: Side): number | undefined {
+  return info.fill === undefined ? undefined : info.fill * change.factor + change.offset;
 }
 
 function sameGrid(reference: Series, result: Series): boolean {

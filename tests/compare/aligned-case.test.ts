@@ -183,6 +183,37 @@ describe('what is allowed', () => {
   });
 });
 
+describe('units', () => {
+  const T = { dataset: 'T', unit: 'K', tolerance: { relative: 1e-12 } };
+
+  it('that a file declares are brought to those of the case, on either side', async () => {
+    const found = await compare('x[cm],T[K]\n0,300\n100,400\n', 'x[m],T[mK]\n0,300000\n1,400000\n', {
+      along: 'x',
+      quantities: { T },
+    });
+    expect(found.T!.class).toMatch(/bit-for-bit|roundoff/);
+  });
+
+  it('may differ by an offset', async () => {
+    const found = await compare('T[K]\n300\n', 'T[Celsius]\n26.85\n', { quantities: { T } });
+    expect(found.T!.class).toMatch(/bit-for-bit|roundoff/);
+  });
+
+  it('of another dimension cannot be compared', async () => {
+    const found = await compare('T[K]\n300\n', 'T[erg]\n300\n', { quantities: { T } });
+    expect(found.T!.why).toContain('out.txt of the result has T in erg');
+  });
+
+  it('of features follow from their parts', async () => {
+    const text = 'x[cm],T[K]\n0,10\n100,30\n';
+    const area: Feature = { of: 'T', take: 'integral', unit: 'K.m', tolerance: { relative: 1e-12 } };
+    const wrong: Feature = { ...area, unit: 'g' };
+    const found = await compare(text, text.replace('30', '50'), { along: 'x', quantities: { T } }, { area, wrong });
+    expect(found.area!.measures!.worst).toMatchObject({ reference: 20, result: 30 });
+    expect(found.wrong!.why).toContain('cannot be brought to g');
+  });
+});
+
 describe('what one side lacks', () => {
   it('is named, with what there is instead', async () => {
     const found = await compare(table('x rho', [[0, 1]]), table('x density', [[0, 1]]), { quantities: { rho } });
