@@ -170,7 +170,11 @@ class JointFit {
       differs.push(`${expectingHalf.unit} is ${relation.from}, ${offeringHalf.unit} is ${relation.to}`);
       this.differing(name, 'units', 'joint-dimension', 'stop', {
         says: `${name} is ${this.expectedBy(expectingHalf.unit)} (${relation.from}) and ${this.offeredBy(offeringHalf.unit)} (${relation.to}); no factor turns one into the other.`,
-        next: `correct the unit on the side that is wrong, or write a version of the contract that says which of the two it is.`,
+        next: `correct the unit on the side that is wrong, or write a version of the contract that says which of the two it is${
+          relation.equivalences.length === 0
+            ? ''
+            : ` (physics relates them: ${relation.equivalences.slice(0, 3).join(', ')})`
+        }.`,
       });
     }
 

@@ -5,16 +5,20 @@ export type UnitRelation =
   | { readonly is: 'same' }
   /** value in `to` = factor * value in `from` + offset */
   | { readonly is: 'scale'; readonly factor: number; readonly offset: number }
-  /** The dimensions, in words. */
-  | { readonly is: 'dimension'; readonly from: string; readonly to: string }
+  /** The dimensions, and what is counted, in words; relations of physics that would lead from one to the other. */
+  | { readonly is: 'dimension'; readonly from: string; readonly to: string; readonly equivalences: readonly string[] }
   /** One of them is no unit; that is reported where it was written. */
   | { readonly is: 'unknown' };
 
 export function relateUnits(from: string, to: string): UnitRelation {
   if (from === to) return { is: 'same' };
-  const answer = conversion(from, to) as any;
-  if ('error' in answer) return answer.dimensions ? { is: 'dimension', ...answer.dimensions } : { is: 'unknown' };
-  return answer.factor === 1 && (answer.offset ?? 0) === 0
+  const answer = conversion(from, to);
+  if ('error' in answer) {
+    return answer.dimensions === undefined
+      ? { is: 'unknown' }
+      : { is: 'dimension', ...answer.dimensions, equivalences: answer.equivalences ?? [] };
+  }
+  return answer.factor === 1 && answer.offset === 0
     ? { is: 'same' }
-    : { is: 'scale', factor: answer.factor, offset: answer.offset ?? 0 };
+    : { is: 'scale', factor: answer.factor, offset: answer.offset };
 }

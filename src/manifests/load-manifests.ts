@@ -134,7 +134,10 @@ class Loader {
       ? undefined
       : validate(root, MANIFEST_SHAPES[sort], validation);
     if (value === undefined) this.refuse(source, validation.problems, sort, root);
-    else this.keep(new ManifestDeclaration(value, source, root), sort);
+    else {
+      for (const caution of validation.problems) this.findings.push(problemFinding(source, caution));
+      this.keep(new ManifestDeclaration(value, source, root), sort);
+    }
   }
 
   private keep(declaration: ManifestDeclaration<unknown>, sort: ManifestSort): void {

@@ -1,5 +1,6 @@
 /** A tree and the shape that it should have come in; the plain value and everything that is wrong with it go out, all at once. */
 import { nearest } from '../model/nearest.ts';
+import { readUnit } from '../units/read-unit.ts';
 import type { Span } from './manifest-text.ts';
 import { anyOf, type Problem, quoted } from './problem.ts';
 import type { RecordShape, Shape } from './shape.ts';
@@ -17,12 +18,14 @@ type Checked = unknown | typeof FAILED;
 /**
  * Checks a tree against a shape.
  *
- * @returns the value, with the maps that are keyed by name free of inherited properties; undefined when any problem was added
+ * @param validation  problems are added to it; it begins without any
+ * @returns the value, with the maps that are keyed by name free of inherited properties; undefined when any problem is a stop
  */
 export function validate(node: TreeNode, shape: Shape, validation: Validation): unknown {
-  const before = validation.problems.length;
   const value = check(node, shape, '', validation);
-  return validation.problems.length > before || value === FAILED ? undefined : value;
+  // A caution is said, and what it is about is taken all the same.
+  const stops = validation.problems.some((problem) => (problem.gravity ?? 'stop') === 'stop');
+  return stops || value === FAILED ? undefined : value;
 }
 
 /** `where` is the key that holds the value, for messages; empty for the whole manifest. */
@@ -212,7 +215,42 @@ function checkScalar(
     });
     return FAILED;
   }
+  if (shape.form === 'unit' && unitProblem(node, value, validation)) return FAILED;
   return value;
+}
+
+/** @returns true when the text is no unit; a unit that can be read in several ways is only a caution */
+function unitProblem(node: ScalarNode, text: string, validation: Validation): boolean {
+  const reading = readUnit(text);
+  if (!('error' in reading)) {
+    const readings = reading.readings ?? [];
+    if (readings.length > 1) {
+      validation.problems.push({
+        kind: 'unit-ambiguous',
+        gravity: 'caution',
+        span: node.span,
+        says: `${quoted(text)} can be read as ${readings.map((one) => one.says).join(', or as ')}; it is taken as the first.`,
+        next: 'write the unit so that it can be read in one way only.',
+      });
+    }
+    return false;
+  }
+  const { says, column, width, suggestion } = reading.error;
+  // Inside quotes the text begins one later; with escapes in it only the whole value can be pointed at.
+  const start = node.span.start + (node.plain ? 0 : 1) + column - 1;
+  const exact = node.written === text && start + width <= node.span.end;
+  validation.problems.push({
+    kind: 'unit-unknown',
+    span: exact ? { start, end: start + width } : node.span,
+    says: `${says.charAt(0).toUpperCase()}${says.slice(1)}${/[.!?]$/.test(says) ? '' : '.'}`,
+    next: suggestion === undefined ? 'write a unit such as g/cm3, or 1 for a pure number.' : nextText(suggestion),
+  });
+  return true;
+}
+
+/** A suggestion is a unit, or an instruction of several words. */
+function nextText(suggestion: string): string {
+  return suggestion.includes(' ') ? `${suggestion.replace(/\.$/, '')}.` : `write "${suggestion}".`;
 }
 
 function asText(node: ScalarNode, shape: Shape): string | null {

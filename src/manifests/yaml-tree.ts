@@ -46,6 +46,8 @@ export function readYamlTree(source: ManifestText): YamlTree {
   const { document } = composed;
   const problems: Problem[] = [];
   for (const error of document.errors) {
+    // After a first mistake the parser stumbles over everything that follows it.
+    if (error.code === 'UNEXPECTED_TOKEN' && problems.length > 0) continue;
     const problem = syntaxProblem(error.code, error.message, spanOf(error.pos), source);
     // Brackets that stay open are told by each of them at one and the same place.
     if (problems.at(-1)?.says !== problem.says) problems.push(problem);

@@ -359,6 +359,38 @@ Next: write "expects", or remove it.
     expect(finding.next).toBe(next);
   });
 
+  it('in a unit points at the part that is none, in quotes too, and says what was probably meant', () => {
+    for (const [text, column] of [
+      ['gram/parsek', 35],
+      ['"gram/parsek"', 36],
+    ] as const) {
+      const { findings } = spoil(
+        'manifests/modules/eos-ionising.yaml',
+        'internal-energy: erg/g',
+        `internal-energy: ${text}`,
+      );
+      expect(lines(findings)).toEqual([`modules/eos-ionising.yaml:10:${column} unit-unknown`]);
+      expect(findings[0]!.evidence[0]!.excerpt!.width).toBe(6);
+      expect(findings[0]!.next).toBe('write "parsec".');
+    }
+  });
+
+  it('is only a caution for a unit that can be read in two ways, and the manifest is taken', () => {
+    const { findings, set } = spoil('manifests/contracts/gas-state.yaml', 'unit: erg/g', 'unit: b');
+    expect(findings.map((one) => [one.kind, one.gravity])).toEqual([['unit-ambiguous', 'caution']]);
+    expect(findings[0]!.says).toContain('barn');
+    expect(set.contracts.has('gas-state')).toBe(true);
+  });
+
+  it('of syntax is told once, not for everything that follows it', () => {
+    const { findings } = spoil(
+      'manifests/modules/eos-ionising.yaml',
+      '{internal-energy: erg/g}',
+      '{internal-energy: erg/g ]}',
+    );
+    expect(findings.map((one) => one.kind)).toEqual(['manifest-syntax']);
+  });
+
   it('comes with all others of its file at once', () => {
     const { findings } = load({
       'manifests/modules/hydro.yaml': `module: hydro
