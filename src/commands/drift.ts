@@ -51,7 +51,7 @@ Exit status: 0 nothing of gravity stop, 1 at least one stop, 2 an unknown revisi
       const chosen = choose(report, options.module, options.component);
       surroundings.out(
         options.json === true
-          ? `${JSON.stringify({ document: 'mortise drift', ...chosen }, null, 2)}\n`
+          ? `${JSON.stringify({ document: 'mortise drift', ...chosen, paths: Object.fromEntries([...chosen.paths].map(([name, paths]) => [name, [...paths]])) }, null, 2)}\n`
           : text(chosen, invocation, surroundings),
       );
       if (!report.complete) return EXIT.interrupted;

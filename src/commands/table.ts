@@ -7,9 +7,11 @@ export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command 
   audit: () => import('./audit.ts'),
   compare: () => import('./compare.ts'),
   drift: () => import('./drift.ts'),
+  lineage: () => import('./lineage.ts'),
   register: () => import('./register.ts'),
   notice: () => import('./notice.ts'),
   rerun: () => import('./rerun.ts'),
   swap: () => import('./swap.ts'),
   trace: () => import('./trace.ts'),
+  unit: () => import('./unit.ts'),
 };

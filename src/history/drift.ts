@@ -19,6 +19,7 @@ import { declaringFiles, isDeclaring } from './declaring-files.ts';
 import { commitText, eventFinding, undeclaredFinding } from './drift-findings.ts';
 import { draftNames, followPaths } from './module-names.ts';
 import type { ModuleStep } from './module-step.ts';
+import { netChange } from './net-change.ts';
 import { readLog } from './read-log.edge.ts';
 import { type Release, type ReleaseWindow, releaseWindows } from './releases.ts';
 import { sameUnit } from './same-unit.ts';
@@ -30,6 +31,8 @@ export interface DriftOptions {
   /** Folder of the manifests; `manifests` when absent. */
   readonly folder?: string;
   readonly workers?: number;
+  /** Take everything between the two ends of the range as one step; needs a range with both ends. */
+  readonly net?: boolean;
   /** Keep and use answers of earlier scans; true when absent. */
   readonly cache?: boolean;
   readonly signal?: AbortSignal;
@@ -44,6 +47,8 @@ export interface DriftReport {
   /** In the order of history. */
   readonly steps: readonly ModuleStep[];
   readonly findings: readonly Finding[];
+  /** Every path that each module's files ever had. */
+  readonly paths: ReadonlyMap<string, ReadonlySet<string>>;
   /** What could not be read, and why. */
   readonly notes: readonly string[];
   /** False when it was interrupted; what is told is true as far as it goes. */
@@ -61,7 +66,10 @@ export async function drift(
 ): Promise<DriftReport> {
   const folder = options.folder ?? 'manifests';
   const wanted = (path: string) => isDeclaring(path, folder) || languageOf(path) !== null;
-  const log = await readLog(repository, range, wanted);
+  const log =
+    options.net === true && range.from !== null
+      ? { commits: [await netChange(repository, range.from, range.to, wanted)], broken: null }
+      : await readLog(repository, range, wanted);
   const notes =
     log.broken === null ? [] : [`the log stops early, since this clone lacks part of the history: ${log.broken}`];
 
@@ -101,6 +109,7 @@ export async function drift(
   const history = new VersionHistory(log.commits, stateOf);
   const found: ModuleStep[] = [];
   const findings: Finding[] = [];
+  const paths = new Map<string, Set<string>>();
   for (const [index, commit] of log.commits.entries()) {
     const after = await stateOf(commit.id);
     const before = await Promise.all(
@@ -108,7 +117,17 @@ export async function drift(
     );
     const answer = answers.get(commit.id);
     if (answer === undefined && before.every((state) => state === after)) continue;
-    const groups = groupChanges(commit, answer, before, after, lastState, manifests, follow, names);
+    const ownerOf = (path: string): string | null => {
+      const owner = after.owners.get(path) ?? before[0]!.owners.get(path);
+      if (owner !== undefined) return owner;
+      const { last } = follow(commit.id, path);
+      return lastState.owners.get(last) ?? (manifests ? null : (names.get(last) ?? last));
+    };
+    for (const { path } of answer === undefined ? [] : commit.files) {
+      const module = ownerOf(path);
+      if (module !== null) paths.set(module, (paths.get(module) ?? new Set()).add(path));
+    }
+    const groups = groupChanges(commit, answer, before, after, ownerOf);
     const { files: _, ...head } = commit;
     for (const [module, group] of groups) {
       const policy = policyOf(after);
@@ -142,6 +161,7 @@ export async function drift(
     range,
     commits: log.commits.length,
     manifests,
+    paths,
     steps: withCallers,
     findings: sortFindings(findings),
     notes,
@@ -166,10 +186,7 @@ function groupChanges(
   answer: ScanAnswer | undefined,
   before: readonly DeclaredState[],
   after: DeclaredState,
-  last: DeclaredState,
-  manifests: boolean,
-  follow: ReturnType<typeof followPaths>,
-  names: ReadonlyMap<string, string>,
+  ownerOf: (path: string) => string | null,
 ): Map<string, Group> {
   const groups = new Map<string, Group>();
   const group = (module: string): Group => {
@@ -178,14 +195,6 @@ function groupChanges(
     const made: Group = { event: null, changes: [] };
     groups.set(module, made);
     return made;
-  };
-  const ownerOf = (path: string): string | null => {
-    const owner = after.owners.get(path) ?? before[0]!.owners.get(path);
-    if (owner !== undefined) return owner;
-    const { last: lastPath } = follow(commit.id, path);
-    const later = last.owners.get(lastPath);
-    if (later !== undefined) return later;
-    return manifests ? null : (names.get(lastPath) ?? lastPath);
   };
   const movedTo = new Set(answer?.moved.map(({ to }) => to));
   const movedFrom = new Set(answer?.moved.map(({ from }) => from));

@@ -1,10 +1,16 @@
 /** Whether two spellings mean the same unit. */
+import { conversion } from '../units/conversion.ts';
 
-/** Equal but for white space and `**` for `^`. */
+const known = new Map<string, boolean>();
+
+/** `g/cm3`, `g cm^-3` and `gram per cubic centimetre` are one; what is no unit is equal only to itself. */
 export function sameUnit(a: string, b: string): boolean {
-  return plain(a) === plain(b);
-}
-
-function plain(text: string): string {
-  return text.replace(/\s+/g, ' ').replaceAll('**', '^').trim();
+  if (a === b) return true;
+  const key = `${a}\0${b}`;
+  const before = known.get(key);
+  if (before !== undefined) return before;
+  const answer = conversion(a, b);
+  const same = !('error' in answer) && answer.factor === 1 && (answer.offset ?? 0) === 0;
+  known.set(key, same);
+  return same;
 }

@@ -1,14 +1,11 @@
 /** Reads the blobs of a run of commits in one stream, in the order in which they are first needed, and compares as they come. */
 import type { RepositoryPlace } from '../sources/find-repository.edge.ts';
-import { startGit } from '../sources/git.edge.ts';
-import { ObjectStream, type StreamedObject } from '../sources/object-stream.ts';
+import type { StreamedObject } from '../sources/object-stream.ts';
+import { streamObjects } from '../sources/stream-objects.edge.ts';
 import { compareStep, type Reading } from './compare-step.ts';
 import { readSide } from './read-side.ts';
 import { sameUnit } from './same-unit.ts';
 import type { ScanAnswer, ScanStep } from './scan-step.ts';
-
-/** Longer files are generated tables or data, not source that anyone maintains. */
-const LONGEST_SOURCE_BYTES = 20_000_000;
 
 /**
  * Every blob is read once in a piece and forgotten after its last use, so memory follows the size of the tree, not of history.
@@ -75,23 +72,4 @@ function needsOf(step: ScanStep): { key: string; id: string; path: string }[] {
 function keyOf(id: string, path: string): string {
   const name = path.slice(path.lastIndexOf('/') + 1);
   return `${id}${name.slice(name.lastIndexOf('.'))}`;
-}
-
-async function* streamObjects(place: RepositoryPlace, ids: readonly string[]): AsyncGenerator<StreamedObject, void> {
-  if (ids.length === 0) return;
-  const child = startGit(place, 'objects', ['cat-file', '--batch', '--buffer']);
-  child.on('error', () => {});
-  child.stdin.on('error', () => {});
-  child.stderr.resume();
-  child.stdin.end(`${ids.join('\n')}\n`);
-  const ready: StreamedObject[] = [];
-  const stream = new ObjectStream(LONGEST_SOURCE_BYTES, (object) => ready.push(object));
-  try {
-    for await (const chunk of child.stdout) {
-      stream.push(chunk as Buffer);
-      yield* ready.splice(0);
-    }
-  } finally {
-    child.kill();
-  }
 }

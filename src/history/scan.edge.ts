@@ -4,6 +4,7 @@ import { existsSync } from 'node:fs';
 import { Worker } from 'node:worker_threads';
 import { builtAsset } from '../sources/assets.edge.ts';
 import type { RepositoryPlace } from '../sources/find-repository.edge.ts';
+import type { NamedBlob } from './read-prints.edge.ts';
 import { scanPiece } from './scan-piece.edge.ts';
 import { type ScanAnswer, type ScanStep, stepText } from './scan-step.ts';
 import { openStepCache } from './step-cache.edge.ts';
@@ -68,25 +69,39 @@ async function scanOpen(
   if (workers === 0 || steps.length < STEPS_WORTH_THREADS || !existsSync(script)) {
     return scanPiece(place, steps, take, signal);
   }
-  const pieces = cut(steps, workers);
-  await Promise.all(
-    Array.from({ length: Math.min(workers, pieces.length) }, () => runWorker(script, place, pieces, take, signal)),
-  );
+  const pieces = cut(steps, workers).map((piece) => ({ steps: piece }));
+  await runThreads(script, place, pieces, workers, take, signal);
 }
 
 /** Long runs share the most blobs between neighbours; a few for each thread even out their work. */
-function cut(steps: readonly ScanStep[], workers: number): ScanStep[][] {
-  const length = Math.max(STEPS_WORTH_THREADS, Math.min(2_000, Math.ceil(steps.length / (workers * 3))));
-  const pieces: ScanStep[][] = [];
-  for (let at = 0; at < steps.length; at += length) pieces.push(steps.slice(at, at + length));
+export function cut<T>(all: readonly T[], workers: number): T[][] {
+  const length = Math.max(STEPS_WORTH_THREADS, Math.min(2_000, Math.ceil(all.length / (workers * 3))));
+  const pieces: T[][] = [];
+  for (let at = 0; at < all.length; at += length) pieces.push(all.slice(at, at + length));
   return pieces;
 }
 
-function runWorker(
+/** What a thread is asked to do; each piece is answered in batches. */
+export type Piece = { readonly steps: readonly ScanStep[] } | { readonly blobs: readonly NamedBlob[] };
+
+/** Ends every thread when the pieces are done, when one fails, or when it is interrupted. */
+export async function runThreads<A>(
   script: string,
   place: RepositoryPlace,
-  pieces: ScanStep[][],
-  take: (answer: ScanAnswer) => void,
+  pieces: Piece[],
+  workers: number,
+  take: (answer: A) => void,
+  signal?: AbortSignal,
+): Promise<void> {
+  const count = Math.min(workers, pieces.length);
+  await Promise.all(Array.from({ length: count }, () => runThread(script, place, pieces, take, signal)));
+}
+
+function runThread<A>(
+  script: string,
+  place: RepositoryPlace,
+  pieces: Piece[],
+  take: (answer: A) => void,
   signal: AbortSignal | undefined,
 ): Promise<void> {
   return new Promise((done, fail) => {
@@ -98,7 +113,7 @@ function runWorker(
       if (piece === undefined || signal?.aborted === true) stop();
       else worker.postMessage(piece);
     };
-    worker.on('message', (message: { answers?: ScanAnswer[]; done?: true; failed?: string }) => {
+    worker.on('message', (message: { answers?: A[]; done?: true; failed?: string }) => {
       for (const answer of message.answers ?? []) take(answer);
       if (message.done === true) next();
       if (message.failed !== undefined) {
