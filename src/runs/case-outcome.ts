@@ -63,6 +63,8 @@ export interface Produced {
   readonly command: readonly string[];
   readonly build: readonly string[] | null;
   readonly select: Readonly<Record<string, string>>;
+  /** Content ids of the manifests it was built and run by: assembly, case, modules, contracts of the code's own. */
+  readonly manifests?: Readonly<Record<string, string>>;
   /** File to content id. */
   readonly inputs: Readonly<Record<string, string>>;
   readonly environment: ProducedEnvironment;

@@ -1,7 +1,7 @@
 /** Runs jobs on this machine, each as a process group of its own that is ended as a whole. */
 import { spawn } from 'node:child_process';
 import { setMaxListeners } from 'node:events';
-import { closeSync, fstatSync, openSync, readdirSync, readFileSync } from 'node:fs';
+import { closeSync, existsSync, fstatSync, openSync, readdirSync, readFileSync } from 'node:fs';
 import { availableParallelism } from 'node:os';
 import type { Guard } from './guard.edge.ts';
 import type { Executor, ProcessEnd, ProcessJob } from './process-end.ts';
@@ -82,7 +82,8 @@ export function runLocally(job: ProcessJob, signal: AbortSignal, guard?: Guard):
       resolve(done);
     };
     child.on('error', (error: NodeJS.ErrnoException) => {
-      const why = error.code === 'ENOENT' ? `there is no program "${job.words[0]}" in PATH` : error.message;
+      const absent = error.code === 'ENOENT' && existsSync(job.folder);
+      const why = absent ? `there is no program "${job.words[0]}" in PATH` : error.message;
       settle({ ...nothing, how: 'not started', seconds: seconds(), why });
     });
     child.on('exit', (exitCode, ended) => {

@@ -7,6 +7,8 @@ import { findProgram, thisMachine, versionOf } from './machine.edge.ts';
 import type { TreeListing } from './tree-files.edge.ts';
 
 export interface Making {
+  /** Name of the case. */
+  readonly case: string;
   readonly manifests: ManifestSet;
   readonly listing: TreeListing;
   readonly configuration: Configuration;
@@ -57,6 +59,7 @@ export async function producedBy(making: Making): Promise<Produced> {
     revision: listing.commit,
     changed: listing.changed,
     modules,
+    manifests: manifestIds(making, ids),
     command: making.command,
     build: making.build,
     select: configuration.select,
@@ -65,6 +68,20 @@ export async function producedBy(making: Making): Promise<Produced> {
     ),
     environment: { ...thisMachine(), programs, variables, executor: making.executor },
   };
+}
+
+function manifestIds({ manifests, configuration, case: name }: Making, ids: ReadonlyMap<string, string>) {
+  const plugged = Object.values(configuration.plugged);
+  const files = [
+    manifests.assembly?.file,
+    manifests.cases.get(name)?.file,
+    ...plugged.map((module) => manifests.modules.get(module)?.file),
+    ...[...manifests.contracts.values()].map((contract) => contract.file),
+  ];
+  // The contracts that ship with the program are no files of the code.
+  return Object.fromEntries(
+    files.flatMap((file) => (file !== undefined && ids.has(file) ? [[file, contentId(ids.get(file))!]] : [])),
+  );
 }
 
 const known = new WeakMap<TreeListing, ReadonlyMap<string, string>>();

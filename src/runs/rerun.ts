@@ -197,6 +197,7 @@ export class TreeRuns {
       keepFailures: options.keepFailures ?? false,
     });
     const produced = await producedBy({
+      case: theCase.case,
       manifests: this.manifests,
       listing: this.listing,
       configuration,
@@ -297,6 +298,8 @@ function executorOf(request: LaboratoryRequest, store: Store): Executor {
 /** Files that manifests name: they belong to the code even when git does not track them yet. */
 function declaredFiles(manifests: ManifestSet): string[] {
   return [
+    ...(manifests.assembly === null ? [] : [manifests.assembly.file]),
+    ...[...manifests.modules.values(), ...manifests.cases.values()].map(({ file }) => file),
     ...[...manifests.modules.values()].flatMap(({ value }) => [
       ...value.source.files,
       ...(value.tables ?? []).map((table) => table.file),

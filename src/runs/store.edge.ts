@@ -172,6 +172,17 @@ export function runFolder(store: Store): string {
   return folder;
 }
 
+/** A folder beside the outputs for what a run means to throw away. */
+export function temporaryFolder(folder: string): string {
+  const temporary = join(folder, 'tmp');
+  mkdirSync(temporary, { recursive: true });
+  return temporary;
+}
+
+export function dropTemporary(folder: string): void {
+  rmSync(join(folder, 'tmp'), { recursive: true, force: true, maxRetries: 3 });
+}
+
 /** Puts a finished run where it is kept, whole or not at all. Whoever was first is kept. */
 export function keepResult(store: Store, key: string, folder: string, record: object, instead = false): string {
   // Not forced to the disk: should the machine fail, the sizes in the record tell that files were cut short.

@@ -13,6 +13,7 @@ import {
   type BuildPlace,
   buildRecord,
   dropBuild,
+  dropTemporary,
   expectedSeconds,
   finishBuild,
   keepFailure,
@@ -29,6 +30,7 @@ import {
   runFolder,
   type Store,
   takeBuild,
+  temporaryFolder,
 } from './store.edge.ts';
 import { layTree, type TreeListing } from './tree-files.edge.ts';
 
@@ -218,7 +220,7 @@ export class Workshop {
           name: task.case,
           words: fillCommand(task.words, { out: `${folder}/out`, root: built.place.tree }),
           folder: built.place.tree,
-          environment: task.environment,
+          environment: this.surroundings(task, built.place, executor.kind === 'local' ? folder : null),
           log,
           timeLimitSeconds: task.timeLimitSeconds,
           memoryMegabytes: task.memoryMegabytes,
@@ -226,6 +228,7 @@ export class Workshop {
         signal,
       );
       const tail = logTail(log);
+      dropTemporary(folder);
       if (!endedWell(end)) return this.failed(task, keys, notWell(end, 'the run', tail));
       say({ what: 'ran', case: task.case, seconds: end.seconds, kept: false });
       rememberSeconds(store, task.case, end.seconds);
@@ -255,6 +258,16 @@ export class Workshop {
         logTail: tail,
       };
     });
+  }
+
+  /**
+   * The declared variables, and two that keep a run to itself and are no part of its key: temporary files go where they are
+   * removed with it, and git, should a build ask it for a version, does not take the repository around the store for the code's.
+   */
+  private surroundings(task: RunTask, place: BuildPlace, own: string | null): Record<string, string> {
+    const around: Record<string, string> = { GIT_CEILING_DIRECTORIES: place.folder };
+    if (own !== null) around.TMPDIR = temporaryFolder(own);
+    return { ...around, ...task.environment };
   }
 
   private failed(task: RunTask, keys: Keys, result: RunResult): RunResult {
@@ -291,13 +304,14 @@ export class Workshop {
             name,
             words: fillCommand(task.build, { root: place.tree }),
             folder: place.tree,
-            environment: task.environment,
+            environment: this.surroundings(task, place, place.folder),
             log: place.log,
             timeLimitSeconds: null,
             memoryMegabytes: null,
           },
           signal,
         );
+        dropTemporary(place.folder);
         say({ what: 'built', build: name, seconds: end.seconds, well: endedWell(end) });
         if (!endedWell(end)) {
           const result = notWell(end, 'the build', logTail(place.log));

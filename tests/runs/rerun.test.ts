@@ -100,3 +100,34 @@ describe('recordReference', () => {
     expect(read!.outputs['profile.csv']!.digest).toMatch(/^sha256:[0-9a-f]{64}$/);
   });
 });
+
+describe('what surrounds a run', () => {
+  const seen = async (script: string) => {
+    code.write({
+      'src/main.mjs': `import { execFileSync } from 'node:child_process';
+import { readdirSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+${script}
+writeFileSync(process.argv[3] + '/profile.csv', 'x,pressure,temperature\\n1,1,1\\n');`,
+    });
+    const [outcome] = await rerun({ env: { ...CALLER, SECRET: 'x', LANG: 'de_DE.UTF-8' } });
+    return outcome!;
+  };
+
+  it('is only what is declared: no other variable of the caller reaches it', async () => {
+    const { logTail } = await seen('console.log(Object.keys(process.env).sort().join());');
+    expect(logTail).toBe('GIT_CEILING_DIRECTORIES,HOME,LC_ALL,PATH,TMPDIR\n');
+  });
+
+  it('has a folder for temporary files that is gone afterwards', async () => {
+    const { result } = await seen("writeFileSync(tmpdir() + '/left', 'x');");
+    expect(readdirSync(join(result!, '..')).sort()).toEqual(['log.txt', 'out', 'result.json']);
+  });
+
+  it('is no repository: a code that asks git for its version does not get that of another', async () => {
+    const { logTail } = await seen(
+      "try { execFileSync('git', ['rev-parse', 'HEAD'], { stdio: ['ignore', 'inherit', 'inherit'] }); } catch {}",
+    );
+    expect(logTail).toContain('not a git repository');
+  });
+});

@@ -1,6 +1,7 @@
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import { NoPath } from '../../src/runs/commit-graph.ts';
-import { NoQuantity, type TraceRequest, traceCase } from '../../src/runs/trace-case.ts';
+import type { RunEvent } from '../../src/runs/run-event.ts';
+import { NoQuantity, TraceInterrupted, type TraceRequest, traceCase } from '../../src/runs/trace-case.ts';
 import { CALLER, TINY, TinyCode } from './tiny-code.ts';
 
 let code: TinyCode;
@@ -90,6 +91,31 @@ describe('traceCase', () => {
     });
     expect(told(again.steps)).toEqual(['temperature: Cool faster']);
     expect(ran).toEqual([]);
+  });
+
+  it('goes on where it was interrupted', async () => {
+    const good = code.git('rev-parse', 'HEAD');
+    for (let i = 0; i < 6; i++) {
+      code.write({ 'src/cooling.mjs': cooling(i < 4 ? `2 * t * ${i} / ${i === 0 ? 1 : i}` : '3 * t', 'rate(t) + 1') });
+      code.commit(`Cool ${i}`);
+    }
+    const interrupt = new AbortController();
+    const ran: string[] = [];
+    const onEvent = (event: RunEvent) => void (event.what === 'ran' && !event.kept && ran.push(event.case));
+    const first = trace(good, 'HEAD', {
+      signal: interrupt.signal,
+      onEvent,
+      onTrace: (event) => void (event.what === 'measured' && event.runs >= 2 && interrupt.abort()),
+    });
+    await expect(first).rejects.toThrow(TraceInterrupted);
+    const before = ran.length;
+    expect(before).toBeGreaterThan(0);
+    const again = await trace(good, 'HEAD', { onEvent });
+    expect(again.steps.map((step) => step.subject)).toContain('Cool 4');
+    const whole = ran.length;
+    const all = await trace(good, 'HEAD', { onEvent });
+    expect(all.steps).toEqual(again.steps);
+    expect(ran.length).toBe(whole);
   });
 
   it('looks for the step on the branch that a merge brought in', async () => {
