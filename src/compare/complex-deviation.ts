@@ -16,7 +16,7 @@ export function asComplex(
   weighing: Weighing,
 ): Measured {
   if (measured.unlike > 0) return measured;
-  let [maxAbsolute, maxRelative, maxReference, worstRatio, worstAt, beyond, identical] = [0, 0, 0, 0, -1, 0, 0];
+  let [maxAbsolute, maxRelative, maxReference, worstRatio, worstAt, identical] = [0, 0, 0, 0, -1, 0];
   for (let i = 0; i + 1 < reference.length; i += 2) {
     const [x, y, u, v] = [reference[i]!, reference[i + 1]!, result[i]!, result[i + 1]!];
     if (Object.is(x, u) && Object.is(y, v)) identical++;
@@ -27,7 +27,6 @@ export function asComplex(
     maxAbsolute = Math.max(maxAbsolute, d);
     maxRelative = Math.max(maxRelative, d / size);
     const allowed = weighing.absolute + weighing.relative * size;
-    if (d > allowed) beyond++;
     if (d / allowed > worstRatio) [worstRatio, worstAt] = [d / allowed, i];
   }
   const worst =
@@ -48,5 +47,5 @@ export function asComplex(
     linf,
     worst,
   };
-  return { ...measured, measures, worstRatio, beyond, maxReference };
+  return { ...measured, measures, worstRatio, maxReference };
 }

@@ -18,8 +18,8 @@ import { measureSegments, type SegmentsFound, type SharedWork } from './measure-
 import { measureStreams, measureTables, rowsOf, type Streamed, type TableRows } from './measure-streams.ts';
 import { conclude } from './measuring.ts';
 
-/** Starting a thread and opening the files in it costs as much as measuring some thirty million elements. */
-const WORTH_A_THREAD = 1 << 25;
+/** Starting a thread and opening the files in it costs as much as measuring some hundred million elements. */
+const WORTH_A_THREAD = 1 << 27;
 
 export interface ThreadTask {
   readonly reference: { readonly path: string; readonly name: string };
@@ -98,7 +98,7 @@ function inThread(script: string, task: ThreadTask): { found: Promise<SegmentsFo
 }
 
 /** Text worth parsing in a thread of its own. */
-const WORTH_A_THREAD_BYTES = 1 << 24;
+const WORTH_A_THREAD_BYTES = 1 << 26;
 /** Blocks that the other thread may be ahead. */
 const AHEAD = 4;
 

@@ -11,8 +11,6 @@ export interface Measured {
   readonly weighing: Weighing;
   /** Largest |result - reference| / (absolute + relative * |reference|) of that weighing; Infinity across NaN. */
   readonly worstRatio: number;
-  /** Elements beyond absolute + relative * |reference|. */
-  readonly beyond: number;
   /** Elements with a NaN on either side, or an infinity that the other side has not. */
   readonly unlike: number;
   /** Exact, over elements that are finite on both sides. */
@@ -33,7 +31,6 @@ export interface Part {
   readonly infInReference: number;
   readonly infInResult: number;
   readonly unlike: number;
-  readonly beyond: number;
   readonly maxAbsolute: number;
   readonly maxRelative: number;
   readonly maxReference: number;
@@ -56,7 +53,6 @@ export class Measuring {
     infInReference: 0,
     infInResult: 0,
     unlike: 0,
-    beyond: 0,
   };
   private worst: WorstElement | null = null;
   private next = 0;
@@ -101,7 +97,6 @@ export class Measuring {
       counts.infInReference += totals.infInReference;
       counts.infInResult += totals.infInResult;
       counts.unlike += totals.unlike;
-      counts.beyond += totals.beyond;
     }
   }
 
@@ -124,7 +119,7 @@ export class Measuring {
 /** The measures of everything that the parts saw; `norms` are of the same blocks, added in order. */
 export function conclude(parts: readonly Part[], norms: Totals, weighing: Weighing): Measured {
   const all = parts.reduce(mergeParts);
-  const { unlike, beyond, maxUlp, maxReference, worstRatio, maxAbsolute, maxRelative, worst, ...counts } = all;
+  const { unlike, maxUlp, maxReference, worstRatio, maxAbsolute, maxRelative, worst, ...counts } = all;
   const bounded = (value: number) => (unlike > 0 ? Number.POSITIVE_INFINITY : value);
   return {
     measures: {
@@ -139,7 +134,6 @@ export function conclude(parts: readonly Part[], norms: Totals, weighing: Weighi
     },
     weighing,
     worstRatio,
-    beyond,
     unlike,
     ulp: maxUlp,
     maxReference,
@@ -159,7 +153,6 @@ function mergeParts(a: Part, b: Part): Part {
     infInReference: a.infInReference + b.infInReference,
     infInResult: a.infInResult + b.infInResult,
     unlike: a.unlike + b.unlike,
-    beyond: a.beyond + b.beyond,
     maxAbsolute: Math.max(a.maxAbsolute, b.maxAbsolute),
     maxRelative: Math.max(a.maxRelative, b.maxRelative),
     maxReference: Math.max(a.maxReference, b.maxReference),
