@@ -27,7 +27,13 @@ export type ManifestKind =
   | 'manifest-inconsistent'
   | 'manifest-outside';
 export type ReaderKind = 'source-incomplete';
-export type ConstantKind = never;
+export type ConstantKind =
+  | 'constant-disagrees'
+  | 'constant-edition-mixed'
+  | 'constant-unlike-any-edition'
+  | 'constant-truncated'
+  | 'literal-single'
+  | 'integer-division';
 export type FitKind =
   | 'joint-unmet'
   | 'joint-ambiguous'

@@ -82,6 +82,7 @@ export function parseUnit(
     if ((syntax === 'ucum' || loose) && take(/\/|per(?![A-Za-z])/y) !== null) {
       sign = -1;
       divided = true;
+      skipSpace();
     }
     while (true) {
       const before = at;
@@ -181,7 +182,7 @@ export function parseUnit(
               : syntax === 'vounits'
                 ? /[A-Za-z_]+|%/y
                 : loose
-                  ? /%|a\.u\.|[A-Za-z_µμΩÅ°ö]+/y
+                  ? /[%#]|a\.u\.|[A-Za-z_µμΩÅ°ö]+/y
                   : /[A-Za-z_%°µμΩÅ]+|['"]/y,
           );
     if (name === null) {
