@@ -21,7 +21,7 @@ export function compareConstants(before: readonly SourceSide[], after: readonly 
           {
             kind: 'literal-kind',
             subject: a.name,
-            says: precisionText(a.name, a.it.text, b.it.bytes, a.it.bytes),
+            says: precisionText(`constant ${a.name}`, a.it.text, b.it.bytes, a.it.bytes),
             ...sides,
           },
         ]

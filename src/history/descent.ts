@@ -59,22 +59,34 @@ function descentOf(
     .filter((one) => one.name === best.match.name && related(one, matches))
     .sort((a, b) => a.order - b.order);
   // The last shared version: the latest one that is the same on both sides, or the two most alike.
-  const hashesThere = new Map(versionsThere.map((one) => [one.hash, one]));
-  const hashesHere = new Set(versionsHere.map((one) => one.hash));
-  const sharedHere = [...versionsHere].reverse().find((one) => hashesThere.has(one.hash)) ?? best.query;
-  const sharedThere = hashesThere.get(sharedHere.hash) ?? best.match;
+  const formsThere = new Map(versionsThere.map((one) => [one.form, one]));
+  const formsHere = new Map(versionsHere.map((one) => [one.form, one]));
+  const lastHere = [...versionsHere].reverse().find((one) => formsThere.has(one.form));
+  // A version may come back (a revert); the first time it was seen is where it parted.
+  const sharedHere = lastHere === undefined ? best.query : versionsHere.find((one) => one.form === lastHere.form)!;
+  const sharedThere = lastHere === undefined ? best.match : versionsThere.find((one) => one.form === lastHere.form)!;
   return {
     here: best.query.name,
     there: best.match.name,
     sharedHere,
     sharedThere,
-    likeness: sharedHere.hash === sharedThere.hash ? 1 : best.containment,
-    exact: sharedHere.hash === sharedThere.hash,
-    missingHere: versionsThere.filter((one) => one.order > sharedThere.order && !hashesHere.has(one.hash)),
-    missingThere: versionsHere.filter((one) => one.order > sharedHere.order && !hashesThere.has(one.hash)),
+    likeness: lastHere === undefined ? best.containment : 1,
+    exact: lastHere !== undefined,
+    missingHere: versionsAfter(versionsThere, sharedThere, formsHere),
+    missingThere: versionsAfter(versionsHere, sharedHere, formsThere),
     olderHere: versionsHere.filter((one) => one.order < sharedHere.order).length,
     olderThere: versionsThere.filter((one) => one.order < sharedThere.order).length,
   };
+}
+
+/** Later versions that the other side does not have, each once. */
+function versionsAfter(
+  versions: readonly PrintedProcedure[],
+  shared: PrintedProcedure,
+  other: ReadonlyMap<string, PrintedProcedure>,
+): PrintedProcedure[] {
+  const later = versions.filter((one) => one.order > shared.order && !other.has(one.form));
+  return later.filter((one, index) => later.findIndex((same) => same.form === one.form) === index);
 }
 
 /** Versions of a procedure that share nothing with the module any more are another procedure of that name. */

@@ -4,12 +4,14 @@
  * @source Schleimer, Wilkerson & Aiken (2003), "Winnowing: Local Algorithms for Document Fingerprinting", SIGMOD, 76-85
  */
 import type { Language } from '../model/interface.ts';
-import { tokens } from './tokens.ts';
+import { NAME_SYMBOL, tokens } from './tokens.ts';
 
 export interface ProcedureBody {
   readonly name: string;
   /** Of the tokens with their names: the same only when nothing but layout, comments and case differ. */
   readonly hash: string;
+  /** The same with names numbered as they come up: equal for what differs only in the names of things, too. */
+  readonly form: string;
   /** Winnowed hashes, sorted, each once. */
   readonly prints: readonly number[];
   readonly tokens: number;
@@ -21,17 +23,42 @@ export const RUN_TOKENS = 12;
 export const WINDOW_RUNS = 8;
 
 /** @param text  the source lines of one procedure, line ends as they are */
-export function procedureBody(name: string, text: string, language: Language, form?: 'fixed' | 'free'): ProcedureBody {
-  let exact = 0x811c9dc5;
-  let exact2 = 0x1000193;
+export function procedureBody(
+  name: string,
+  text: string,
+  language: Language,
+  sourceForm?: 'fixed' | 'free',
+): ProcedureBody {
+  const exact = new Digest();
+  const form = new Digest();
+  const numbers = new Map<number, number>();
   const symbols: number[] = [];
-  for (const token of tokens(text, language, form)) {
-    exact = mix(exact, token.hash);
-    exact2 = Math.imul(exact2 ^ token.hash, 0x5bd1e995) ^ (exact2 >>> 13);
+  for (const token of tokens(text, language, sourceForm)) {
+    exact.add(token.hash);
     symbols.push(token.symbol);
+    if (token.symbol === NAME_SYMBOL) {
+      const number = numbers.get(token.hash) ?? numbers.size;
+      numbers.set(token.hash, number);
+      form.add(number);
+    } else form.add(token.symbol);
   }
-  const hash = (exact >>> 0).toString(16).padStart(8, '0') + (exact2 >>> 0).toString(16).padStart(8, '0');
-  return { name, hash, prints: winnow(symbols), tokens: symbols.length };
+  return { name, hash: exact.text(), form: form.text(), prints: winnow(symbols), tokens: symbols.length };
+}
+
+/** 64 bits in two halves: FNV-1a, and a multiplicative one beside it. */
+class Digest {
+  private first = 0x811c9dc5;
+  private second = 0x1000193;
+
+  add(value: number): void {
+    this.first = Math.imul(this.first ^ value, 0x01000193);
+    this.second = Math.imul(this.second ^ value, 0x5bd1e995) ^ (this.second >>> 13);
+  }
+
+  text(): string {
+    const hex = (half: number) => (half >>> 0).toString(16).padStart(8, '0');
+    return hex(this.first) + hex(this.second);
+  }
 }
 
 /**
@@ -87,10 +114,6 @@ export function sharedPrints(a: readonly number[], b: readonly number[]): number
     else j += 1;
   }
   return shared;
-}
-
-function mix(hash: number, value: number): number {
-  return Math.imul(hash ^ value, 0x01000193);
 }
 
 /** Neighbouring sums must not have neighbouring hashes, or the minimum would follow the text. */

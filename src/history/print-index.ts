@@ -7,6 +7,8 @@ export interface PrintedProcedure {
   readonly name: string;
   /** Of its tokens; equal for what differs in layout and comments only. */
   readonly hash: string;
+  /** Equal for what differs in the names of things, too: one version, wherever it was copied to. */
+  readonly form: string;
   readonly path: string;
   readonly commit: string;
   /** When that commit was authored, seconds since 1970. */
@@ -55,6 +57,7 @@ export function extendIndex(
       procedures.push({
         name: body.name,
         hash: body.hash,
+        form: body.form,
         path: seen.path,
         commit: seen.commit.id,
         seconds: seen.commit.authored,
@@ -82,7 +85,7 @@ export interface PrintMatch {
   readonly match: PrintedProcedure;
   /** Shared prints over those of the smaller one, 0 to 1. */
   readonly containment: number;
-  /** Every token with its name is the same. */
+  /** Every token is the same but for the names of things. */
   readonly exact: boolean;
 }
 
@@ -102,8 +105,6 @@ export function searchIndex(queries: PrintIndex, chosen: readonly PrintedProcedu
       else list.push(number);
     }
   }
-  const byHash = new Map<string, number[]>();
-  for (const [number, { hash }] of chosen.entries()) byHash.set(hash, [...(byHash.get(hash) ?? []), number]);
   const matches: PrintMatch[] = [];
   const shared = new Uint32Array(chosen.length);
   for (const match of index.procedures) {
@@ -117,7 +118,7 @@ export function searchIndex(queries: PrintIndex, chosen: readonly PrintedProcedu
     for (const number of touched) {
       const query = chosen[number]!;
       const containment = shared[number]! / Math.min(query.count, match.count);
-      const exact = query.hash === match.hash;
+      const exact = query.form === match.form;
       if (exact || (shared[number]! >= LEAST_SHARED && containment >= LEAST_CONTAINMENT)) {
         matches.push({ query, match, containment, exact });
       }

@@ -8,7 +8,8 @@ export interface Token {
   readonly symbol: number;
 }
 
-const NAME_SYMBOL = hashText('name');
+/** What stands for every name that may have been changed. */
+export const NAME_SYMBOL = hashText('name');
 
 /** Words that stay themselves in fingerprints; every other name may have been renamed. */
 const KEYWORDS = new Set(
