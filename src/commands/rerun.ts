@@ -1,11 +1,14 @@
 /** `mortise rerun`: run cases and compare them with their references; or record references. */
+import { hasStop } from '../model/finding.ts';
 import { printable, printableLines } from '../model/printable.ts';
 import { deviationsText } from '../report/deviation-text.ts';
+import { findingsText } from '../report/finding-text.ts';
 import { paint } from '../report/style.ts';
 import { type CaseOutcome, isBad } from '../runs/case-outcome.ts';
 import { readExchange } from '../runs/exchange.ts';
 import { recordReference } from '../runs/record-reference.ts';
 import { rerunCases } from '../runs/rerun.ts';
+import { runFindings } from '../runs/run-findings.ts';
 import { gitUser } from '../runs/tree-files.edge.ts';
 import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
 import type { OpenedCode } from './open-code.ts';
@@ -53,15 +56,23 @@ Exit status: 0 nothing beyond tolerance, 1 something is, 2 wrong usage, 3 a case
       invocation.options.record === true && !surroundings.signal.aborted
         ? await record(opened, outcomes, invocation, surroundings)
         : [];
+    // A reference that was just recorded is as it was recorded, whatever stood there before.
+    const findings = runFindings(
+      outcomes.filter((one) => !recorded.includes(one.case)),
+      opened.set,
+    );
     if (invocation.options.json === true) {
-      surroundings.out(jsonText({ document: 'mortise rerun', cases: outcomes, recorded }));
+      surroundings.out(jsonText({ document: 'mortise rerun', cases: outcomes, recorded, findings }));
     } else {
       surroundings.out(outcomesText(outcomes, recorded, invocation, surroundings));
+      if (findings.length > 0) surroundings.out(`\n${findingsText(findings, textOptions(invocation, surroundings))}`);
     }
     if (surroundings.signal.aborted) return EXIT.interrupted;
     return recorded.length > 0 && recorded.length === outcomes.length
       ? EXIT.ok
-      : statusOf(outcomes, invocation.words.length > 0);
+      : hasStop(findings)
+        ? EXIT.stop
+        : statusOf(outcomes, invocation.words.length > 0);
   },
 };
 

@@ -239,7 +239,8 @@ export class TreeRuns {
     };
     const missing = theCase.outputs.filter((output) => !result.files.includes(output.file));
     if (missing.length > 0) {
-      const why = `the run ended well but did not write ${missing.map((output) => output.file).join(', ')} under {out}`;
+      const names = missing.map((output) => output.file).join(', ');
+      const why = `the run ended well but did not write ${names} under {out}; does its command pass {out} on?`;
       return { ...ran, state: 'failed', why };
     }
     const reference = await referencePlace(

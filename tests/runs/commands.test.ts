@@ -101,7 +101,9 @@ describe('mortise rerun', () => {
   it('does not compare with a reference whose file was altered', async () => {
     await record();
     code.write({ 'manifests/references/shock/profile.csv': 'x,pressure,temperature\n1,2,3\n' });
-    const { out } = await mortise('rerun');
+    const { status, out } = await mortise('rerun');
+    expect(status).toBe(1);
+    expect(out).toContain('reference-altered');
     expect(out).toContain('profile.csv is not the file that was recorded: its digest differs');
   });
 
