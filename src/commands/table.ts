@@ -14,4 +14,5 @@ export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command 
   swap: () => import('./swap.ts'),
   trace: () => import('./trace.ts'),
   unit: () => import('./unit.ts'),
+  constants: () => import('./constants.ts'),
 };

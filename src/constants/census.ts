@@ -152,12 +152,10 @@ function mixedEditions(constants: readonly CensusEntry[]): Finding[] {
       module: first.module,
       place: first.place,
       says: `${file} mixes constants of different CODATA editions`,
-      evidence: dated
-        .slice(0, 20)
-        .map((entry) => ({
-          says: `${entry.name ?? entry.symbol} = ${entry.text}: ${editionText(entry)}`,
-          place: entry.place,
-        })),
+      evidence: dated.slice(0, 20).map((entry) => ({
+        says: `${entry.name ?? entry.symbol} = ${entry.text}: ${editionText(entry)}`,
+        place: entry.place,
+      })),
       next: 'Take all constants from one edition, or say in the manifest why they differ.',
     });
   }

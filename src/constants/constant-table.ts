@@ -197,9 +197,9 @@ export const CONSTANTS: readonly ConstantRecord[] = [
     names: /^(a|arad|aradiation|radconst|asol|radiationconstant|radcon|ar|acgs|arconst)$/,
     systems: systems('SI 0 J/m3/K4; cgs 1 erg/cm3/K4'),
     values: editions(
-      '7.56566e-16 7.56591e-16 7.565767e-16 7.565767e-16 7.565767e-16 7.565731e-16 7.565723e-16 7.565733250280007e-16 7.565733250280007e-16',
+      '7.565655621095286e-16 7.565912199839846e-16 7.565766506859615e-16 7.565769040999938e-16 7.565768013711607e-16 7.565730853164201e-16 7.565723105793771e-16 7.565733250280005e-16 7.565733250280005e-16',
     ),
-    source: 'CODATA sigma_SB times 4 / c',
+    source: '8 pi^5 k^4 / (15 c^3 h^3) with k and h of the CODATA edition',
   },
   {
     symbol: 'R',

@@ -43,6 +43,14 @@ export function agreement(literal: Digits, reference: Digits, shift = 0): Agreem
   const published = reference.digits;
   const sameMagnitude = literal.exponent === reference.exponent + shift;
   if (sameMagnitude && stripped(written) === stripped(published)) return 'printed';
+  // The shortest text of a double may differ in the last digits from the published ones.
+  if (
+    sameMagnitude &&
+    written.length >= 16 &&
+    published.length >= 16 &&
+    Math.abs(mantissa(written) - mantissa(published)) < 1e-15
+  )
+    return 'rounded';
   if (written.length >= published.length) return null;
   const cut = published.slice(0, written.length);
   if (published.charCodeAt(written.length) >= 53) {
@@ -52,6 +60,10 @@ export function agreement(literal: Digits, reference: Digits, shift = 0): Agreem
       return 'rounded';
   } else if (sameMagnitude && stripped(cut) === stripped(written)) return 'rounded';
   return sameMagnitude && stripped(cut) === stripped(written) ? 'truncated' : null;
+}
+
+function mantissa(digits: string): number {
+  return Number(`${digits[0]}.${digits.slice(1)}`);
 }
 
 function stripped(digits: string): string {

@@ -29,12 +29,10 @@ export function doubtfulLiterals(
         module,
         place: placed(worst),
         says: `${worst.text} is single precision and is given to ${worst.target ?? 'a double'} of 8 bytes: ${error.toExponential(1)} off${own.length > 1 ? `; ${own.length} such literals in ${worst.procedure ?? 'this file'}` : ''}`,
-        evidence: own
-          .slice(0, MOST_PLACES)
-          .map((literal) => ({
-            says: `${literal.text} given to ${literal.target ?? 'a double'}`,
-            place: placed(literal),
-          })),
+        evidence: own.slice(0, MOST_PLACES).map((literal) => ({
+          says: `${literal.text} given to ${literal.target ?? 'a double'}`,
+          place: placed(literal),
+        })),
         next: 'Write it with a d exponent or the kind of the variable: 0.1d0, 0.1_dp. If the build promotes default reals, say so in the assembly.',
       };
     }),
