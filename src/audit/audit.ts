@@ -8,6 +8,7 @@ import { type Finding, sortFindings } from '../model/finding.ts';
 import type { Case, ManifestSet, ModuleManifest, Range } from '../model/manifest.ts';
 import type { CaseOutcome } from '../runs/case-outcome.ts';
 import type { ReferenceRecord } from '../runs/reference-record.ts';
+import { runFindings } from '../runs/run-findings.ts';
 import { type AcceptedFinding, siftFindings } from './acceptance.ts';
 import { type CampaignSize, campaignDemands, campaignFindings, campaignSize, type Demand } from './campaign-size.ts';
 import { caseFindings } from './case-findings.ts';
@@ -53,6 +54,7 @@ export function audit(gathered: Gathered): Audit {
     ...treeFindings(gathered),
     ...tableFindings(gathered),
     ...caseFindings(outcomes, manifests),
+    ...runFindings(outcomes, manifests),
     ...statesFindings(manifests, outcomes),
     ...validationFindings(manifests, validated, outcomes),
     ...platformFindings(references, outcomes, manifests),
