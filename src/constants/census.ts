@@ -179,7 +179,10 @@ function slips(constants: readonly CensusEntry[]): Finding[] {
 function shortened(constants: readonly CensusEntry[]): Finding[] {
   const findings: Finding[] = [];
   const short = constants.filter(
-    ({ of, digitsLost, relativeError }) => of === 'mathematics' && digitsLost > 0 && relativeError > 1e-15,
+    ({ of, agreement, digitsLost, relativeError }) =>
+      (of === 'mathematics' || (agreement === 'truncated' && relativeError > 1e-7)) &&
+      digitsLost > 0 &&
+      relativeError > 1e-15,
   );
   for (const [, entries] of grouped(short, ({ place, symbol }) => `${place.file} ${symbol}`)) {
     const worst = entries.reduce((a, b) => (b.relativeError > a.relativeError ? b : a));
@@ -190,7 +193,10 @@ function shortened(constants: readonly CensusEntry[]): Finding[] {
       place: worst.place,
       says: `${worst.symbol} is written with ${worst.significant} digits (${worst.text}), ${worst.relativeError.toExponential(1)} off`,
       evidence: entries.slice(0, 10).map(({ text, place }) => ({ says: text, place })),
-      next: `Write ${worst.nearest.digits}, or have it computed.`,
+      next:
+        worst.of === 'mathematics'
+          ? `Write ${worst.nearest.digits}, or have it computed.`
+          : `Write all digits of the edition: ${worst.nearest.digits} in SI.`,
     });
   }
   return findings;
@@ -200,6 +206,7 @@ function editionText({ editions, agreement, significant }: CensusEntry): string 
   if (editions.length === 0) return 'digits of no edition';
   const names = editions.map((edition) => (/^\d{4}$/.test(edition) ? edition : edition)).join(', ');
   const codata = /^\d{4}/.test(editions[0]!) ? `CODATA ${names}` : names;
+  if (agreement === 'extended') return `${codata}, with further digits`;
   return agreement === 'printed' ? codata : `${codata}, ${agreement} to ${significant} digits`;
 }
 

@@ -173,7 +173,7 @@ export const CONSTANTS: readonly ConstantRecord[] = [
   {
     symbol: 'm_u',
     says: 'atomic mass constant',
-    names: /^(mu|amu|amass|atomicmassunit|unifiedatomicmass|atmass|amc|amumass|mb|mbaryon|uamu|dalton)$/,
+    names: /^(mu|amu|amass|atomicmassunit|unifiedatomicmass|atmass|amc|amumass|uamu|dalton)$/,
     systems: systems('SI 0 kg; cgs 3 g'),
     values: editions(
       '1.6605655e-27 1.6605402e-27 1.66053873e-27 1.66053886e-27 1.660538782e-27 1.660538921e-27 1.660539040e-27 1.66053906660e-27 1.66053906892e-27',

@@ -32,25 +32,29 @@ export function literalValue(text: string): number {
   return Number(text.replace(/_\w+$|[fFlL]$/, '').replace(/[dDqQ]/, 'e'));
 }
 
-export type Agreement = 'printed' | 'rounded' | 'truncated' | null;
+export type Agreement = 'printed' | 'rounded' | 'extended' | 'truncated' | null;
 
 /**
  * How the digits of a literal agree with a reference of the same magnitude:
- * `printed` equal digit for digit, `rounded` or `truncated` when the reference was cut to the literal's digits, null when neither.
+ * `printed` equal digit for digit, `extended` with up to two digits more behind it (the uncertainty, most often), `rounded` or `truncated` when the reference was cut to the literal's digits, null when neither.
  */
 export function agreement(literal: Digits, reference: Digits, shift = 0): Agreement {
   const written = literal.digits;
   const published = reference.digits;
   const sameMagnitude = literal.exponent === reference.exponent + shift;
   if (sameMagnitude && stripped(written) === stripped(published)) return 'printed';
-  // The shortest text of a double may differ in the last digits from the published ones.
+  // The shortest text of a double, or one printed from binary, may differ in its last digits from the published ones.
+  if (sameMagnitude && written.length >= 15 && Math.abs(mantissa(written) - mantissa(published)) < 4e-15)
+    return 'rounded';
+  // Old codes write the uncertainty behind the value: 6.6260689633 for 6.62606896(33).
   if (
     sameMagnitude &&
-    written.length >= 16 &&
-    published.length >= 16 &&
-    Math.abs(mantissa(written) - mantissa(published)) < 1e-15
+    published.length >= 6 &&
+    written.length > published.length &&
+    written.length <= published.length + 2 &&
+    written.startsWith(published)
   )
-    return 'rounded';
+    return 'extended';
   if (written.length >= published.length) return null;
   const cut = published.slice(0, written.length);
   if (published.charCodeAt(written.length) >= 53) {

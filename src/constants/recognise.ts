@@ -112,10 +112,12 @@ function match(literal: Digits, { record, system, references }: Candidate, name:
     const all = byAgreement.get(agrees) ?? [];
     return all.length > 1 ? all.filter((edition) => edition !== '1973') : all;
   };
-  const agrees = (['printed', 'rounded', 'truncated'] as const).find((kind) => byAgreement.has(kind)) ?? null;
+  const agrees =
+    (['printed', 'rounded', 'extended', 'truncated'] as const).find((kind) => byAgreement.has(kind)) ?? null;
   if (agrees === null) {
     // Near a constant without the digits of any edition: a slip, a rounding of a rounding, or another constant.
-    const near = named ? 1e-2 : 1e-5;
+    const near = named ? 2e-3 : 1e-5;
+    if (!Object.keys(record.values).every((edition) => /^\d{4}$/.test(edition))) return null;
     if (
       nearest.error > near ||
       significant < Math.max(4, asked) ||
@@ -123,7 +125,7 @@ function match(literal: Digits, { record, system, references }: Candidate, name:
     )
       return null;
   } else if (literal.digits.length < asked || (significant < 2 && !(named && record.symbol === 'c'))) return null;
-  else if (significant < asked && !named && agrees !== 'printed') return null;
+  else if (significant < asked && !named && (agrees !== 'printed' || Math.abs(literal.exponent) < 8)) return null;
   const found = agrees === null ? [] : editions(agrees);
   return {
     symbol: record.symbol,
@@ -134,7 +136,10 @@ function match(literal: Digits, { record, system, references }: Candidate, name:
     editions: found,
     agreement: agrees,
     significant,
-    digitsLost: agrees === null || agrees === 'printed' ? 0 : Math.max(0, nearest.digits - significant),
+    digitsLost:
+      agrees === null || agrees === 'printed' || agrees === 'extended' || significant >= 15
+        ? 0
+        : Math.max(0, nearest.digits - significant),
     relativeError: nearest.error,
     normalised: Number(
       `${literal.negative ? '-' : ''}${literal.digits[0]}.${literal.digits.slice(1) || '0'}e${literal.exponent - system.shift}`,
