@@ -8,6 +8,7 @@ import { NoExchange } from '../runs/exchange.ts';
 import { NotRecorded } from '../runs/record-reference.ts';
 import type { LaboratoryRequest } from '../runs/rerun.ts';
 import type { RunEvent } from '../runs/run-event.ts';
+import { StoreUnusable } from '../runs/store.edge.ts';
 import { NoQuantity } from '../runs/trace-case.ts';
 import { GitFailed } from '../runs/tree-files.edge.ts';
 import { EXIT, type ExitStatus, type Invocation, type OptionSpec, type Surroundings, UsageError } from './command.ts';
@@ -89,7 +90,7 @@ export async function orUsage<T>(work: () => Promise<T>): Promise<T> {
   try {
     return await work();
   } catch (error) {
-    const mistakes = [NotDeclared, NoExchange, NoQuantity, NoPath, GitFailed, NotRecorded];
+    const mistakes = [NotDeclared, NoExchange, NoQuantity, NoPath, GitFailed, NotRecorded, StoreUnusable];
     if (mistakes.some((one) => error instanceof one)) throw new UsageError((error as Error).message, { cause: error });
     throw error;
   }

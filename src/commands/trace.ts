@@ -21,7 +21,8 @@ export const command: Command = {
   help: `
 Runs the case at both ends and wherever the ends of a stretch of history differ, and so finds every step at which a quantity
 moved beyond its tolerance, with about k·log2(n/k) + k runs for k steps among n commits. What was run is kept: a second call
-goes on where an interrupted one ended. A commit that can't be built is passed by and told. A step that a merge brought in is
+goes on where an interrupted one ended. A commit that can't be built is passed by, told, and not tried again by a later trace
+until "mortise rerun CASE --at COMMIT" succeeds. A step that a merge brought in is
 looked for on its branch. Then the changes of the commit are taken back module by module, and procedure by procedure.
 
 What moved and moved back between two commits that were run is not seen. Tolerances are those of the case at BAD.

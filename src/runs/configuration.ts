@@ -13,6 +13,8 @@ export interface Configuration {
   readonly pass: readonly string[];
   /** Programs that must exist. */
   readonly needs: readonly { readonly program: string; readonly module: string }[];
+  /** Programs that any plugged module needs, whether this case uses it or not: a build makes the whole code. */
+  readonly builtWith: readonly string[];
   /** null when the code needs no build. */
   readonly build: { readonly run: string; readonly makes: readonly string[] } | null;
 }
@@ -44,12 +46,11 @@ export function configurationOf(
   const used = Object.entries(plugged).filter(
     ([component]) => theCase.uses === undefined || theCase.uses.includes(component),
   );
+  const all = Object.entries(plugged).map(([component, name]) => moduleOf(manifests, component, name));
   const modules = used.map(([component, name]) => moduleOf(manifests, component, name));
   // Every plugged module gives its select values, used or not: a build command may name them all.
-  for (const [component, name] of Object.entries(plugged)) {
-    for (const [key, value] of Object.entries(moduleOf(manifests, component, name).select ?? {})) {
-      select[key] = String(value);
-    }
+  for (const module of all) {
+    for (const [key, value] of Object.entries(module.select ?? {})) select[key] = String(value);
   }
   for (const exchange of exchanges) {
     if (exchange.of === 'select') select[exchange.name] = exchange.to;
@@ -61,6 +62,7 @@ export function configurationOf(
     set,
     pass: assembly?.environment?.pass ?? [],
     needs: modules.flatMap((module) => (module.needs ?? []).map((program) => ({ program, module: module.module }))),
+    builtWith: [...new Set(all.flatMap((module) => module.needs ?? []))].sort(),
     build: assembly?.build === undefined ? null : { run: assembly.build.run, makes: assembly.build.makes },
   };
 }

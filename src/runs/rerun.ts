@@ -186,6 +186,7 @@ export class TreeRuns {
       build,
       makes: configuration.build?.makes ?? [],
       needs: configuration.needs,
+      builtWith: configuration.builtWith,
       environment,
       inputs: theCase.inputs ?? [],
       timeLimitSeconds: theCase['time-limit-seconds'] ?? limits.timeLimitSeconds,

@@ -7,7 +7,9 @@
  */
 import { randomBytes } from 'node:crypto';
 import {
+  accessSync,
   closeSync,
+  constants,
   existsSync,
   fsyncSync,
   mkdirSync,
@@ -40,15 +42,26 @@ export function storeFolder(root: string, env: Readonly<Record<string, string | 
   return git === null ? join(root, '.mortise') : join(git, 'mortise');
 }
 
+/** The folder for builds and results can't be used; the message says why and what to set instead. */
+export class StoreUnusable extends Error {
+  override readonly name = 'StoreUnusable';
+}
+
 /**
  * Opens a store and sweeps what dead processes left in it.
  *
- * @throws {Error} of the file system, when the folder can't be written
+ * @throws {StoreUnusable} when the folder can't be written
  */
 export function openStore(folder: string): Store {
-  mkdirSync(join(folder, 'builds'), { recursive: true });
-  mkdirSync(join(folder, 'results'), { recursive: true });
-  mkdirSync(join(folder, 'times'), { recursive: true });
+  try {
+    for (const name of ['builds', 'results', 'times', 'scratch']) mkdirSync(join(folder, name), { recursive: true });
+    accessSync(folder, constants.W_OK);
+  } catch (error) {
+    throw new StoreUnusable(
+      `builds and results can't be kept in ${folder}: ${(error as Error).message}; set MORTISE_STORE to a folder that can be written`,
+      { cause: error },
+    );
+  }
   sweep(folder);
   const scratch = join(folder, 'scratch', `${process.pid}-${randomBytes(4).toString('hex')}`);
   mkdirSync(scratch, { recursive: true });

@@ -343,7 +343,7 @@ class Tracing {
   /** Everything of the manifests that can change how the case is built and run. */
   private wayOf(manifests: ManifestSet): string {
     const theCase = this.caseAt(manifests);
-    const { plugged: _, needs: __, ...way } = configurationOf(manifests, theCase);
+    const { plugged: _, needs: __, builtWith: ___, ...way } = configurationOf(manifests, theCase);
     return keyOf(JSON.parse(JSON.stringify({ ...way, run: theCase.run, inputs: theCase.inputs ?? [] })));
   }
 

@@ -80,15 +80,20 @@ export function gitSoon(root: string, words: readonly string[]): Promise<Buffer>
 
 const folders = new Map<string, string | null>();
 
-/** The folder that git keeps for the whole repository; null outside git. Asked once a repository. */
+/**
+ * The folder that git keeps for the whole repository; null outside git. Asked once a repository.
+ *
+ * @throws {GitFailed} when there is a repository that git refuses to read
+ */
 export function gitFolder(root: string): string | null {
   const known = folders.get(root);
   if (known !== undefined) return known;
   let folder: string | null = null;
   try {
     folder = git(root, ['rev-parse', '--path-format=absolute', '--git-common-dir']).toString('utf8').trimEnd() || null;
-  } catch {
-    // No repository, or one that git refuses to read.
+  } catch (error) {
+    // A repository that git refuses to read, for its owner or its format, must not pass for a plain folder.
+    if (existsSync(join(root, '.git'))) throw error;
   }
   folders.set(root, folder);
   return folder;

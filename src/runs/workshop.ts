@@ -41,6 +41,8 @@ export interface RunTask {
   readonly build: readonly string[] | null;
   readonly makes: readonly string[];
   readonly needs: readonly { readonly program: string; readonly module: string }[];
+  /** Programs that the build may call. */
+  readonly builtWith: readonly string[];
   readonly environment: Readonly<Record<string, string>>;
   readonly inputs: readonly string[];
   readonly timeLimitSeconds: number | null;
@@ -149,27 +151,28 @@ export class Workshop {
     const files = codeFiles(replacedFiles(task.listing.files, task.replaced), this.parts.manifestFolder);
     const { PATH, HOME, ...variables } = task.environment;
     // What PATH finds counts, not what PATH says; HOME differs between people and must not.
-    const programs = [
-      task.words[0]!,
-      ...(task.build === null ? [] : [task.build[0]!]),
-      ...task.needs.map((need) => need.program),
-    ];
-    const found = programs.map((name) => {
-      const program = findProgram(name, PATH);
-      return program === null ? name : `${name} ${program.path} ${program.bytes} ${program.modified}`;
-    });
-    const circumstances = {
+    const programs = (names: readonly string[]) =>
+      names.map((name) => {
+        const program = findProgram(name, PATH);
+        return wellFormed(program === null ? name : `${name} ${program.path} ${program.bytes} ${program.modified}`);
+      });
+    // Nothing of the case: those that are built alike share one build.
+    const build = {
       variables: Object.fromEntries(Object.entries(variables).map(([name, value]) => [name, wellFormed(value)])),
-      programs: found.map(wellFormed),
+      programs: task.build === null ? [] : programs([task.build[0]!, ...task.builtWith]),
       machine: { ...thisMachine() },
       build: task.build === null ? null : task.build.map(wellFormed),
     };
     const digest = filesDigest(files);
-    const repeat = task.repeat === 0 ? {} : { repeat: task.repeat };
-    const run = { ...circumstances, ...repeat, words: task.words.map(wellFormed) };
+    const run = {
+      ...build,
+      words: task.words.map(wellFormed),
+      runs: programs([task.words[0]!, ...task.needs.map((need) => need.program)]),
+      ...(task.repeat === 0 ? {} : { repeat: task.repeat }),
+    };
     return {
       files,
-      build: keyOf({ ...circumstances, files: digest }),
+      build: keyOf({ ...build, files: digest }),
       run: keyOf({ ...run, files: digest }),
       reads: keyOf({ ...run, names: namesDigest(files) }),
     };

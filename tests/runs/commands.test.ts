@@ -107,6 +107,15 @@ describe('mortise rerun', () => {
     expect(out).toContain('profile.csv is not the file that was recorded: its digest differs');
   });
 
+  it('says where results can be kept when they can not be kept in the repository', async () => {
+    // A file stands where the folder belongs: nobody, not even root, can write below it.
+    code.write({ '.git/mortise': '' });
+    expect(await mortise('rerun')).toMatchObject({
+      status: 2,
+      err: expect.stringContaining('set MORTISE_STORE to a folder'),
+    });
+  });
+
   it('suggests the case that was meant', async () => {
     expect(await mortise('rerun', 'shok')).toMatchObject({
       status: 2,

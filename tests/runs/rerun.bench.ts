@@ -24,7 +24,10 @@ executors: {here: {kind: local}, cluster: {kind: slurm}}
     files[`manifests/cases/c${i}.yaml`] = TINY['manifests/cases/shock.yaml']!.replace(
       'case: shock',
       `case: c${i}`,
-    ).replace(/run: .*/, seconds === 0 ? `run: cp --suffix=.${i} ${WRITES} {out}/profile.csv` : `run: sh src/wait.sh {out} ${i}`);
+    ).replace(
+      /run: .*/,
+      seconds === 0 ? `run: cp --suffix=.${i} ${WRITES} {out}/profile.csv` : `run: sh src/wait.sh {out} ${i}`,
+    );
   }
   files['src/wait.sh'] = `sleep ${seconds}\ncp ${WRITES} "$1/profile.csv"\n`;
   return new TinyCode(files);

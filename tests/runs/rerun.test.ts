@@ -1,4 +1,4 @@
-import { existsSync, readdirSync } from 'node:fs';
+import { existsSync, readdirSync, readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
 import { canTellReads } from '../../src/runs/reads.edge.ts';
@@ -72,6 +72,43 @@ describe('rerunCases', () => {
     code.commit('More words');
     // Where access times can't be trusted every file counts as read, and it runs again.
     expect((await rerun())[0]!.kept).toBe(canTellReads(code.store));
+  });
+});
+
+describe('a build', () => {
+  it('is made once for all cases that are built alike, even when one needs another program', async () => {
+    const shock = readFileSync(join(code.root, 'manifests/cases/shock.yaml'), 'utf8');
+    code.write({
+      'manifests/cases/other.yaml': shock.replace('case: shock', 'case: other').replace('run: node', 'run: env node'),
+      'manifests/cases/swapped.yaml': shock.replace(
+        'case: shock',
+        'case: swapped\nwith: {equation-of-state: eos-other}',
+      ),
+    });
+    const built: string[] = [];
+    const outcomes = await rerun({ onEvent: (event) => void (event.what === 'built' && built.push(event.build)) });
+    expect(outcomes.map((one) => [one.case, one.state, one.kept])).toEqual([
+      ['other', 'no reference', false],
+      ['shock', 'no reference', false],
+      ['swapped', 'no reference', false],
+    ]);
+    expect(built).toHaveLength(1);
+  });
+
+  it('that failed fails every case that needs it, once, with the end of its log', async () => {
+    code.write({
+      'manifests/assembly.yaml': readFileSync(join(code.root, 'manifests/assembly.yaml'), 'utf8').replace(
+        /run: .*, makes/,
+        `run: "node -e \\"console.error('no such header'); process.exit(2)\\"", makes`,
+      ),
+    });
+    const [outcome] = await rerun();
+    expect(outcome).toMatchObject({
+      state: 'not built',
+      why: 'the build ended with exit status 2',
+      logTail: 'no such header\n',
+    });
+    expect(readdirSync(join(code.store, 'builds'))).toEqual([]);
   });
 });
 

@@ -88,11 +88,13 @@ describe('swapModules', () => {
   });
 
   it('finds the one exchange of many that moves the result', async () => {
-    const idle = ['A', 'B', 'C', 'D', 'E'].map((name) => `set.${name}=1`);
-    const [shock] = await swap([...idle.slice(0, 3), 'equation-of-state=eos-other', ...idle.slice(3)]);
+    const idle = ['A', 'B', 'C', 'D'].map((name) => `select.${name}=1`);
+    const [shock] = await swap([...idle.slice(0, 2), 'equation-of-state=eos-other', ...idle.slice(2)], {
+      budget: 16,
+    });
     expect(shock!.smallest).toEqual(['equation-of-state=eos-other']);
     const pressure = shock!.effects.find((effect) => effect.quantity === 'pressure')!;
-    expect(pressure.shares!.map((one) => Math.round(one))).toEqual([0, 0, 0, 1000, 0, 0]);
+    expect(pressure.shares!.map((one) => Math.round(one))).toEqual([0, 0, 1000, 0, 0]);
   });
 
   it('takes a variable, such as a compiler flag, for an exchange', async () => {
