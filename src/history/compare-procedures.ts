@@ -2,7 +2,7 @@
 import type { Change } from '../model/change.ts';
 import type { Argument, Language, Procedure } from '../model/interface.ts';
 import { declaredText, sameBytes, sameRank, sameType } from './compare-declared.ts';
-import { similarity } from './fingerprint.ts';
+import type { ProcedureBody } from './fingerprint.ts';
 import { type Pairing, type Part, placeIn } from './source-side.ts';
 
 type Found = Part<Procedure>;
@@ -16,6 +16,11 @@ export function compareProcedures({ pairs, removed, added }: Pairing<Procedure>)
   for (const { before, after } of pairs) changes.push(...compareProcedure(before, after));
   for (const before of removed) {
     const after = renamed.get(before);
+    if (after?.name === before.name) {
+      // One of several overloads, told apart by its body.
+      changes.push(...compareProcedure(before, after));
+      continue;
+    }
     const says = after === undefined ? `${what(before)} is gone` : `${what(before)} is now called ${after.name}`;
     changes.push({
       kind: 'procedure-removed',
@@ -45,8 +50,8 @@ export function signature(it: Procedure): string {
 
 function compareProcedure(before: Found, after: Found): Change[] {
   const changes: Change[] = [...compareArguments(before, after), ...compareResult(before, after)];
-  const body = before.side.bodies?.get(before.it.line);
-  const other = after.side.bodies?.get(after.it.line);
+  const body = bodyOf(before);
+  const other = bodyOf(after);
   if (changes.length === 0 && body !== undefined && other !== undefined && body.hash !== other.hash) {
     changes.push({
       kind: 'implementation',
@@ -183,18 +188,31 @@ function compareResult(before: Found, after: Found): Change[] {
 
 /** Best match first, each procedure once; names and argument counts break ties. */
 function findRenamed(removed: readonly Found[], added: readonly Found[]): Map<Found, Found> {
+  // Through an index of prints: a generated file may lose and gain thousands of procedures in one commit.
+  const holders = new Map<number, Found[]>();
+  for (const after of added) {
+    for (const print of bodyOf(after)?.prints ?? []) {
+      const list = holders.get(print);
+      if (list === undefined) holders.set(print, [after]);
+      else if (list.length < MOST_HOLDERS) list.push(after);
+    }
+  }
   const candidates: { before: Found; after: Found; score: number }[] = [];
   for (const before of removed) {
-    const body = before.side.bodies?.get(before.it.line);
+    const body = bodyOf(before);
     if (body === undefined || body.tokens < 20) continue;
-    for (const after of added) {
-      const other = after.side.bodies?.get(after.it.line);
-      if (other === undefined) continue;
-      const score = similarity(body.prints, other.prints);
+    const shared = new Map<Found, number>();
+    for (const print of body.prints) {
+      for (const after of holders.get(print) ?? []) shared.set(after, (shared.get(after) ?? 0) + 1);
+    }
+    for (const [after, count] of shared) {
+      const score = count / (body.prints.length + bodyOf(after)!.prints.length - count);
       if (score >= RENAMED_SIMILARITY) candidates.push({ before, after, score });
     }
   }
-  candidates.sort((x, y) => y.score - x.score);
+  candidates.sort(
+    (x, y) => y.score - x.score || Number(y.before.name === y.after.name) - Number(x.before.name === x.after.name),
+  );
   const renamed = new Map<Found, Found>();
   const taken = new Set<Found>();
   for (const { before, after } of candidates) {
@@ -203,6 +221,13 @@ function findRenamed(removed: readonly Found[], added: readonly Found[]): Map<Fo
     taken.add(after);
   }
   return renamed;
+}
+
+/** A print that so many procedures hold is idiom and tells none of them from another. */
+const MOST_HOLDERS = 30;
+
+function bodyOf({ side, it }: Found): ProcedureBody | undefined {
+  return side.bodies?.get(it.line);
 }
 
 /** Only where a caller may pass arguments by keyword: not to C, and not to Fortran procedures without explicit interface. */

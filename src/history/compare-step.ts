@@ -81,9 +81,11 @@ interface Candidate {
 /** The same content first; then the most procedures in common, by name or by what they do. */
 function findMoved(gone: readonly Candidate[], fresh: readonly Candidate[]): { from: string; to: string }[] {
   const pairs: { from: string; to: string; score: number }[] = [];
-  for (const b of gone) {
-    for (const a of fresh) {
-      const score = b.id === a.id ? 2 : Math.max(sharedNames(b.side, a.side), sharedBodies(b.side, a.side));
+  if (gone.length === 0 || fresh.length === 0) return [];
+  const [was, is] = [gone.map(contentsOf), fresh.map(contentsOf)];
+  for (const [i, b] of gone.entries()) {
+    for (const [j, a] of fresh.entries()) {
+      const score = b.id === a.id ? 2 : Math.max(sharedNames(was[i]!, is[j]!), sharedBodies(was[i]!, is[j]!));
       if (score >= MOVED_SIMILARITY) pairs.push({ from: b.path, to: a.path, score });
     }
   }
@@ -102,16 +104,29 @@ function baseSame({ from, to }: { from: string; to: string }): number {
   return from.slice(from.lastIndexOf('/')) === to.slice(to.lastIndexOf('/')) ? 1 : 0;
 }
 
-function sharedNames(b: SourceSide, a: SourceSide): number {
-  const was = new Set(b.code.procedures.map((one) => one.name.toLowerCase()));
-  const is = new Set(a.code.procedures.map((one) => one.name.toLowerCase()));
-  const shared = [...was].filter((name) => is.has(name)).length;
-  return was.size === 0 || is.size === 0 ? 0 : shared / Math.max(was.size, is.size);
+function sharedNames(b: Contents, a: Contents): number {
+  let shared = 0;
+  for (const name of b.names) if (a.names.has(name)) shared += 1;
+  return b.names.size === 0 || a.names.size === 0 ? 0 : shared / Math.max(b.names.size, a.names.size);
 }
 
-function sharedBodies(b: SourceSide, a: SourceSide): number {
-  const prints = (side: SourceSide) =>
-    [...new Set([...(side.bodies?.values() ?? [])].flatMap((body) => body.prints))].sort((x, y) => x - y);
-  const [was, is] = [prints(b), prints(a)];
-  return was.length === 0 || is.length === 0 ? 0 : sharedPrints(was, is) / Math.max(was.length, is.length);
+function sharedBodies(b: Contents, a: Contents): number {
+  const most = Math.max(b.prints.length, a.prints.length);
+  // Where the lengths alone rule it out nothing need be counted.
+  if (most === 0 || Math.min(b.prints.length, a.prints.length) < MOVED_SIMILARITY * most) return 0;
+  return sharedPrints(b.prints, a.prints) / most;
+}
+
+interface Contents {
+  readonly names: ReadonlySet<string>;
+  readonly prints: readonly number[];
+}
+
+function contentsOf({ side }: Candidate): Contents {
+  const prints = new Set<number>();
+  for (const body of side.bodies?.values() ?? []) for (const print of body.prints) prints.add(print);
+  return {
+    names: new Set(side.code.procedures.map((one) => one.name.toLowerCase())),
+    prints: [...prints].sort((x, y) => x - y),
+  };
 }

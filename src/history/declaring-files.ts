@@ -1,6 +1,7 @@
 /** The files that declare things (manifests, version files, change logs) as they stood at each commit. */
-import type { Repository } from '../sources/repository.edge.ts';
-import type { CommitRecord } from './commit-record.ts';
+import type { CommitRange, Repository } from '../sources/repository.edge.ts';
+import type { CommitRecord, FileChange } from './commit-record.ts';
+import { readLog } from './read-log.edge.ts';
 import { isVersionFile } from './version-text.ts';
 
 /** Path to blob id. The same object stands for every commit that left these files alone. */
@@ -22,6 +23,7 @@ export async function declaringFiles(
   repository: Repository,
   commits: readonly CommitRecord[],
   folder: string,
+  range: CommitRange,
 ): Promise<ReadonlyMap<string, DeclaringFiles>> {
   const states = new Map<string, DeclaringFiles>();
   const listed = async (commit: string): Promise<DeclaringFiles> => {
@@ -29,17 +31,14 @@ export async function declaringFiles(
     const kept = entries.filter(({ path, kind }) => kind === 'file' && isDeclaring(path, folder));
     return new Map(kept.map(({ path, id }) => [path, id]));
   };
+  const merges = commits.some((commit) => commit.parents.length > 1) ? await merged(repository, range, folder) : null;
   for (const commit of commits) {
     const [first] = commit.parents;
     if (first !== undefined && !states.has(first)) states.set(first, await listed(first));
     const before = first === undefined ? EMPTY : states.get(first)!;
-    const changed = commit.files.filter(({ path }) => isDeclaring(path, folder));
-    const others = commit.parents.slice(1).map((parent) => states.get(parent));
-    if (others.some((state) => state !== before)) {
-      // A merge tells only what differs from all sides; what it took from the other side is seen in its tree.
-      states.set(commit.id, await listed(commit.id));
-      continue;
-    }
+    // A merge tells only what differs from all sides; against its first parent it tells what it took from the others too.
+    const files = commit.parents.length > 1 ? (merges?.get(commit.id) ?? []) : commit.files;
+    const changed = files.filter(({ path }) => isDeclaring(path, folder));
     if (changed.length === 0) {
       states.set(commit.id, before);
       continue;
@@ -52,6 +51,16 @@ export async function declaringFiles(
     states.set(commit.id, state);
   }
   return states;
+}
+
+/** What every merge of the range changed against its first parent. */
+async function merged(
+  repository: Repository,
+  range: CommitRange,
+  folder: string,
+): Promise<ReadonlyMap<string, readonly FileChange[]>> {
+  const log = await readLog(repository, range, (path) => isDeclaring(path, folder), 'merges against the first parent');
+  return new Map(log.commits.map(({ id, files }) => [id, files]));
 }
 
 const EMPTY: DeclaringFiles = new Map();

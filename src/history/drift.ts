@@ -8,7 +8,7 @@ import { type Finding, sortFindings } from '../model/finding.ts';
 import type { Declaration } from '../model/manifest.ts';
 import { languageOf } from '../readers/read-source.ts';
 import { decodeText } from '../sources/git-object.ts';
-import type { CommitRange, Repository } from '../sources/repository.edge.ts';
+import type { CommitRange, Ref, Repository } from '../sources/repository.edge.ts';
 import { askedBump, declaredBump } from './bumps.ts';
 import { CallerFinder } from './callers.ts';
 import type { CommitRecord } from './commit-record.ts';
@@ -21,7 +21,8 @@ import { draftNames, followPaths } from './module-names.ts';
 import type { ModuleStep } from './module-step.ts';
 import { netChange } from './net-change.ts';
 import { readLog } from './read-log.edge.ts';
-import { type Release, type ReleaseWindow, releaseWindows } from './releases.ts';
+import { followsCalendar, type Release, type ReleaseWindow, releaseWindows } from './releases.ts';
+import { keepReport, keptReport } from './report-cache.edge.ts';
 import { sameUnit } from './same-unit.ts';
 import { scan } from './scan.edge.ts';
 import type { ScanAnswer } from './scan-step.ts';
@@ -64,6 +65,32 @@ export async function drift(
   range: CommitRange,
   options: DriftOptions = {},
 ): Promise<DriftReport> {
+  const tags = await repository.tags();
+  if (options.cache === false) return compute(repository, range, options, tags);
+  // A commit never changes: what is told of a range depends on nothing but its ends, the tags and the readers.
+  const key = JSON.stringify([range, options.folder ?? '', tags.map(({ name, commit }) => [name, commit])]);
+  const kept = keptReport(repository.place, key);
+  if (kept !== null) return revive(kept);
+  const report = await compute(repository, range, options, tags);
+  if (report.complete) keepReport(repository.place, key, keepable(report));
+  return report;
+}
+
+function keepable(report: DriftReport): string {
+  return JSON.stringify({ ...report, paths: [...report.paths].map(([name, paths]) => [name, [...paths]]) });
+}
+
+function revive(text: string): DriftReport {
+  const kept = JSON.parse(text) as Omit<DriftReport, 'paths'> & { paths: [string, string[]][] };
+  return { ...kept, paths: new Map(kept.paths.map(([name, paths]) => [name, new Set(paths)])) };
+}
+
+async function compute(
+  repository: Repository,
+  range: CommitRange,
+  options: DriftOptions,
+  tags: readonly Ref[],
+): Promise<DriftReport> {
   const folder = options.folder ?? 'manifests';
   const wanted = (path: string) => isDeclaring(path, folder) || languageOf(path) !== null;
   const log =
@@ -73,7 +100,7 @@ export async function drift(
   const notes =
     log.broken === null ? [] : [`the log stops early, since this clone lacks part of the history: ${log.broken}`];
 
-  const declaring = await declaringFiles(repository, log.commits, folder);
+  const declaring = await declaringFiles(repository, log.commits, folder, range);
   const states = new DeclaredStates(repository, folder);
   const stateOf = async (commit: string | undefined) => states.of(declaring.get(commit ?? '') ?? new Map());
   const lastState = await stateOf(range.to);
@@ -97,10 +124,14 @@ export async function drift(
   );
   notes.push(...missingNotes(answers.values()));
 
-  const releases = (await repository.tags()).flatMap((tag): Release[] => {
+  const tagged = tags.flatMap((tag) => {
     const version = versionOfTag(tag.name);
-    return version === null ? [] : [{ name: tag.name.replace(/^refs\/tags\//, ''), commit: tag.commit, version }];
+    return version === null
+      ? []
+      : [{ name: tag.name.replace(/^refs\/tags\//, ''), commit: tag.commit, version, seconds: tag.seconds }];
   });
+  const calendar = followsCalendar(tagged);
+  const releases: readonly Release[] = tagged;
   const windows = releaseWindows(log.commits, releases);
   const follow = followPaths(log.commits, answers);
   const names = draftNames(
@@ -131,7 +162,7 @@ export async function drift(
     const { files: _, ...head } = commit;
     for (const [module, group] of groups) {
       const policy = policyOf(after);
-      const version = await declaredFor(module, index, before[0]!, windows.get(commit.id)!, history, stateOf);
+      const version = await declaredFor(module, index, before[0]!, windows.get(commit.id)!, calendar, history, stateOf);
       const changes = group.changes.sort((a, b) => BUMPS.indexOf(policy[b.kind]) - BUMPS.indexOf(policy[a.kind]));
       const asked =
         group.event === 'born' || group.event === 'gone' ? 'none' : askedBump(changes, policy, version.before);
@@ -156,7 +187,9 @@ export async function drift(
   }
   const withCallers = await addCallers(repository, found, log.commits);
   for (const step of withCallers) if (step.state === 'undeclared') findings.push(undeclaredFinding(step));
-  if (!history.versioned && releases.length === 0) findings.push(...unversionedFinding(withCallers, range));
+  if (!history.versioned && (calendar || releases.length === 0)) {
+    findings.push(...unversionedFinding(withCallers, range, calendar));
+  }
   return {
     range,
     commits: log.commits.length,
@@ -310,6 +343,7 @@ async function declaredFor(
   index: number,
   before: DeclaredState,
   window: ReleaseWindow,
+  calendar: boolean,
   history: VersionHistory,
   stateOf: (commit: string) => Promise<DeclaredState>,
 ): Promise<DeclaredVersion> {
@@ -327,6 +361,16 @@ async function declaredFor(
       declared: after === null ? 'none' : declaredBump(ownBefore, after),
       by: 'manifest',
       closed: true,
+    };
+  }
+  if (calendar) {
+    const { previous, next } = window;
+    return {
+      before: previous?.version ?? null,
+      after: next?.version ?? null,
+      declared: 'none',
+      by: null,
+      closed: false,
     };
   }
   if (window.previous !== null || window.next !== null) {
@@ -456,7 +500,7 @@ async function eventFindings(
   return findings;
 }
 
-function unversionedFinding(steps: readonly ModuleStep[], range: CommitRange): Finding[] {
+function unversionedFinding(steps: readonly ModuleStep[], range: CommitRange, calendar: boolean): Finding[] {
   const asking = steps.filter(({ asked }) => asked === 'major' || asked === 'minor');
   if (asking.length === 0) return [];
   const latest = asking.at(-1)!;
@@ -465,7 +509,7 @@ function unversionedFinding(steps: readonly ModuleStep[], range: CommitRange): F
       kind: 'drift-unversioned',
       gravity: 'note',
       place: { file: fileOf(latest.changes[0]!), line: 1, column: 1, revision: range.to },
-      says: `${asking.length} steps changed an interface or a value, and nothing here declares a version: no manifest, no tag, no version file.`,
+      says: `${asking.length} steps changed an interface or a value, and ${calendar ? 'the tags here follow the calendar, which says when a release was made but not what it breaks' : 'nothing here declares a version: no manifest, no tag, no version file'}.`,
       evidence: asking
         .slice(-5)
         .map((step) => ({ says: `${step.module}: ${step.changes[0]!.says} (${commitText(step.commit)})` })),

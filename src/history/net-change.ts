@@ -1,6 +1,5 @@
 /** Everything between two commits as one step: what a reviewer is asked to merge, however many commits it took. */
 import { parseCommit } from '../sources/git-object.ts';
-import { decodeText } from '../sources/git-object.ts';
 import type { Repository } from '../sources/repository.edge.ts';
 import type { CommitRecord, FileChange } from './commit-record.ts';
 
@@ -22,9 +21,17 @@ export async function netChange(
   }
   files.sort((a, b) => (a.path < b.path ? -1 : 1));
   const object = await repository.object(head);
-  const parsed = object?.type === 'commit' ? parseCommit(object.bytes) : null;
-  void parsed;
-  return { id: head, parents: [base], ...(await headOf(repository, head)), files };
+  const { author, committer, message } = parseCommit(object?.type === 'commit' ? object.bytes : new Uint8Array());
+  return {
+    id: head,
+    parents: [base],
+    author: author.name,
+    email: author.email,
+    authored: author.seconds,
+    seconds: committer.seconds,
+    subject: message.split('\n')[0] ?? '',
+    files,
+  };
 }
 
 async function idsAt(repository: Repository, commit: string): Promise<Map<string, string>> {

@@ -10,9 +10,21 @@ export interface Log {
   readonly broken: string | null;
 }
 
+/** `all` tells of merges what differs from every parent. */
+export type LogSort = 'all' | 'merges against the first parent';
+
 /** @param wanted  paths to keep; the log itself is read whole */
-export function readLog(repository: Repository, range: CommitRange, wanted: (path: string) => boolean): Promise<Log> {
-  const words = [...LOG_WORDS, range.to, ...(range.from === null ? [] : [`^${range.from}`])];
+export function readLog(
+  repository: Repository,
+  range: CommitRange,
+  wanted: (path: string) => boolean,
+  sort: LogSort = 'all',
+): Promise<Log> {
+  const log =
+    sort === 'all'
+      ? LOG_WORDS
+      : LOG_WORDS.flatMap((word) => (word === '-c' ? ['--merges', '--diff-merges=first-parent'] : [word]));
+  const words = [...log, range.to, ...(range.from === null ? [] : [`^${range.from}`])];
   return new Promise((done, fail) => {
     const child = startGit(repository.place, 'objects', words);
     const commits: CommitRecord[] = [];

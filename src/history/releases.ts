@@ -48,3 +48,18 @@ export function releaseWindows(
   }
   return windows;
 }
+
+/**
+ * True when versions follow the calendar (`22.06`, `2023.1`): they say when a release was made, not what it breaks, so no
+ * bump can be read from them. Common practice, known as calendar versioning.
+ *
+ * @param releases  with the second each was tagged at
+ */
+export function followsCalendar(releases: readonly { readonly version: string; readonly seconds: number }[]): boolean {
+  const dated = releases.filter(({ version, seconds }) => {
+    const major = Number(version.split('.')[0]);
+    const year = new Date(seconds * 1000).getUTCFullYear();
+    return major === year || major === year % 100;
+  });
+  return releases.length >= 3 && dated.length >= 0.8 * releases.length;
+}
