@@ -66,5 +66,8 @@ for (const file of sources.filter((name) => name.endsWith('.as.ts'))) {
 for (const grammar of ['tree-sitter-cpp.wasm', 'tree-sitter-python.wasm']) {
   copyFileSync(join(root, 'node_modules/@vscode/tree-sitter-wasm/wasm', grammar), join(dist, grammar));
 }
+// The demo builds its TypeScript with this program, vendored into it when it is laid.
+copyFileSync(join(root, 'node_modules/amaro/dist/index.js'), join(dist, 'strip-types.cjs'));
+copyFileSync(join(root, 'node_modules/amaro/LICENSE.md'), join(dist, 'strip-types-licence.md'));
 copyFileSync(join(root, 'node_modules/web-tree-sitter/web-tree-sitter.wasm'), join(dist, 'web-tree-sitter.wasm'));
 chmodSync(join(dist, 'mortise.js'), 0o755);

@@ -3,6 +3,8 @@ import { createHash } from 'node:crypto';
 import { codeInterfaces } from '../fit/code-interfaces.ts';
 import { fitCases } from '../fit/fit-assembly.ts';
 import type { Joint } from '../fit/joint.ts';
+import { type DriftReport, drift } from '../history/drift.ts';
+import type { ModuleStep } from '../history/module-step.ts';
 import type { Finding } from '../model/finding.ts';
 import type { FileInterface } from '../model/interface.ts';
 import type { ManifestSet } from '../model/manifest.ts';
@@ -43,6 +45,8 @@ export interface AuditRequest {
 export interface GatheredCode extends Gathered {
   readonly joints: readonly Joint[];
   readonly interfaces: ReadonlyMap<string, FileInterface>;
+  /** What history did to each module, oldest first; empty outside git. */
+  readonly steps: readonly ModuleStep[];
 }
 
 export async function gather(request: AuditRequest): Promise<GatheredCode> {
@@ -55,12 +59,16 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
   const fit = fitCases(manifests, interfaces);
   findings.push(...fit.findings);
 
-  const listing = listTree(
+  const listing = await listTree(
     root,
     tree.revision,
     [...manifests.modules.values()].map((one) => one.file),
   );
   const ids = new Map(listing.files.map((file) => [file.path, file.id]));
+
+  say({ what: 'step', step: 'history' });
+  const history = await historyOf(request, listing.commit);
+  findings.push(...history.findings);
 
   let outcomes: readonly CaseOutcome[] = [];
   if (request.run) {
@@ -101,7 +109,33 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
     now: new Date().toISOString(),
     joints: fit.joints,
     interfaces,
+    steps: history.steps,
   };
+}
+
+async function historyOf(
+  request: AuditRequest,
+  commit: string | null,
+): Promise<Pick<DriftReport, 'steps' | 'findings'>> {
+  if (commit === null) return { steps: [], findings: [] };
+  const repository = openRepository(request.root);
+  try {
+    const declared = new Set(request.manifests.modules.keys());
+    const report = await drift(
+      repository,
+      { from: null, to: commit },
+      { folder: request.manifestFolder, signal: request.signal },
+    );
+    // What no manifest declares any more is history, not part of this code.
+    const isDeclared = (module: string | undefined) =>
+      module === undefined || declared.has(module) || module.startsWith('contract ');
+    return {
+      steps: report.steps.filter((step) => isDeclared(step.module)),
+      findings: report.findings.filter((one) => isDeclared(one.module)),
+    };
+  } finally {
+    repository.close();
+  }
 }
 
 /** The id of the tree that is checked out at a commit; null outside git or when the clone lacks it. */

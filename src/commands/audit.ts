@@ -8,7 +8,6 @@ import { findingsText } from '../report/finding-text.ts';
 import { reportJson } from '../report/report-json.ts';
 import { reportText } from '../report/report-text.ts';
 import { listTree } from '../runs/tree-files.edge.ts';
-import type { HistoryView } from '../screens/views.ts';
 import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
 import { readWhole, writeWhole } from './files.edge.ts';
 import { jobsOf } from './jobs.ts';
@@ -72,7 +71,6 @@ manifests; 3 something could not be completed.`,
 export interface Audited {
   readonly gathered: GatheredCode;
   readonly audit: Audit;
-  readonly histories: readonly HistoryView[];
 }
 
 export async function auditOpened(
@@ -96,11 +94,11 @@ export async function auditOpened(
     ...(jobs === undefined ? {} : { jobs }),
     ...(typeof executor === 'string' ? { executor } : {}),
   });
-  return { gathered, audit: audit(gathered), histories: [] };
+  return { gathered, audit: audit(gathered) };
 }
 
 async function finish(
-  { gathered, audit: audited, histories }: Audited,
+  { gathered, audit: audited }: Audited,
   invocation: Invocation,
   surroundings: Surroundings,
 ): Promise<ExitStatus> {
@@ -113,7 +111,7 @@ async function finish(
       ? reportJson(report, version())
       : reportText(report, textOptions(invocation, surroundings)),
   );
-  return auditStatus({ gathered, audit: audited, histories });
+  return auditStatus({ gathered, audit: audited });
 }
 
 /** Held is 1 even where something could not run; a clearance with something not run is 3. */
@@ -153,6 +151,6 @@ async function passGate(file: string, invocation: Invocation, surroundings: Surr
 }
 
 async function checkedOut(cwd: string) {
-  const listing = listTree(cwd, null);
+  const listing = await listTree(cwd, null);
   return { revision: listing.commit, tree: await treeIdOf(cwd, listing.commit), changed: listing.changed };
 }

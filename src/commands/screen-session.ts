@@ -45,7 +45,6 @@ export class ScreenSession implements ScreenHost {
       manifests: this.opened.set,
       gathered: this.audited?.gathered ?? null,
       audit: this.audited?.audit ?? null,
-      histories: this.audited?.histories ?? [],
       register: registerView(new Register(this.opened.place.root)),
       job: this.job,
       running: new Map(

@@ -13,6 +13,8 @@ export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command 
   rerun: () => import('./rerun.ts'),
   swap: () => import('./swap.ts'),
   trace: () => import('./trace.ts'),
+  demo: () => import('./demo.ts'),
+  help: () => import('./help.ts'),
   unit: () => import('./unit.ts'),
   constants: () => import('./constants.ts'),
 };

@@ -3,6 +3,8 @@ import type { Audit } from '../audit/audit.ts';
 import type { GatheredCode } from '../audit/gather.ts';
 import { adapterSource } from '../fit/adapter.ts';
 import type { Half, Joint, JointState } from '../fit/joint.ts';
+import { dayOf } from '../history/drift-findings.ts';
+import type { ModuleStep } from '../history/module-step.ts';
 import { SAFETY_CAUTION } from '../model/caution.ts';
 import type { Deviation } from '../model/deviation.ts';
 import type { Domain, ManifestSet, Range } from '../model/manifest.ts';
@@ -27,7 +29,6 @@ export interface Known {
   /** What was audited; null before the first audit has ended. */
   readonly gathered: GatheredCode | null;
   readonly audit: Audit | null;
-  readonly histories: readonly HistoryView[];
   readonly register: RegisterView | null;
   readonly job: AssemblyView['job'];
   /** Cases that are running or waiting now. */
@@ -43,7 +44,7 @@ export function viewsOf(known: Known): Views {
   return {
     assembly: assemblyView(known),
     joints: (gathered?.joints ?? []).filter((one) => one.offering !== null).map((one) => jointView(one, outcomes)),
-    histories: known.histories,
+    histories: historyViews(gathered?.steps ?? []),
     cases: caseViews(known),
     deviations: outcomes.flatMap((one) => one.deviations.map(deviationView)),
     swap: null,
@@ -85,22 +86,22 @@ function assemblyView(known: Known): AssemblyView {
   };
 }
 
-function partView(component: string, module: string, { manifests, gathered, audit, histories }: Known): PartView {
+function partView(component: string, module: string, { manifests, gathered, audit }: Known): PartView {
   const own = (gathered?.joints ?? []).filter(
     (one) => one.expecting.module === module || one.offering?.module === module,
   );
   const count = (state: JointState) => own.filter((one) => one.state === state).length;
   const validation = audit?.validations.find((one) => one.module === module);
-  const steps = histories.find((one) => one.module === module)?.steps ?? [];
+  const steps = (gathered?.steps ?? []).filter((one) => one.module === module);
   const blocked = gathered?.outcomes.find((one) => one.state === 'not runnable' && one.why.includes(module));
   return {
     component,
     module,
     version: manifests.modules.get(module)?.value.version ?? '?',
-    age: steps.at(0)?.date.slice(0, 4) ?? '',
+    age: steps[0] === undefined ? '' : dayOf(steps[0].commit.authored).slice(0, 4),
     validated: validation === undefined ? '' : validatedText(validation.date, validation.changed.length),
     joints: { fits: count('fits'), adapter: count('fits through an adapter'), unfit: count('does not fit') },
-    undeclared: steps.filter((one) => one.undeclared).length,
+    undeclared: steps.filter((one) => one.state === 'undeclared').length,
     notRunnable: blocked === undefined ? null : 'not runnable here',
   };
 }
@@ -201,4 +202,32 @@ function whereText({ measures, why }: Deviation): string {
 function deviationView(one: Deviation): DeviationView {
   const { profile, why, ...rest } = one;
   return { ...rest, profile: profile ?? null, why: printable(why ?? '') };
+}
+
+/** Steps of all modules, a history a module, in the order in which modules came into being. */
+export function historyViews(steps: readonly ModuleStep[]): HistoryView[] {
+  const byModule = Map.groupBy(steps, (step) => step.module);
+  return [...byModule].map(([module, own]) => ({
+    module,
+    lineage: own.flatMap((step) => {
+      if (step.event === null) return [];
+      const word = { born: 'born', gone: 'gone', moved: `moved from ${step.movedFrom ?? 'elsewhere'}` }[step.event];
+      return [printable(`${word} ${dayOf(step.commit.authored)} by ${step.commit.author}`)];
+    }),
+    steps: own.map((step) => ({
+      commit: step.commit.id,
+      date: dayOf(step.commit.authored),
+      author: printable(step.commit.author),
+      subject: printable(step.commit.subject),
+      version: step.versionBefore,
+      asked: step.asked,
+      declared: step.declared,
+      undeclared: step.state === 'undeclared',
+      changes: step.changes.map((change) => ({
+        says: printable(change.says),
+        before: printable(change.before?.text ?? ''),
+        after: printable(change.after?.text ?? ''),
+      })),
+    })),
+  }));
 }
