@@ -416,7 +416,7 @@ export const CONSTANTS: readonly ConstantRecord[] = [
   },
   {
     symbol: 'year',
-    says: 'Julian year',
+    says: 'length of a year',
     names: /^(yr|year|years|secyer|secperyear|yearsec|yrs|syr|secinyear)$/,
     systems: systems('SI 0 s; Myr 6 s/Myr; Gyr 9 s/Gyr; kyr 3 s/kyr'),
     values: {

@@ -15,7 +15,7 @@ const LITERAL = /^([+-]?)(\d*)\.?(\d*)(?:[eEdDqQ]([+-]?\d{1,4}))?(?:_\w+|[fFlL])
  * @source Fortran 2018, 7.4.3.2 (d exponent, kind suffix); C17, 6.4.4.2
  */
 export function digitsOf(text: string): Digits | null {
-  const match = LITERAL.exec(text.replace(/(?<=\d)['_](?=\d{3})/g, '').trim());
+  const match = LITERAL.exec(plainLiteral(text));
   if (match === null || match[2]! + match[3]! === '') return null;
   const all = match[2]! + match[3]!;
   const first = all.search(/[1-9]/);
@@ -27,9 +27,21 @@ export function digitsOf(text: string): Digits | null {
   };
 }
 
+/** Digit separators out; `1.38 _d -23`, as some codes write a macro for the exponent letter, made `1.38d-23`. */
+function plainLiteral(text: string): string {
+  return text
+    .replace(/(?<=\d)['_](?=\d{3})/g, '')
+    .replace(/\s*_[dD]\s*(?=[+-]?\d)/, 'd')
+    .trim();
+}
+
 /** The value of a literal as a double, whatever language wrote it; NaN when it is none. */
 export function literalValue(text: string): number {
-  return Number(text.replace(/_\w+$|[fFlL]$/, '').replace(/[dDqQ]/, 'e'));
+  return Number(
+    plainLiteral(text)
+      .replace(/_\w+$|[fFlL]$/, '')
+      .replace(/[dDqQ]/, 'e'),
+  );
 }
 
 export type Agreement = 'printed' | 'rounded' | 'extended' | 'truncated' | null;

@@ -58,6 +58,7 @@ export function parseUnit(
 ): ParsedUnit | { readonly error: UnitProblem } {
   const loose = syntax === 'freehand';
   const spaced = loose || syntax === 'udunits';
+  const severalWords = loose && /[A-Za-z.][\s-]+[A-Za-z(]/.test(text);
   let at = 0;
   let slashThenProduct = false;
   let slashes = 0;
@@ -172,7 +173,7 @@ export function parseUnit(
         return { node: part.node, exponent: part.exponent * (/^cub/i.test(word) ? 3 : 2) };
       }
     }
-    const phrase = loose ? take(phrases()) : null;
+    const phrase = severalWords ? take(phrases()) : null;
     const name =
       phrase !== null
         ? PHRASES[phrase.toLowerCase().replace(/\s+/g, ' ')]!

@@ -73,7 +73,8 @@ function read(text: string, syntax: UnitSyntax | undefined, edition: Edition): U
     if (!('error' in ucum)) return outcome([...ucum, ...comment], 'ucum');
   }
   const first = comment[0]!.unit!;
-  for (const strict of STRICT) {
+  // Neither UCUM nor VOUnits has spaces or "^": most comments need one more reading and not three.
+  for (const strict of /[\s^]/.test(text) ? (['udunits'] as const) : STRICT) {
     const other = readIn(text, strict, edition);
     if (!('error' in other) && other.some(({ unit }) => unit !== null && sameUnits(unit, first)))
       return outcome(comment, strict);

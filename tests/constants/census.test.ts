@@ -50,6 +50,11 @@ describe('constants of one code', () => {
     });
     expect(found).toEqual(['caution constant-disagrees']);
   });
+  it('as literals of an exponent macro are read too', () => {
+    expect(
+      census(new Map([['a/c.F', file({ constants: [constant('kb', '1.38065 _d -23')] })]])).constants[0],
+    ).toMatchObject({ symbol: 'k_B' });
+  });
   it('agree across unit systems', () => {
     const found = kinds({
       'eos/eos.f': file({ constants: [constant('boltz', '1.380649d-16')] }),
