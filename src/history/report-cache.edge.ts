@@ -1,4 +1,5 @@
 /** Whole answers of earlier runs, kept by everything they depend on: the range, the tags, the readers. */
+import { createHash } from 'node:crypto';
 import { readdirSync, readFileSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import type { RepositoryPlace } from '../sources/find-repository.edge.ts';
