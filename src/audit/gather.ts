@@ -1,5 +1,6 @@
 /** Asks every earlier stage about one code and brings the answers together for `audit`. Holds no judgement of its own. */
 import { createHash } from 'node:crypto';
+import { census } from '../constants/census.ts';
 import { codeInterfaces } from '../fit/code-interfaces.ts';
 import { fitCases } from '../fit/fit-assembly.ts';
 import type { Joint } from '../fit/joint.ts';
@@ -66,6 +67,9 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
   );
   const ids = new Map(listing.files.map((file) => [file.path, file.id]));
 
+  say({ what: 'step', step: 'constants' });
+  findings.push(...constantFindings(manifests, interfaces));
+
   say({ what: 'step', step: 'history' });
   const history = await historyOf(request, listing.commit);
   findings.push(...history.findings);
@@ -111,6 +115,17 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
     interfaces,
     steps: history.steps,
   };
+}
+
+function constantFindings(manifests: ManifestSet, interfaces: ReadonlyMap<string, FileInterface>): readonly Finding[] {
+  const owners = new Map(
+    [...manifests.modules].flatMap(([name, { value }]) => value.source.files.map((file) => [file, name] as const)),
+  );
+  const promote = manifests.assembly?.value.build?.promote;
+  return census(interfaces, {
+    moduleOf: (file) => owners.get(file) ?? file,
+    ...(promote === undefined ? {} : { promote }),
+  }).findings;
 }
 
 async function historyOf(

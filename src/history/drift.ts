@@ -67,13 +67,24 @@ export async function drift(
 ): Promise<DriftReport> {
   const tags = await repository.tags();
   if (options.cache === false) return compute(repository, range, options, tags);
-  // A commit never changes: what is told of a range depends on nothing but its ends, the tags and the readers.
-  const key = JSON.stringify([range, options.folder ?? '', tags.map(({ name, commit }) => [name, commit])]);
+  const key = keyOf(range, options.folder, tags);
   const kept = keptReport(repository.place, key);
   if (kept !== null) return revive(kept);
   const report = await compute(repository, range, options, tags);
   if (report.complete) keepReport(repository.place, key, keepable(report));
   return report;
+}
+
+/**
+ * Everything that a report depends on, but for the readers: a commit never changes, so its ends and the tags are enough.
+ * Answers made from a report can be kept by it.
+ */
+export async function driftKey(repository: Repository, range: CommitRange, folder: string): Promise<string> {
+  return keyOf(range, folder, await repository.tags());
+}
+
+function keyOf(range: CommitRange, folder: string | undefined, tags: readonly Ref[]): string {
+  return JSON.stringify([range, folder ?? 'manifests', tags.map(({ name, commit }) => [name, commit])]);
 }
 
 function keepable(report: DriftReport): string {
@@ -163,7 +174,9 @@ async function compute(
     for (const [module, group] of groups) {
       const policy = policyOf(after);
       const version = await declaredFor(module, index, before[0]!, windows.get(commit.id)!, calendar, history, stateOf);
-      const changes = group.changes.sort((a, b) => BUMPS.indexOf(policy[b.kind]) - BUMPS.indexOf(policy[a.kind]));
+      const changes = joinBodies(group.changes).sort(
+        (a, b) => BUMPS.indexOf(policy[b.kind]) - BUMPS.indexOf(policy[a.kind]),
+      );
       const asked =
         group.event === 'born' || group.event === 'gone' ? 'none' : askedBump(changes, policy, version.before);
       found.push({
@@ -269,6 +282,20 @@ function groupChanges(
   }
   addManifestChanges(before, after, commit.id, group);
   return new Map([...groups].filter(([, { event, changes }]) => event !== null || changes.length > 0));
+}
+
+/** Bodies that changed are one change of the module: who needs to know which, reads the commit. */
+function joinBodies(changes: readonly Change[]): Change[] {
+  const bodies = changes.filter(({ kind }) => kind === 'implementation');
+  if (bodies.length < 2) return [...changes];
+  const names = bodies.slice(0, 5).map(({ subject }) => subject);
+  const more = bodies.length > names.length ? ` and ${bodies.length - names.length} more` : '';
+  const joined: Change = {
+    ...bodies[0]!,
+    subject: names.join(', '),
+    says: `the bodies of ${names.join(', ')}${more} changed`,
+  };
+  return [...changes.filter(({ kind }) => kind !== 'implementation'), joined];
 }
 
 /** A file that joins or leaves a module that stays is a change of that module. */
@@ -482,7 +509,7 @@ async function eventFindings(
       /(?:^|\/)references\/([^/]+)\.ya?ml$/.exec(file.path);
     if (match === null || file.after === null || file.before.some((id) => id === null)) continue;
     const bytes = await repository.blob(file.after);
-    const reason = bytes === null ? undefined : /^reason:\s*(.+)$/m.exec(decodeText(bytes))?.[1]?.trim();
+    const reason = bytes === null ? undefined : /^reason:\s*["']?([^"'\s].*?)["']?\s*$/m.exec(decodeText(bytes))?.[1];
     const change: Change = {
       kind: 'reference-renewed',
       subject: match[1]!,

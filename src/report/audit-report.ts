@@ -48,7 +48,7 @@ export function auditReport(gathered: GatheredCode, audit: Audit): Report {
 function modulesSection({ manifests, joints }: GatheredCode, audit: Audit): Section {
   return {
     title: 'Modules',
-    head: ['component', 'module', 'version', 'last validated', 'joints'],
+    head: ['component', 'module', 'version', 'validated', 'joints'],
     rows: Object.entries(manifests.assembly?.value.plugged ?? {}).map(([component, module]): Cell[] => {
       const validation = audit.validations.find((one) => one.module === module);
       const own = joints.filter((one) => one.expecting.module === module || one.offering?.module === module);
@@ -60,9 +60,9 @@ function modulesSection({ manifests, joints }: GatheredCode, audit: Audit): Sect
         manifests.modules.get(module)?.value.version ?? '?',
         validatedText(validation?.date ?? null, validation?.changed.length ?? 0),
         unfit > 0
-          ? { text: `${unfit} of ${own.length} do not fit`, mood: 'alarm' }
+          ? { text: `${unfit} of ${own.length} unfit`, mood: 'alarm' }
           : adapted > 0
-            ? { text: `${adapted} of ${own.length} through an adapter`, mood: 'warm' }
+            ? { text: `${adapted} of ${own.length} adapted`, mood: 'warm' }
             : own.length === 0
               ? 'none'
               : `${own.length} fit`,
@@ -73,7 +73,7 @@ function modulesSection({ manifests, joints }: GatheredCode, audit: Audit): Sect
 
 export function validatedText(date: string | null, changed: number): string {
   if (date === null) return 'never';
-  return changed === 0 ? date.slice(0, 10) : `${date.slice(0, 10)}, changed since`;
+  return changed === 0 ? date.slice(0, 10) : `${date.slice(0, 10)}, older`;
 }
 
 function jointsSection({ joints }: GatheredCode): Section {
