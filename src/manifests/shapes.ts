@@ -282,6 +282,8 @@ export const ASSEMBLY: RecordShape = record('an assembly', {
         'at-once': may(count, 'How many runs at once.'),
         'time-limit-seconds': may(positive, 'A run is ended after this time.'),
         'memory-megabytes': may(positive, 'Memory that a run may use.'),
+        cores: may(count, 'Cores that one run takes; 1 when absent.'),
+        launcher: may(text('command'), 'Words put before the command of each run, such as "mpirun -n 4".'),
       }),
     ),
     'Where cases can run.',

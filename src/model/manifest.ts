@@ -237,6 +237,10 @@ export interface Executor {
   readonly 'at-once'?: number;
   readonly 'time-limit-seconds'?: number;
   readonly 'memory-megabytes'?: number;
+  /** Cores that one run takes. */
+  readonly cores?: number;
+  /** Words put before the command of each run: `mpirun -n 4`. */
+  readonly launcher?: string;
 }
 
 export interface Campaign {

@@ -12,6 +12,8 @@ const WATCH_MILLISECONDS = 250;
 /** A log beyond this is a run gone wild. */
 const LOG_LIMIT_BYTES = 1 << 30;
 
+export { availableParallelism };
+
 /** As many at once as there are cores, unless told otherwise. */
 export function localExecutor(guard: Guard, atOnce: number = availableParallelism()): Executor {
   return {

@@ -59,7 +59,7 @@ export function findProgram(name: string, path: string | undefined): Program | n
 
 // Only programs known to answer `--version` and do nothing else; any other could take the word for a task.
 const ANSWERS_VERSION =
-  /^(node|python3?(\.\d+)?|gfortran(-\d+)?|gcc(-\d+)?|g\+\+(-\d+)?|clang(\+\+)?(-\d+)?|flang(-new)?(-\d+)?|ifx|ifort|icx|nvfortran|mpirun|mpiexec|mpif90|mpicc|cmake|make|ninja|julia|perl|bash)$/;
+  /^(node|python3?(\.\d+)?|gfortran(-\d+)?|gcc(-\d+)?|g\+\+(-\d+)?|clang(\+\+)?(-\d+)?|flang(-new)?(-\d+)?|ifx|ifort|icx|nvfortran|mpirun|mpiexec|srun|mpif90|mpicc|cmake|make|ninja|julia|perl|bash)$/;
 
 /** First line of what a program says of its version; null when it is not known to answer. */
 export function versionOf(program: Program): Promise<string | null> {

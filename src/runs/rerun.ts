@@ -6,7 +6,7 @@ import { cleanEnvironment } from './clean-environment.ts';
 import { CommandMistake, fillCommand, splitCommand } from './command-words.ts';
 import { type Configuration, casesNamed, configurationOf, NotDeclared } from './configuration.ts';
 import type { Exchange } from './exchange.ts';
-import { localExecutor } from './local-executor.edge.ts';
+import { availableParallelism, localExecutor } from './local-executor.edge.ts';
 import type { Executor } from './process-end.ts';
 import { producedBy } from './produced.ts';
 import { alteredOutputs, readReferenceIn, referencePlace, referenceStands } from './reference-files.edge.ts';
@@ -169,7 +169,7 @@ export class TreeRuns {
       );
       // `{out}` and `{root}` stay open: where a run lies must not change its key.
       const open = { ...select, out: '{out}', root: '{root}' };
-      words = fillCommand(splitCommand(theCase.run), open);
+      words = fillCommand([...this.launcher(), ...splitCommand(theCase.run)], open);
       build =
         configuration.build === null
           ? null
@@ -260,6 +260,12 @@ export class TreeRuns {
     return { ...ran, state: 'compared', why: '', deviations, class: worstClass(deviations) };
   }
 
+  /** The launcher belongs to the command, and so to the key: another count of ranks sums in another order. */
+  private launcher(): string[] {
+    const launcher = declaredExecutor(this.laboratory.request)?.launcher;
+    return launcher === undefined ? [] : splitCommand(launcher);
+  }
+
   private limits(): { timeLimitSeconds: number | null; memoryMegabytes: number | null } {
     const declared = declaredExecutor(this.laboratory.request);
     return {
@@ -294,7 +300,8 @@ function executorOf(request: LaboratoryRequest, store: Store): Executor {
   const declared = declaredExecutor(request);
   const atOnce = request.jobs ?? declared?.['at-once'];
   if (declared?.kind === 'slurm') return slurmExecutor(store.folder, declared, atOnce);
-  return localExecutor(store.guard, atOnce);
+  const cores = declared?.cores ?? 1;
+  return localExecutor(store.guard, atOnce ?? Math.floor(availableParallelism() / cores));
 }
 
 /** Files that manifests name: they belong to the code even when git does not track them yet. */

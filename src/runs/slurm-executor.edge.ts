@@ -261,7 +261,9 @@ class SlurmPool implements Executor {
       `--array=1-${workers}`,
       '--job-name=mortise',
       '--ntasks=1',
-      '--cpus-per-task=1',
+      // A worker is one task; what its runs launch, such as MPI ranks, has the cores of that task.
+      `--cpus-per-task=${this.declared.cores ?? 1}`,
+      '--nodes=1',
       '--requeue',
       '--export=NONE',
       '--open-mode=append',

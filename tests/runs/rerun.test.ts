@@ -5,7 +5,7 @@ import { canTellReads } from '../../src/runs/reads.edge.ts';
 import { recordReference } from '../../src/runs/record-reference.ts';
 import { readReference } from '../../src/runs/reference-files.edge.ts';
 import { type RerunRequest, rerunCases } from '../../src/runs/rerun.ts';
-import { CALLER, TinyCode } from './tiny-code.ts';
+import { CALLER, TINY, TinyCode } from './tiny-code.ts';
 
 let code: TinyCode;
 beforeEach(() => {
@@ -166,5 +166,26 @@ writeFileSync(process.argv[3] + '/profile.csv', 'x,pressure,temperature\\n1,1,1\
       "try { execFileSync('git', ['rev-parse', 'HEAD'], { stdio: ['ignore', 'inherit', 'inherit'] }); } catch {}",
     );
     expect(logTail).toContain('not a git repository');
+  });
+});
+
+describe('a declared launcher', () => {
+  it('stands before the command of each run, and another one asks for another run', async () => {
+    const assembly = readFileSync(join(code.root, 'manifests/assembly.yaml'), 'utf8');
+    const declare = (ranks: number) =>
+      code.write({
+        'manifests/assembly.yaml': `${assembly}executors: {here: {kind: local, cores: 2, launcher: "env RANKS=${ranks}"}}\n`,
+        'src/main.mjs': TINY['src/main.mjs']!.replace(
+          'let text',
+          "console.log('ranks ' + process.env.RANKS);\nlet text",
+        ),
+      });
+    declare(2);
+    expect(await rerun()).toMatchObject([{ logTail: 'ranks 2\n', kept: false }]);
+    expect(await rerun()).toMatchObject([{ kept: true }]);
+    declare(4);
+    const [outcome] = await rerun();
+    expect(outcome).toMatchObject({ logTail: 'ranks 4\n', kept: false });
+    expect(outcome!.produced!.command.slice(0, 3)).toEqual(['env', 'RANKS=4', 'node']);
   });
 });
