@@ -93,8 +93,14 @@ const textIn = (cards: Cards, key: string) => {
   return typeof value === 'string' && value !== '' ? value : undefined;
 };
 
+/** Axes and columns: never more than 999. @source FITS Standard 4.0, 4.4.1 and 7.2.1 */
+function countIn(cards: Cards, key: string): number {
+  const count = numberIn(cards, key) ?? 0;
+  return Number.isInteger(count) && count > 0 && count <= 999 ? count : 0;
+}
+
 function axes(cards: Cards): number[] {
-  return Array.from({ length: numberIn(cards, 'NAXIS') ?? 0 }, (_, i) => numberIn(cards, `NAXIS${i + 1}`) ?? 0);
+  return Array.from({ length: countIn(cards, 'NAXIS') }, (_, i) => numberIn(cards, `NAXIS${i + 1}`) ?? 0);
 }
 
 /** @source FITS Standard 4.0, equation 2: |BITPIX| * GCOUNT * (PCOUNT + NAXIS1 * NAXIS2 * ...) bits */
@@ -146,7 +152,7 @@ function binaryColumns(source: ByteSource, cards: Cards, data: number, table: st
   const [stride = 0, rows = 0] = axes(cards);
   const entries: Entry[] = [];
   let offset = data;
-  for (let column = 1; column <= (numberIn(cards, 'TFIELDS') ?? 0); column++) {
+  for (let column = 1; column <= countIn(cards, 'TFIELDS'); column++) {
     const form = /^(\d*)([LXBIJKAEDCMPQ])/.exec(textIn(cards, `TFORM${column}`) ?? '');
     if (form === null) {
       throw new OutputProblem(
@@ -188,7 +194,7 @@ function binaryColumns(source: ByteSource, cards: Cards, data: number, table: st
 function asciiColumns(source: ByteSource, cards: Cards, data: number, table: string): Entry[] {
   const [stride = 0, rows = 0] = axes(cards);
   const entries: Entry[] = [];
-  for (let column = 1; column <= (numberIn(cards, 'TFIELDS') ?? 0); column++) {
+  for (let column = 1; column <= countIn(cards, 'TFIELDS'); column++) {
     const form = /^([IFED])(\d+)(?:\.(\d+))?/.exec(textIn(cards, `TFORM${column}`) ?? '');
     const begin = numberIn(cards, `TBCOL${column}`);
     if (form === null || begin === undefined) continue;

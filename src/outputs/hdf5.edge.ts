@@ -1,4 +1,6 @@
 /** HDF5 and NetCDF-4: data sets read lazily from disk, a slab at a time. */
+import { openSync } from 'node:fs';
+import { devNull } from 'node:os';
 import type { Dataset, Group, Metadata } from 'h5wasm/node';
 import { type ArrayCursor, type DatasetInfo, type OutputFile, OutputProblem, outputFile } from './output-file.ts';
 
@@ -10,29 +12,42 @@ const LAYER = 1 << 23;
 /** @throws {OutputProblem} `truncated` or `damaged` when the library cannot open it */
 export async function openHdf5(path: string, size: number): Promise<OutputFile> {
   const library = await import('h5wasm/node');
-  // Errors are thrown, and not printed on the user's terminal.
-  (await library.ready).activate_throwing_error_handler();
-  let file: InstanceType<typeof library.File>;
+  quieten(await library.ready);
+  const found = new Map<string, Entry>();
+  let opened: InstanceType<typeof library.File> | null = null;
   try {
-    file = new library.File(path, 'r');
+    const file = new library.File(path, 'r');
+    opened = file;
     if (file.file_id < 0n) throw new Error('the library refuses it');
+    gather(file, '', found, library, new Set());
   } catch (error) {
+    // A file left open would be taken for the next one of that name.
+    if (opened !== null && opened.file_id >= 0n) opened.close();
     throw new OutputProblem(
       'damaged',
       path,
-      `starts as an HDF5 file but cannot be opened (${size} bytes): it was cut short, or never closed by the program that wrote it`,
+      `starts as an HDF5 file but cannot be opened (${size} bytes): it was cut short, altered, or never closed by the program that wrote it`,
       { cause: error },
     );
   }
-  const found = new Map<string, Entry>();
-  gather(file, '', found, library, new Set());
   return outputFile({
     path,
     format: 'hdf5',
     datasets: [...found.values()].map((one) => one.info),
     open: (info) => slabCursor(found.get(info.name)!, path),
-    close: () => void file.close(),
+    close: () => void opened?.close(),
   });
+}
+
+let isQuiet = false;
+
+/** The library prints its own account of every failure to standard error; ours is the message that follows it. */
+function quieten(module: { readonly FS: unknown }): void {
+  if (isQuiet) return;
+  isQuiet = true;
+  const streams = (module.FS as { readonly streams?: readonly ({ nfd?: number } | null)[] }).streams;
+  const errors = streams?.[2];
+  if (errors !== null && errors !== undefined && errors.nfd === 2) errors.nfd = openSync(devNull, 'w');
 }
 
 interface Entry {
@@ -58,12 +73,7 @@ function gather(
     // Links may run in circles; deeper than this nobody nests.
     if (seen.has(name) || name.split('/').length > 64) continue;
     seen.add(name);
-    let entity: ReturnType<Group['get']>;
-    try {
-      entity = group.get(key);
-    } catch {
-      continue;
-    }
+    const entity = group.get(key);
     if (entity instanceof library.Group) gather(entity, name, found, library, seen);
     else if (entity instanceof library.Dataset) {
       for (const entry of entriesOf(entity, name)) found.set(entry.info.name, entry);

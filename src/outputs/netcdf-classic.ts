@@ -84,12 +84,17 @@ function readHeader(source: ByteSource): Variable[] {
       }),
     );
 
+  /** No file has more dimensions a variable; a damaged one may claim any number. */
+  const rank = (name: string) => {
+    const found = count();
+    return found <= 1024 ? found : header.damaged(`"${name}" with ${found} dimensions`);
+  };
   const dimensions = list(10, () => ({ name: header.text(count()), length: count() }));
   attributes();
   const declared = list(11, () => {
     const name = header.text(count());
     const dims = Array.from(
-      { length: count() },
+      { length: rank(name) },
       () => dimensions[count()] ?? header.damaged(`a dimension of "${name}"`),
     );
     const attrs = attributes();

@@ -59,15 +59,19 @@ export function npyHeader(source: ByteSource): NpyHeader {
   if (descr === undefined || type === null) {
     throw new OutputProblem('unsupported', source.path, `holds ${descr ?? 'records'}, not plain numbers`);
   }
+  const extents = shape
+    .split(',')
+    .map((part) => part.trim())
+    .filter((part) => part !== '')
+    .map(Number);
+  if (!extents.every((extent) => Number.isSafeInteger(extent) && extent >= 0)) {
+    throw new OutputProblem('damaged', source.path, `has the shape (${shape}) in its npy header`);
+  }
   return {
     type,
     littleEndian: !descr.startsWith('>'),
     fortranOrder: order === 'True',
-    shape: shape
-      .split(',')
-      .map((part) => part.trim())
-      .filter((part) => part !== '')
-      .map(Number),
+    shape: extents,
     data: begins + length,
   };
 }
