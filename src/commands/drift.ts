@@ -1,7 +1,8 @@
 /** `mortise drift`: what changed in history, and did the version say so. */
-import { type DriftReport, drift } from '../history/drift.ts';
+import { type DriftReport, drift, driftKey } from '../history/drift.ts';
 import { commitText } from '../history/drift-findings.ts';
 import type { ModuleStep } from '../history/module-step.ts';
+import { keepReport, keptReport } from '../history/report-cache.edge.ts';
 import { findAssembly } from '../manifests/manifest-files.edge.ts';
 import { hasStop } from '../model/finding.ts';
 import { compareText } from '../model/place.ts';
@@ -41,26 +42,38 @@ Exit status: 0 nothing of gravity stop, 1 at least one stop, 2 an unknown revisi
       const range = await repository.range(
         invocation.words[0] ?? (typeof options.at === 'string' ? options.at : undefined),
       );
+      const folder = place?.folder ?? 'manifests';
+      const fresh = options.fresh === true;
+      const key = `${await driftKey(repository, range, folder)} ${JSON.stringify([options, textOptions(invocation, surroundings)])}`;
+      const kept = fresh ? null : keptReport(repository.place, key);
+      if (kept !== null) {
+        surroundings.out(kept.slice(1));
+        return kept[0] === '1' ? EXIT.stop : EXIT.ok;
+      }
       const report = await drift(repository, range, {
-        folder: place?.folder ?? 'manifests',
+        folder,
         workers: jobs(options.jobs),
-        cache: options.fresh !== true,
+        cache: !fresh,
         signal: surroundings.signal,
         ...(surroundings.stdoutIsTerminal && options.json !== true ? { onProgress: progress(surroundings) } : {}),
       });
       const chosen = choose(report, options.module, options.component);
-      surroundings.out(
-        options.json === true
-          ? `${JSON.stringify({ document: 'mortise drift', ...chosen, paths: Object.fromEntries([...chosen.paths].map(([name, paths]) => [name, [...paths]])) }, null, 2)}\n`
-          : text(chosen, invocation, surroundings),
-      );
+      const printed = options.json === true ? json(chosen) : text(chosen, invocation, surroundings);
+      surroundings.out(printed);
       if (!report.complete) return EXIT.interrupted;
-      return hasStop(chosen.findings) ? EXIT.stop : EXIT.ok;
+      const status = hasStop(chosen.findings) ? EXIT.stop : EXIT.ok;
+      if (!fresh) keepReport(repository.place, key, `${status}${printed}`);
+      return status;
     } finally {
       repository.close();
     }
   },
 };
+
+function json(report: DriftReport): string {
+  const paths = Object.fromEntries([...report.paths].map(([name, all]) => [name, [...all]]));
+  return `${JSON.stringify({ document: 'mortise drift', ...report, paths }, null, 2)}\n`;
+}
 
 function jobs(option: unknown): number {
   if (option === undefined) return 2;

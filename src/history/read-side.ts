@@ -18,19 +18,26 @@ export async function readSide(path: string, bytes: Uint8Array): Promise<SourceS
 export function bodiesOf(code: FileInterface, bytes: Uint8Array): Map<number, ProcedureBody> {
   const found = new Map<number, ProcedureBody>();
   if (code.procedures.length === 0 || code.language === 'table') return found;
-  const lines = decodeText(bytes).split('\n');
+  const text = decodeText(bytes);
+  const starts = lineStarts(text);
   for (const { name, line, endLine } of code.procedures) {
-    const text = lines.slice(line - 1, endLine).join('\n');
-    const key = `${code.language}${code.form ?? ''}${name} ${text.length} ${hashText(text)}`;
+    const written = text.slice(starts[line - 1] ?? 0, starts[endLine] ?? text.length);
+    const key = `${code.language}${code.form ?? ''}${name} ${written.length} ${hashText(written)}`;
     let body = bodies.get(key);
     if (body === undefined) {
-      body = procedureBody(name, text, code.language, code.form);
+      body = procedureBody(name, written, code.language, code.form);
       if (bodies.size >= MOST_BODIES) bodies.clear();
       bodies.set(key, body);
     }
     found.set(line, body);
   }
   return found;
+}
+
+function lineStarts(text: string): number[] {
+  const starts = [0];
+  for (let at = text.indexOf('\n'); at >= 0; at = text.indexOf('\n', at + 1)) starts.push(at + 1);
+  return starts;
 }
 
 /** Calls, storage and files read are most of an interface and are not compared. */

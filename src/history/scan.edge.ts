@@ -81,6 +81,9 @@ export function cut<T>(all: readonly T[], workers: number): T[][] {
   return pieces;
 }
 
+/** Interfaces live a moment: a roomy young generation keeps them from being copied about. */
+const LIMITS = { maxOldGenerationSizeMb: 2048, maxYoungGenerationSizeMb: 64 };
+
 /** What a thread is asked to do; each piece is answered in batches. */
 export type Piece = { readonly steps: readonly ScanStep[] } | { readonly blobs: readonly NamedBlob[] };
 
@@ -105,7 +108,7 @@ function runThread<A>(
   signal: AbortSignal | undefined,
 ): Promise<void> {
   return new Promise((done, fail) => {
-    const worker = new Worker(script, { workerData: place, resourceLimits: { maxOldGenerationSizeMb: 2048 } });
+    const worker = new Worker(script, { workerData: place, resourceLimits: LIMITS });
     const stop = () => void worker.terminate().then(() => done());
     signal?.addEventListener('abort', stop, { once: true });
     const next = () => {
