@@ -16,19 +16,19 @@ export function compareConserved(
   declared: Partial<Tolerance> | undefined,
 ): ArrayDeviation & { readonly tolerance: Tolerance } {
   const tolerance = completeTolerance(declared) ?? {
-    relative: Math.max(ROUNDING, drift(reference) * (1 + 1e-9)),
-    norm: 'pointwise',
-    reason: 'the drift of the reference run itself, at least 1e-12',
+    // Absolute, so that a total that starts from zero (a momentum) may drift as well.
+    absolute: drift(reference) * (1 + 1e-9),
+    relative: ROUNDING,
+    norm: 'pointwise' as const,
+    reason: 'the drift of the reference run itself, and rounding of 1e-12',
   };
   const start = new Float64Array(result.length).fill(result[0] ?? Number.NaN);
   const deviation = compareArrays(start, result, tolerance);
   return { ...deviation, tolerance };
 }
 
-/** Largest |value - first| / |first| along a run. */
+/** Largest |value - first| along a run, in the unit of the total. */
 export function drift(values: Float64Array): number {
   const first = values[0] ?? Number.NaN;
-  let most = 0;
-  for (const value of values) if (value !== first) most = Math.max(most, Math.abs(value - first) / Math.abs(first));
-  return most;
+  return values.reduce((most, value) => (value === first ? most : Math.max(most, Math.abs(value - first))), 0);
 }

@@ -3,6 +3,7 @@ import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { compareCase, footprintOf } from '../../src/compare/compare-outputs.edge.ts';
+import { compareConserved } from '../../src/compare/conserved.ts';
 import type { Case } from '../../src/model/manifest.ts';
 
 const cloud: Case = {
@@ -88,6 +89,13 @@ describe('a case compared with its reference', () => {
     const { 'conserved mass': mass } = await byName('drift');
     expect(mass!.class).toBe('beyond tolerance');
     expect(mass!.measures!.maxRelative).toBeCloseTo(1e-6, 9);
+  });
+
+  it('lets a total drift as far as the reference did, from zero too', () => {
+    const run = (...values: number[]) => Float64Array.from(values);
+    expect(compareConserved(run(0, 1e-3), run(0, -9e-4), undefined).class).toBe('within tolerance');
+    expect(compareConserved(run(0, 1e-3), run(0, 2e-3), undefined).class).toBe('beyond tolerance');
+    expect(compareConserved(run(5, 5), run(5, 5 + 1e-15), undefined).class).toMatch(/roundoff|bit-for-bit/);
   });
 
   it('takes the footprint from the extremes of the result', async () => {

@@ -1,9 +1,12 @@
 import fc from 'fast-check';
 import { beforeAll, describe, expect, it } from 'vitest';
+import { SharedLedger } from '../../src/compare/block-sums.ts';
 import { BLOCK, type MeasureKernel, plainKernel, type Weighing } from '../../src/compare/measure-block.ts';
 import { vectorKernel } from '../../src/compare/measure-kernel.edge.ts';
-import { measureArrays } from '../../src/compare/measuring.ts';
+import { measureSegments } from '../../src/compare/measure-segments.ts';
+import { conclude, measureArrays } from '../../src/compare/measuring.ts';
 import type { KernelModule } from '../../src/outputs/kernel-module.edge.ts';
+import type { ArrayCursor } from '../../src/outputs/output-file.ts';
 import { kernelFrom } from '../support/kernels.ts';
 
 let module: KernelModule;
@@ -90,6 +93,23 @@ describe('the vector kernel gives what its plain twin gives, to the last bit', (
   });
 });
 
+/** A cursor that can skip, as those over files can. */
+function skipping(values: Float64Array): ArrayCursor {
+  let at = 0;
+  return {
+    fill(into) {
+      const part = values.subarray(at, at + into.length);
+      into.set(part);
+      at += part.length;
+      return part.length;
+    },
+    skip(count) {
+      at += count;
+    },
+    close() {},
+  };
+}
+
 describe('measures', () => {
   it('do not depend on how the numbers came in pieces', () => {
     const reference = Float64Array.from({ length: 100_000 }, (_, i) => Math.sin(i));
@@ -97,6 +117,30 @@ describe('measures', () => {
     const whole = measureArrays(reference, result, { absolute: 1, relative: 0 }, fast);
     const small = { ...plain, reference: plain.reference.subarray(0, BLOCK), result: plain.result.subarray(0, BLOCK) };
     expect(measureArrays(reference, result, { absolute: 1, relative: 0 }, small)).toEqual(whole);
+  });
+
+  it('do not depend on how threads shared the elements out', async () => {
+    const count = 5_000_001;
+    const reference = Float64Array.from({ length: count }, (_, i) => Math.sin(i) * (i % 97));
+    const result = reference.map((value, i) => value * (1 + 1e-12 * Math.cos(i)));
+    const weighing = { absolute: 0, relative: 1e-9 };
+    const ledger = SharedLedger.forBlocks(Math.ceil(count / BLOCK));
+    const taken = new SharedArrayBuffer(4);
+    const work = { count, weighing, fills: {}, resultFactor: 1, sums: ledger.memory, taken };
+    const thread = () =>
+      measureSegments(
+        work,
+        skipping(reference),
+        skipping(result),
+        vectorKernel(module),
+        () => new Promise((resolve) => setImmediate(resolve)),
+      );
+    const found = await Promise.all([thread(), thread(), thread()]);
+    // Each took a part, or this shows nothing.
+    for (const { part } of found) expect(part.count).toBeLessThan(count);
+    const parts = found.map((one) => one.part);
+    const shared = conclude(parts.toReversed(), ledger.totals(), weighing);
+    expect(shared).toEqual(measureArrays(reference, result, weighing, fast));
   });
 
   it('keep norms of numbers whose squares overflow or vanish', () => {
