@@ -154,6 +154,8 @@ function verdict(step: ModuleStep): string {
   if (step.state === 'open') return `${asks}; not released yet`;
   if (step.declaredBy === null) return `${asks}; nothing declares a version here`;
   const versions =
-    step.versionAfter === null ? `stayed at ${step.versionBefore}` : `${step.versionBefore} to ${step.versionAfter}`;
+    step.versionAfter === null || step.versionAfter === step.versionBefore
+      ? `stayed at ${step.versionBefore}`
+      : `${step.versionBefore} to ${step.versionAfter}`;
   return `${asks}; ${printable(step.declaredBy)} ${step.declared === 'none' ? 'declares none' : `declares a ${step.declared} one`} (${versions})${step.state === 'undeclared' ? '  UNDECLARED' : ''}`;
 }

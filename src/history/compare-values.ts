@@ -30,8 +30,8 @@ export function compareConstants(before: readonly SourceSide[], after: readonly 
 }
 
 /**
- * Literals of a physics value (several digits, or a power of ten far from one) by procedure. A value that goes while another
- * comes, close to it, is the same literal changed; what merely comes or goes belongs to the body.
+ * Literals by procedure. Any that lost digits to single precision is told. Of a physics value (several digits, or a power of
+ * ten far from one) that goes while another comes, close to it, the literal changed; what merely comes or goes belongs to the body.
  */
 export function compareLiterals(before: readonly SourceSide[], after: readonly SourceSide[]): Change[] {
   const changes: Change[] = [];
@@ -70,7 +70,8 @@ function compareWithin(procedure: string, old: readonly Found[], fresh: readonly
       }
       continue;
     }
-    const near = left.findIndex((b) => close(b.it.value, a.it.value));
+    if (!isPhysics(a.it)) continue;
+    const near = left.findIndex((b) => isPhysics(b.it) && close(b.it.value, a.it.value));
     if (near < 0) continue;
     const [b] = left.splice(near, 1) as [Found];
     const says = `a literal of ${procedure} is ${a.it.text}, was ${b.it.text}`;
@@ -88,7 +89,8 @@ function byProcedure(sides: readonly SourceSide[]): Map<string, Found[]> {
   const map = new Map<string, Found[]>();
   for (const side of sides) {
     for (const it of side.code.literals) {
-      if (it.procedure === null || it.role === 'named' || it.role === 'integer-division' || !isPhysics(it)) continue;
+      if (it.procedure === null || it.role === 'named' || it.role === 'integer-division' || !isRealLiteral(it))
+        continue;
       const found = map.get(it.procedure) ?? [];
       found.push({ side, it, key: it.text, name: it.text });
       map.set(it.procedure, found);
@@ -97,8 +99,11 @@ function byProcedure(sides: readonly SourceSide[]): Map<string, Found[]> {
   return map;
 }
 
+function isRealLiteral({ text, value }: LiteralUse): boolean {
+  return /[.eEdD]/.test(text) && value !== 0;
+}
+
 function isPhysics({ text, value }: LiteralUse): boolean {
-  if (!/[.eEdD]/.test(text) || value === 0) return false;
   const digits = text
     .replace(/[eEdD_].*$/, '')
     .replace(/[^\d]/g, '')

@@ -13,7 +13,7 @@ const MOST_CALLERS = 8;
 /** A step that some version should have declared and none did. */
 export function undeclaredFinding(step: ModuleStep): Finding {
   const gravest = step.changes[0]!;
-  const others = step.changes.length - 1;
+  const others = step.changes.filter(({ kind }) => kind !== 'implementation').length - 1;
   const more = others === 0 ? '' : `, and ${others} more ${others === 1 ? 'change' : 'changes'}`;
   const stayed =
     step.declared === 'none'
@@ -22,7 +22,7 @@ export function undeclaredFinding(step: ModuleStep): Finding {
   const asked = versionAfter(step.versionBefore!, step.asked);
   const evidence: Evidence[] = [
     { says: commitText(step.commit) },
-    ...step.changes.flatMap(changeEvidence),
+    ...step.changes.filter(({ kind }) => kind !== 'implementation').flatMap(changeEvidence),
     ...step.callers
       .slice(0, MOST_CALLERS)
       .map((place) => ({ says: 'still called as before, in a file this commit left alone', place })),

@@ -278,10 +278,25 @@ function groupChanges(
     if (change.kind === 'procedure-added' && born.has(file) && !declares(before, after, file)) continue;
     if (change.kind === 'procedure-removed' && gone.has(file) && !declares(before, after, file)) continue;
     const module = ownerOf(file);
-    if (module !== null) group(module).changes.push(inside(change, module, after));
+    if (module !== null) group(module).changes.push(inside(beforeParent(change, commit.parents[0]), module, after));
   }
-  addManifestChanges(before, after, commit.id, group);
+  addManifestChanges(before, after, commit, group);
+  for (const it of groups.values()) it.changes = eachOnce(it.changes);
   return new Map([...groups].filter(([, { event, changes }]) => event !== null || changes.length > 0));
+}
+
+/** A table's new content is told by its bytes and by the digest that the manifest gives. */
+function eachOnce(changes: readonly Change[]): Change[] {
+  return changes.filter(
+    (change, index) => changes.findIndex((one) => one.kind === change.kind && one.says === change.says) === index,
+  );
+}
+
+/** The state before lies in the parent, under its own id. */
+function beforeParent(change: Change, parent: string | undefined): Change {
+  const place = change.before?.place;
+  if (place === undefined || parent === undefined) return change;
+  return { ...change, before: { ...change.before!, place: { ...place, revision: parent } } };
 }
 
 /** Bodies that changed are one change of the module: who needs to know which, reads the commit. */
@@ -315,7 +330,7 @@ function inside(change: Change, module: string, state: DeclaredState): Change {
 function addManifestChanges(
   before: readonly DeclaredState[],
   after: DeclaredState,
-  commit: string,
+  commit: CommitRecord,
   group: (module: string) => Group,
 ): void {
   if (before.some((state) => state === after)) return;
@@ -333,7 +348,10 @@ function addManifestChanges(
           list.some((one) => one.says === change.says || (one.kind === change.kind && one.subject === change.subject)),
         ),
       );
-      if (kept.length > 0) group(name(key)).changes.push(...kept.map((change) => stamped(change, commit)));
+      if (kept.length > 0)
+        group(name(key)).changes.push(
+          ...kept.map((change) => beforeParent(stamped(change, commit.id), commit.parents[0])),
+        );
     }
   };
   add(
@@ -500,7 +518,16 @@ async function eventFindings(
     if (sides.some((side) => side === undefined || side.value === declaration.value)) continue;
     for (const change of compareCases(sides[0]!, declaration)) {
       const next = 'see that the commit tells why more deviation is right; put the tolerance back if it does not.';
-      findings.push(eventFinding('tolerance-widened', 'caution', head, stamped(change, commit.id), undefined, next));
+      findings.push(
+        eventFinding(
+          'tolerance-widened',
+          'caution',
+          head,
+          beforeParent(stamped(change, commit.id), commit.parents[0]),
+          undefined,
+          next,
+        ),
+      );
     }
   }
   for (const file of commit.files) {
