@@ -32,7 +32,7 @@ describe('a decimal is read as the nearest double, to the last bit', () => {
           }
         },
       ),
-      { numRuns: 3000 },
+      { numRuns: 2000 },
     );
   });
 
@@ -46,7 +46,7 @@ describe('a decimal is read as the nearest double, to the last bit', () => {
           expect(Object.is(parseOne(text), Number(text)), text).toBe(true);
         },
       ),
-      { numRuns: 5000 },
+      { numRuns: 2000 },
     );
   });
 
@@ -64,7 +64,7 @@ describe('a decimal is read as the nearest double, to the last bit', () => {
           }
         },
       ),
-      { numRuns: 1000 },
+      { numRuns: 400 },
     );
   });
 
@@ -143,7 +143,7 @@ describe('the kernel reads what its plain twin reads', () => {
             expect(values(fast)).toEqual(values(plain));
           },
         ),
-        { numRuns: 1000 },
+        { numRuns: 400 },
       );
     });
   }
