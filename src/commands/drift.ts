@@ -1,6 +1,8 @@
 /** `mortise drift`: what changed in history, and did the version say so. */
-import { type DriftReport, drift, driftKey } from '../history/drift.ts';
-import { commitText } from '../history/drift-findings.ts';
+
+import { commitText } from '../history/commit-text.ts';
+import type { DriftReport } from '../history/drift.ts';
+import { driftKey } from '../history/drift-key.ts';
 import type { ModuleStep } from '../history/module-step.ts';
 import { keepReport, keptReport } from '../history/report-cache.edge.ts';
 import { findAssembly } from '../manifests/manifest-files.edge.ts';
@@ -50,6 +52,8 @@ Exit status: 0 nothing of gravity stop, 1 at least one stop, 2 an unknown revisi
         surroundings.out(kept.slice(1));
         return kept[0] === '1' ? EXIT.stop : EXIT.ok;
       }
+      // Loaded only when something must be read: the answer kept from before needs none of the readers.
+      const { drift } = await import('../history/drift.ts');
       const report = await drift(repository, range, {
         folder,
         workers: jobs(options.jobs),

@@ -1,5 +1,5 @@
 /** `mortise lineage`: where a module came from and where its copies are; `--id` prints content identifiers. */
-import { commitText, dayOf } from '../history/drift-findings.ts';
+import { commitText, dayOf } from '../history/commit-text.ts';
 import { type Copy, type Lineage, lineage } from '../history/lineage.ts';
 import { findAssembly } from '../manifests/manifest-files.edge.ts';
 import { printable } from '../model/printable.ts';

@@ -43,11 +43,10 @@ function isText(it: Declared): boolean {
 
 const ALIASES: Readonly<Record<string, string>> = { 'double precision': 'real', 'double complex': 'complex' };
 
+/** A type with and without its name space is one: `amrex::Real` where `using amrex::Real` was taken out. */
 function words(type: string): string {
-  const plain = type
-    .replace(/\s+/g, ' ')
-    .replace(/ ?([&*()<>,]) ?/g, '$1')
-    .trim();
+  const bare = type.replace(/\b\w+::/g, '').replace(/\s+/g, ' ');
+  const plain = bare.replace(/ ?([&*()<>,]) ?/g, '$1').trim();
   const spelled = ALIASES[plain.toLowerCase()] ?? plain;
   return spelled.split(' ').sort().join(' ');
 }

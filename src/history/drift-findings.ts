@@ -5,6 +5,7 @@ import type { Evidence, Finding, Gravity } from '../model/finding.ts';
 import type { Place } from '../model/place.ts';
 import { versionAfter } from './bumps.ts';
 import type { CommitRecord } from './commit-record.ts';
+import { commitText } from './commit-text.ts';
 import type { ModuleStep } from './module-step.ts';
 
 /** Places shown of callers left behind; their number is always told. */
@@ -64,16 +65,6 @@ export function eventFinding(
     evidence: [{ says: commitText(commit) }, ...changeEvidence(change)],
     next,
   };
-}
-
-/** `4f1c2ab90d 2014-03-02 A. Author: Use new rates`. */
-export function commitText(commit: Omit<CommitRecord, 'files'>): string {
-  return `${commit.id.slice(0, 10)} ${dayOf(commit.authored)} ${commit.author}: ${commit.subject}`;
-}
-
-export function dayOf(seconds: number): string {
-  const date = new Date(seconds * 1000);
-  return Number.isNaN(date.getTime()) ? 'no date' : date.toISOString().slice(0, 10);
 }
 
 export function changeEvidence(change: Change): Evidence[] {

@@ -12,11 +12,13 @@ import type { CommitRange, Ref, Repository } from '../sources/repository.edge.ts
 import { askedBump, declaredBump } from './bumps.ts';
 import { CallerFinder } from './callers.ts';
 import type { CommitRecord } from './commit-record.ts';
+import { commitText } from './commit-text.ts';
 import { fileOf, stamped } from './compare-interfaces.ts';
 import { compareCases, compareContracts, compareManifests } from './compare-manifests.ts';
 import { type DeclaredState, DeclaredStates } from './declared-state.ts';
 import { declaringFiles, isDeclaring } from './declaring-files.ts';
-import { commitText, eventFinding, undeclaredFinding } from './drift-findings.ts';
+import { eventFinding, undeclaredFinding } from './drift-findings.ts';
+import { driftKeyOf } from './drift-key.ts';
 import { draftNames, followPaths } from './module-names.ts';
 import type { ModuleStep } from './module-step.ts';
 import { netChange } from './net-change.ts';
@@ -67,24 +69,12 @@ export async function drift(
 ): Promise<DriftReport> {
   const tags = await repository.tags();
   if (options.cache === false) return compute(repository, range, options, tags);
-  const key = keyOf(range, options.folder, tags);
+  const key = driftKeyOf(range, options.folder ?? 'manifests', tags);
   const kept = keptReport(repository.place, key);
   if (kept !== null) return revive(kept);
   const report = await compute(repository, range, options, tags);
   if (report.complete) keepReport(repository.place, key, keepable(report));
   return report;
-}
-
-/**
- * Everything that a report depends on, but for the readers: a commit never changes, so its ends and the tags are enough.
- * Answers made from a report can be kept by it.
- */
-export async function driftKey(repository: Repository, range: CommitRange, folder: string): Promise<string> {
-  return keyOf(range, folder, await repository.tags());
-}
-
-function keyOf(range: CommitRange, folder: string | undefined, tags: readonly Ref[]): string {
-  return JSON.stringify([range, folder ?? 'manifests', tags.map(({ name, commit }) => [name, commit])]);
 }
 
 function keepable(report: DriftReport): string {
