@@ -3,7 +3,7 @@ import type { Audit } from '../audit/audit.ts';
 import type { GatheredCode } from '../audit/gather.ts';
 import { adapterSource } from '../fit/adapter.ts';
 import type { Half, Joint, JointState } from '../fit/joint.ts';
-import { dayOf } from '../history/drift-findings.ts';
+import { dayOf } from '../history/commit-text.ts';
 import type { ModuleStep } from '../history/module-step.ts';
 import { SAFETY_CAUTION } from '../model/caution.ts';
 import type { Deviation } from '../model/deviation.ts';
