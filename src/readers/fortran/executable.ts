@@ -24,7 +24,7 @@ const NOT_CALLED = new Set(
 export function callsIn(statement: Statement, isArray: (name: string) => boolean): Omit<CallSite, 'caller'>[] {
   const { code } = statement;
   const calls: Omit<CallSite, 'caller'>[] = [];
-  let from = 0;
+  let nameOfCall = -1;
   const call = /(^|\))\s*call\s+([a-z_]\w*(?:\s*%\s*\w+)*)\s*(\(|$)/.exec(code);
   if (call !== null && (call[1] === '' || /^(if|where|else)/.test(code))) {
     const name = call[2]!.replace(/\s+/g, '');
@@ -34,28 +34,22 @@ export function callsIn(statement: Statement, isArray: (name: string) => boolean
       callee: name.slice(name.lastIndexOf('%') + 1),
       how: name.includes('%') ? 'method' : 'subroutine',
       args: open < 0 ? [] : actualArguments(statement, open),
-      ...positionIn(statement, nameAt),
+      ...positionIn(statement, code.indexOf('call', call.index + (call[1]?.length ?? 0))),
     });
-    from = open < 0 ? code.length : 0;
+    nameOfCall = nameAt;
+    if (open < 0) return calls;
   }
   const called = calls[0];
   // An assignment's left side is indexed, not called; a format has no calls.
   const assigned = /^([a-z_]\w*)\s*\(/.exec(code)?.[1];
   if (/^format\s*\(/.test(code) && statement.label !== null) return calls;
   const pattern = /(^|[^a-z0-9_%.'"])([a-z_]\w*)\s*\(/g;
-  pattern.lastIndex = from;
   for (let match = pattern.exec(code); match !== null; match = pattern.exec(code)) {
     const name = match[2]!;
     const at = match.index + match[1]!.length;
     pattern.lastIndex = at + name.length;
     if (NOT_CALLED.has(name) || isArray(name) || (at === 0 && name === assigned)) continue;
-    if (
-      called !== undefined &&
-      called.callee === name &&
-      positionIn(statement, at).column === called.column &&
-      positionIn(statement, at).line === called.line
-    )
-      continue;
+    if (called !== undefined && at === nameOfCall) continue;
     const open = code.indexOf('(', at + name.length);
     const close = closing(code, open);
     if (close < 0) continue;
