@@ -334,6 +334,7 @@ export class FileReader {
     const name = unit[3]!;
     const rest = unit[4]!;
     if (kind === 'function' && rest !== '' && !rest.startsWith('(')) return false;
+    this.closeUnended(statement);
     const nameAt = code.lastIndexOf(name, code.length - rest.length);
     const scope = newScope(kind, name, this.scope, this.at(statement, nameAt), statement.condition);
     for (const word of ['pure', 'impure', 'elemental', 'recursive', 'module']) {
@@ -368,6 +369,16 @@ export class FileReader {
       );
     }
     return true;
+  }
+
+  /** A procedure inside another comes after CONTAINS; without it the one before has lost its END, or is another branch of the preprocessor. */
+  private closeUnended(statement: Statement): void {
+    while ((this.scope.kind === 'subroutine' || this.scope.kind === 'function') && !this.scope.containing) {
+      const alternative = this.scope.condition !== statement.condition;
+      if (!alternative)
+        this.incomplete.push({ line: this.scope.line, why: `${this.scope.kind} ${this.scope.name} has no end` });
+      this.close(statement.line - 1);
+    }
   }
 
   private bind(scope: Scope, text: string, statement: Statement): void {
