@@ -79,7 +79,13 @@ function compareArguments(before: Found, after: Found): Change[] {
     });
   };
   for (const b of was) {
-    if (!matched.has(b)) change('argument-removed', `${after.name} no longer takes ${b.name}`, b, null);
+    if (!matched.has(b))
+      change(
+        'argument-removed',
+        `${after.name} no longer takes ${b.name || `a ${ordinal(was.indexOf(b) + 1)} argument`}`,
+        b,
+        null,
+      );
   }
   const kept = new Set(matched.values());
   for (const a of is) {
@@ -89,7 +95,12 @@ function compareArguments(before: Found, after: Found): Change[] {
       change('optional-argument-added', `${after.name} takes ${a.name}, optional`, null, a);
     } else {
       const place = isOptional(a) ? `optional, in ${ordinal(is.indexOf(a) + 1)} place before others` : 'required';
-      change('argument-added', `${after.name} takes ${a.name}, ${place}`, null, a);
+      change(
+        'argument-added',
+        `${after.name} takes ${a.name || `a ${ordinal(is.indexOf(a) + 1)} argument`}, ${place}`,
+        null,
+        a,
+      );
     }
   }
   const order = was.filter((b) => matched.has(b) && !isKeywordOnly(matched.get(b)!));
@@ -109,8 +120,13 @@ function compareArguments(before: Found, after: Found): Change[] {
     });
   }
   for (const [b, a] of matched) {
-    const name = `${a.name} of ${after.name}`;
-    if (b.name.toLowerCase() !== a.name.toLowerCase() && namesMatter(before, after, b)) {
+    const name = `${a.name || ordinal(is.indexOf(a) + 1)} of ${after.name}`;
+    if (
+      a.name !== '' &&
+      b.name !== '' &&
+      b.name.toLowerCase() !== a.name.toLowerCase() &&
+      namesMatter(before, after, b)
+    ) {
       change('argument-renamed', `argument ${b.name} of ${after.name} is now called ${a.name}`, b, a);
     }
     // Between languages types have other names; only what is spelled alike is compared.
@@ -133,6 +149,11 @@ function compareArguments(before: Found, after: Found): Change[] {
 /** By name first; of what is left over, by place where the lists are equally long and the types agree: a new name. */
 function matchArguments(was: readonly Argument[], is: readonly Argument[]): Map<Argument, Argument> {
   const matched = new Map<Argument, Argument>();
+  // Prototypes may leave names out; then only places tell which is which.
+  if ([...was, ...is].some((one) => one.name === '')) {
+    for (const [index, b] of was.entries()) if (is[index] !== undefined) matched.set(b, is[index]);
+    return matched;
+  }
   const free = new Map(is.map((a) => [a.name.toLowerCase(), a]));
   for (const b of was) {
     const a = free.get(b.name.toLowerCase());
