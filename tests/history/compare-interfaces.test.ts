@@ -163,6 +163,16 @@ describe('compareInterfaces', () => {
     ['1 written 1._r8', { constants: [constant('one', '1', 1, 4)] }, { constants: [constant('one', '1._r8', 1, 8)] }],
     ['0.5 written 0.5d0', { literals: [literal('0.5', 0.5, 4)] }, { literals: [literal('0.5d0', 0.5, 8)] }],
     [
+      'names left out of a prototype',
+      { language: 'c', ...eos(real('rho'), real('temp')) },
+      { language: 'c', ...eos(real(''), real('')) },
+    ],
+    [
+      'a type that lost its name space',
+      { language: 'c++', ...eos(real('x', { type: 'amrex::Real' })) },
+      { language: 'c++', ...eos(real('x', { type: 'Real' })) },
+    ],
+    [
       'a COMMON member renamed in its place',
       { commons: [common('gas', [real('p')])] },
       { commons: [common('gas', [real('pres')])] },
