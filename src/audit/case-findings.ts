@@ -1,10 +1,12 @@
 /** What the outcome of each case means for a clearance. */
+
 import type { Deviation } from '../model/deviation.ts';
 import type { Evidence, Finding, Gravity } from '../model/finding.ts';
 import type { FindingKind } from '../model/finding-kind.ts';
 import type { ManifestSet } from '../model/manifest.ts';
 import type { Place } from '../model/place.ts';
 import { printableLines } from '../model/printable.ts';
+import { shortNumber } from '../model/short-number.ts';
 import type { CaseOutcome, CaseState } from '../runs/case-outcome.ts';
 
 export function caseFindings(outcomes: readonly CaseOutcome[], manifests: ManifestSet): Finding[] {
@@ -85,24 +87,24 @@ function deviationFinding(
     ];
   }
   const worst = one.measures?.worst ?? null;
-  const where = worst?.along === undefined ? '' : ` at ${short(worst.along.value)} ${worst.along.unit}`;
+  const where = worst?.along === undefined ? '' : ` at ${shortNumber(worst.along.value)} ${worst.along.unit}`;
   return [
     {
       kind: 'result-beyond-tolerance',
       gravity: 'stop',
       place: at,
-      says: `${one.quantity} of case ${outcome.case} is ${one.tolerances === null ? 'beyond' : `${short(one.tolerances)} times`} its tolerance from the reference.`,
+      says: `${one.quantity} of case ${outcome.case} is ${one.tolerances === null ? 'beyond' : `${shortNumber(one.tolerances)} times`} its tolerance from the reference.`,
       evidence: [
         ...(worst === null
           ? []
-          : [{ says: `worst${where}: ${short(worst.result)} against ${short(worst.reference)} ${one.unit}` }]),
+          : [
+              {
+                says: `worst${where}: ${shortNumber(worst.result)} against ${shortNumber(worst.reference)} ${one.unit}`,
+              },
+            ]),
         ...(one.why === undefined ? [] : [{ says: one.why }]),
       ],
       next: `find the change: "mortise trace ${outcome.case} ${one.quantity} GOOD..BAD"; record a new reference only when the new result is the right one.`,
     },
   ];
-}
-
-function short(value: number): string {
-  return String(Number(value.toPrecision(4)));
 }

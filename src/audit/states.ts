@@ -1,6 +1,8 @@
 /** The states that runs visit, against the ranges of tables and offers: does a run leave what a module is valid for? */
+
 import type { Finding } from '../model/finding.ts';
 import type { Declaration, ModuleManifest, Range } from '../model/manifest.ts';
+import { shortNumber } from '../model/short-number.ts';
 import { conversion } from '../units/conversion.ts';
 
 /** States visited, by quantity, each in its unit, and by what. */
@@ -80,10 +82,10 @@ function passed(visited: Visited, quantity: string, unit: string | null, range: 
   const shown = unit ?? state.unit;
   const [low, high] = state.range.map((end) => (end === null ? null : end * factor));
   if (high != null && range[1] !== null && high > range[1]) {
-    return `${quantity} reaches ${short(high)} ${shown}, valid up to ${short(range[1])} ${shown}`;
+    return `${quantity} reaches ${shortNumber(high)} ${shown}, valid up to ${shortNumber(range[1])} ${shown}`;
   }
   if (low != null && range[0] !== null && low < range[0]) {
-    return `${quantity} falls to ${short(low)} ${shown}, valid from ${short(range[0])} ${shown}`;
+    return `${quantity} falls to ${shortNumber(low)} ${shown}, valid from ${shortNumber(range[0])} ${shown}`;
   }
   return null;
 }
@@ -91,10 +93,6 @@ function passed(visited: Visited, quantity: string, unit: string | null, range: 
 function factorOf(from: string, to: string): number | null {
   const answer = conversion(from, to);
   return 'error' in answer ? null : answer.factor;
-}
-
-function short(value: number): string {
-  return String(Number(value.toPrecision(4)));
 }
 
 function capital(text: string): string {

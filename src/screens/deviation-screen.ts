@@ -1,9 +1,10 @@
 /** One quantity along its profile: result against reference, how much of the tolerance is used where, the norms beside it. */
 
+import { shortNumber } from '../model/short-number.ts';
 import { type Line, line, type Size, span, spread } from './frame.ts';
 import type { Glyphs } from './glyphs.ts';
 import { listLines, matching } from './list.ts';
-import { shortNumber, tolerancesText } from './numbers.ts';
+import { tolerancesText } from './numbers.ts';
 import { plotProfile } from './plot.ts';
 import { type Screen, type ScreenState, still, withState } from './screen.ts';
 import type { DeviationView, Views } from './views.ts';

@@ -2,11 +2,13 @@
  * Where two modules meet: the expectation on the left half, the offer on the right, a row a quantity, cut to match.
  * What does not match stands in the seam between the halves.
  */
+
+import { shortNumber } from '../model/short-number.ts';
 import { axisOf, bar } from './axis.ts';
 import { fitLine, type Line, line, type Size, span } from './frame.ts';
 import type { Glyphs } from './glyphs.ts';
 import { listLines, matching } from './list.ts';
-import { shortNumber } from './numbers.ts';
+
 import { type Screen, type ScreenState, still } from './screen.ts';
 import type { HalfRow, JointRow, JointView, Seam, Views } from './views.ts';
 
