@@ -8,7 +8,7 @@ import type { Repository } from '../sources/repository.edge.ts';
 import type { ModuleStep } from './module-step.ts';
 
 /** Changes that a call can be too old for. */
-const BREAKING: ReadonlySet<Change['kind']> = new Set([
+export const CALL_BREAKING: ReadonlySet<Change['kind']> = new Set([
   'procedure-removed',
   'argument-removed',
   'argument-added',
@@ -36,7 +36,9 @@ export class CallerFinder {
   /** Calls of changed procedures in files that the commit did not touch; the places of the calls at that commit. */
   async leftBehind(step: Pick<ModuleStep, 'commit' | 'changes'>, touched: ReadonlySet<string>): Promise<Place[]> {
     const procedures = new Set(
-      step.changes.filter(({ kind }) => BREAKING.has(kind)).map(({ subject }) => subject.split('.')[0]!.toLowerCase()),
+      step.changes
+        .filter(({ kind }) => CALL_BREAKING.has(kind))
+        .map(({ subject }) => subject.split('.')[0]!.toLowerCase()),
     );
     if (procedures.size === 0) return [];
     const places: Place[] = [];
