@@ -16,5 +16,6 @@ export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command 
   demo: () => import('./demo.ts'),
   help: () => import('./help.ts'),
   unit: () => import('./unit.ts'),
+  interface: () => import('./interface.ts'),
   constants: () => import('./constants.ts'),
 };
