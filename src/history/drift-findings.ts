@@ -79,6 +79,8 @@ export function changeEvidence(change: Change): Evidence[] {
   ];
 }
 
+/** Always at the commit that made the change: what is gone has its line from before. */
 function placeOf(change: Change, commit: string): Place {
-  return change.after?.place ?? change.before?.place ?? { file: change.subject, line: 1, column: 1, revision: commit };
+  const place = change.after?.place ?? change.before?.place ?? { file: change.subject, line: 1, column: 1 };
+  return { ...place, revision: commit };
 }
