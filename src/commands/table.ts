@@ -5,6 +5,7 @@ export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command 
   open: () => import('./open.ts'),
   check: () => import('./check.ts'),
   audit: () => import('./audit.ts'),
+  review: () => import('./review.ts'),
   compare: () => import('./compare.ts'),
   drift: () => import('./drift.ts'),
   lineage: () => import('./lineage.ts'),

@@ -36,6 +36,8 @@ export interface DriftOptions {
   readonly workers?: number;
   /** Take everything between the two ends of the range as one step; needs a range with both ends. */
   readonly net?: boolean;
+  /** Least bumps that count whatever the manifests of the range say, for a change that must not judge itself. */
+  readonly policy?: BumpPolicy;
   /** Keep and use answers of earlier scans; true when absent. */
   readonly cache?: boolean;
   readonly signal?: AbortSignal;
@@ -69,7 +71,7 @@ export async function drift(
 ): Promise<DriftReport> {
   const tags = await repository.tags();
   if (options.cache === false) return compute(repository, range, options, tags);
-  const key = driftKeyOf(range, options.folder ?? 'manifests', tags);
+  const key = `${driftKeyOf(range, options.folder ?? 'manifests', tags)}${options.net === true ? ` net ${JSON.stringify(options.policy ?? null)}` : ''}`;
   const kept = keptReport(repository.place, key);
   if (kept !== null) return revive(kept);
   const report = await compute(repository, range, options, tags);
@@ -162,7 +164,7 @@ async function compute(
     const groups = groupChanges(commit, answer, before, after, ownerOf);
     const { files: _, ...head } = commit;
     for (const [module, group] of groups) {
-      const policy = policyOf(after);
+      const policy = options.policy ?? policyOf(after);
       const version = await declaredFor(module, index, before[0]!, windows.get(commit.id)!, calendar, history, stateOf);
       const changes = joinBodies(group.changes).sort(
         (a, b) => BUMPS.indexOf(policy[b.kind]) - BUMPS.indexOf(policy[a.kind]),
@@ -576,6 +578,6 @@ function missingNotes(answers: Iterable<ScanAnswer>): string[] {
   );
 }
 
-function policyOf(state: DeclaredState): BumpPolicy {
+export function policyOf(state: Pick<DeclaredState, 'set'>): BumpPolicy {
   return { ...DEFAULT_POLICY, ...state.set.assembly?.value.policy };
 }

@@ -89,4 +89,4 @@ export type AuditKind =
   | 'case-failed'
   | 'result-beyond-tolerance'
   | 'result-not-comparable';
-export type ReviewKind = never;
+export type ReviewKind = 'commands-differ' | 'link-leaves' | 'submodule-moved' | 'text-hides';

@@ -8,8 +8,9 @@ import type { Change } from '../model/change.ts';
 import type { Finding } from '../model/finding.ts';
 import { sortFindings } from '../model/finding.ts';
 import type { Case, ManifestSet } from '../model/manifest.ts';
+import type { Place } from '../model/place.ts';
 import type { CaseOutcome } from '../runs/case-outcome.ts';
-import { configurationOf } from '../runs/configuration.ts';
+import { configurationOf, NotDeclared } from '../runs/configuration.ts';
 
 /** What was gathered about a change. Manifests are those of the base: what comes from outside decides nothing about itself. */
 export interface ReviewInput {
@@ -20,20 +21,28 @@ export interface ReviewInput {
   readonly drift: DriftReport;
   /** Every file that differs. */
   readonly files: readonly string[];
+  /** Places of the calls of each procedure whose interface changed, at the head; by its name in lower case. */
+  readonly callers: ReadonlyMap<string, readonly Place[]>;
   /** Files that each case's build and run read, where a kept run tells; null where none does. */
   readonly filesRead: ReadonlyMap<string, ReadonlySet<string> | null>;
   /** Of the cases that were run at the head; empty when none were. */
   readonly outcomes: readonly CaseOutcome[];
   /** Entries of the register that used a changed module, by module. */
   readonly results: ReadonlyMap<string, readonly string[]>;
-  /** Findings about manifests and joints at the head that the base has not. */
+  /** Findings about manifests, joints and the change as a whole that the base has not. */
   readonly fresh: readonly Finding[];
+  /** What limits this review, one sentence each. */
+  readonly notes?: readonly string[];
 }
 
 export interface Review {
   readonly base: string;
   readonly head: string;
   readonly steps: readonly ModuleStep[];
+  /** False when modules were drafted, one a source file. */
+  readonly declared: boolean;
+  readonly files: readonly string[];
+  readonly callers: ReviewInput['callers'];
   readonly sees: readonly CaseSight[];
   readonly outcomes: readonly CaseOutcome[];
   readonly results: ReviewInput['results'];
@@ -58,12 +67,15 @@ export function review(input: ReviewInput): Review {
     base: input.base,
     head: input.head,
     steps: drift.steps,
+    declared: drift.manifests,
+    files: input.files,
+    callers: input.callers,
     sees,
     outcomes: input.outcomes,
     results: input.results,
     byEye: byEye(input, sees),
     findings: sortFindings([...drift.findings, ...input.fresh, ...caseFindings(input.outcomes, manifests)]),
-    notes: drift.notes,
+    notes: [...(input.notes ?? []), ...drift.notes],
   };
 }
 
@@ -74,7 +86,7 @@ function sightOf(theCase: Case, input: ReviewInput, changed: ReadonlySet<string>
     if (seen.length > 0) return { case: theCase.case, sees: true, because: `its build and run read ${few(seen)}` };
     return { case: theCase.case, sees: false, because: 'its build and run read none of the changed files' };
   }
-  const modules = Object.values(configurationOf(input.manifests, theCase).plugged);
+  const modules = pluggedIn(input.manifests, theCase);
   const touched = modules.filter((module) => changed.has(module));
   if (touched.length > 0) return { case: theCase.case, sees: true, because: `it plugs in ${few(touched)}` };
   const owned = new Set(
@@ -112,9 +124,14 @@ function byEye({ drift, outcomes, manifests }: ReviewInput, sees: readonly CaseS
       step.asked !== 'none' &&
       !casesOf(step.module, manifests).some((name) => sees.find((one) => one.case === name)?.sees),
   );
-  const blind = [...new Set(unseen.map((step) => step.module))].map(
-    (module) => `${module}: no case can see this change; nothing here tells whether a result moves`,
-  );
+  const blind =
+    manifests.cases.size === 0
+      ? unseen.length === 0
+        ? []
+        : ['no case is declared, so nothing here tells whether a result moves']
+      : [...new Set(unseen.map((step) => step.module))].map(
+          (module) => `${module}: no case can see this change; nothing here tells whether a result moves`,
+        );
   const moved = outcomes
     .filter((one) => one.class === 'within tolerance')
     .map((one) => `case ${one.case}: results moved within tolerance; see that this is meant`);
@@ -128,8 +145,18 @@ function eyeFor(module: string, change: Change): string[] {
 
 function casesOf(module: string, manifests: ManifestSet): string[] {
   return [...manifests.cases.values()]
-    .filter(({ value }) => Object.values(configurationOf(manifests, value).plugged).includes(module))
+    .filter(({ value }) => pluggedIn(manifests, value).includes(module))
     .map(({ value }) => value.case);
+}
+
+/** A case that plugs in what nothing declares has its finding already; here it plugs in nothing. */
+function pluggedIn(manifests: ManifestSet, theCase: Case): string[] {
+  try {
+    return Object.values(configurationOf(manifests, theCase).plugged);
+  } catch (error) {
+    if (!(error instanceof NotDeclared)) throw error;
+    return [];
+  }
 }
 
 function few(names: readonly string[]): string {

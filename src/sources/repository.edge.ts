@@ -124,6 +124,12 @@ export class Repository {
     return this.objects.read(id);
   }
 
+  /** Id of a commit's tree; null when the clone lacks the commit. */
+  async treeOf(commit: string): Promise<string | null> {
+    const object = await this.objects.read(commit);
+    return object?.type === 'commit' ? parseCommit(object.bytes).tree : null;
+  }
+
   /** The bytes of a blob; null when the clone lacks it. */
   async blob(id: string): Promise<Uint8Array | null> {
     const object = await this.objects.read(id);

@@ -8,6 +8,7 @@ import { historyExplanations } from './history.ts';
 import { manifestsExplanations } from './manifests.ts';
 import { readersExplanations } from './readers.ts';
 import { registerExplanations } from './register.ts';
+import { reviewExplanations } from './review.ts';
 import { runsExplanations } from './runs.ts';
 import { unitsExplanations } from './units.ts';
 
@@ -21,4 +22,5 @@ export const explanations: Readonly<Record<FindingKind, Explanation>> = {
   ...runsExplanations,
   ...registerExplanations,
   ...auditExplanations,
+  ...reviewExplanations,
 };

@@ -1,0 +1,35 @@
+/** Runs at the head just the cases that can see a change, by the manifests that were chosen, and compares them with the base's references. */
+import { compareCase } from '../compare/compare-outputs.edge.ts';
+import { type CaseOutcome, worstClass } from '../runs/case-outcome.ts';
+import { casesNamed } from '../runs/configuration.ts';
+import { referencePlace, referenceStands } from '../runs/reference-files.edge.ts';
+import { type LaboratoryRequest, withLaboratory } from '../runs/rerun.ts';
+
+/**
+ * A change that renews a reference would otherwise be held against itself.
+ *
+ * @param base  commit whose references count
+ * @param head  commit that is built and run
+ */
+export function runSeeingCases(
+  request: LaboratoryRequest,
+  names: readonly string[],
+  base: string,
+  head: string,
+): Promise<CaseOutcome[]> {
+  const folder = request.manifestFolder ?? 'manifests';
+  return withLaboratory(request, async (laboratory) => {
+    const tree = await laboratory.tree(head);
+    const { listing } = await laboratory.tree(base);
+    return Promise.all(
+      casesNamed(request.manifests, names).map(async (one): Promise<CaseOutcome> => {
+        const outcome = await tree.examine(one, []);
+        if (outcome.result === null || outcome.state === 'failed') return outcome;
+        const reference = await referencePlace(listing, folder, one.case, laboratory.store.scratch);
+        if (!referenceStands(reference)) return outcome;
+        const deviations = await compareCase(one, reference, outcome.result);
+        return { ...outcome, state: 'compared', why: '', deviations, class: worstClass(deviations) };
+      }),
+    );
+  });
+}
