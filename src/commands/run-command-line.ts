@@ -1,7 +1,7 @@
 /** Finds the command named on the command line, parses its options, runs it, and turns what it throws into a message and an exit status. */
 import { parseArgs } from 'node:util';
 import { didYouMean } from '../model/nearest.ts';
-import { printable, printableLines } from '../model/printable.ts';
+import { printable, printableJson, printableLines } from '../model/printable.ts';
 import { SourceProblem } from '../sources/source-problem.ts';
 import {
   COMMON_OPTIONS,
@@ -50,7 +50,9 @@ export async function dispatch(words: readonly string[], surroundings: Surroundi
       surroundings.out(commandHelp(command));
       return EXIT.ok;
     }
-    return await command.run(invocation, surroundings);
+    // One place for every command: a document never carries what a terminal would act on.
+    const out = (text: string) => surroundings.out(printableJson(text));
+    return await command.run(invocation, invocation.options.json === true ? { ...surroundings, out } : surroundings);
   } catch (error) {
     if (error instanceof SourceProblem) {
       surroundings.err(`mortise: ${printable(error.message)}\nNext: ${printable(error.next)}\n`);

@@ -1,4 +1,5 @@
 /** A report as one JSON document; its schema is manifests/schema/report.schema.json. */
+import { printableJson } from '../model/printable.ts';
 import type { Report } from './report.ts';
 
 export function reportJson(report: Report, version: string): string {
@@ -17,5 +18,7 @@ export function reportJson(report: Report, version: string): string {
     ...(caution === null ? {} : { caution }),
   };
   // Infinity and NaN have no JSON text; as words they are at least not lost.
-  return `${JSON.stringify(document, (_, value) => (typeof value === 'number' && !Number.isFinite(value) ? String(value) : value), 2)}\n`;
+  return printableJson(
+    `${JSON.stringify(document, (_, value) => (typeof value === 'number' && !Number.isFinite(value) ? String(value) : value), 2)}\n`,
+  );
 }

@@ -67,15 +67,21 @@ function cellMarkdown(cell: Cell): string {
 }
 
 function folded(title: string, body: string): string {
-  return `<details><summary>${escaped(title)}</summary>\n\n${body}\n\n</details>`;
+  return `<details><summary>${escapedInHtml(title)}</summary>\n\n${body}\n\n</details>`;
+}
+
+/** Forges look for mentions in text that is already decoded, so an entity is no help; a comment keeps the name apart from its sign. */
+const ENTITIES: Readonly<Record<string, string>> = { '<': '&lt;', '>': '&gt;', '&': '&amp;', '@': '@<!-- -->' };
+
+/** Text inside a tag that begins a line: Markdown does not read there, so a backslash would be seen. */
+function escapedInHtml(text: string): string {
+  return printable(text).replace(/[<>&@]/g, (one) => ENTITIES[one]!);
 }
 
 /** Text that Markdown and HTML leave as it is: nothing from a repository becomes a link, a mention, an image or a tag. */
 export function escaped(text: string): string {
   return printable(printableLines(text))
-    .replace(/[\\`*_{}[\]()#+!|~<>&@:]/g, (one) =>
-      one === '<' ? '&lt;' : one === '>' ? '&gt;' : one === '&' ? '&amp;' : one === '@' ? '&#64;' : `\\${one}`,
-    )
+    .replace(/[\\`*_{}[\]()#+!|~<>&@:]/g, (one) => ENTITIES[one] ?? `\\${one}`)
     .replace(/^(\s*)([-=]|\d+\.)/, '$1\\$2');
 }
 

@@ -1,7 +1,7 @@
 /** Findings for tools that show them at their line. @source SARIF Version 2.1.0, OASIS Standard, 27 March 2020 */
 import type { Finding, Gravity } from '../model/finding.ts';
 import type { FindingKind } from '../model/finding-kind.ts';
-import { printable } from '../model/printable.ts';
+import { printable, printableJson } from '../model/printable.ts';
 import type { Explanation } from './explanations/explanation.ts';
 import type { Report } from './report.ts';
 
@@ -50,7 +50,7 @@ export function reportSarif(
       },
     ],
   };
-  return `${JSON.stringify(document, null, 2)}\n`;
+  return printableJson(`${JSON.stringify(document, null, 2)}\n`);
 }
 
 function locationOf(place: Finding['place']) {
