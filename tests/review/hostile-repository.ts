@@ -48,7 +48,7 @@ export function layHostileRepository(): HostileRepository {
     '.gitattributes': '* filter=evil diff=evil merge=evil text\n*.ts ident\n',
     '.gitmodules': `[submodule "library"]\n\tpath = library\n\turl = ext::${program('submodule')}\n\tupdate = !${program('submodule-update')}\n`,
     'src/cool.ts': `${SMALL_CODE['src/cool.ts']!.replace('rho: number, temp: number', 'temp: number, rho: number')}// ${RAW}\n`,
-    [`src/name \u001b[31m\u202e<b>.ts`]: `export function ${'x'}(a: number): number { return a; } // ${RAW}\n`,
+    'src/name \u001b[31m\u202e<b>.ts': `export function x(a: number): number { return a; } // ${RAW}\n`,
     'manifests/modules/tagged.yaml': `!!js/function "function(){require('fs').writeFileSync('${marks}/yaml','')}"\n`,
     'manifests/modules/tagged2.yaml': `module: !!python/object/apply:os.system ["touch ${marks}/yaml"]\ncomponent: cooling\n`,
     'manifests/cases/front.yaml': SMALL_CODE['manifests/cases/front.yaml']!.replace(
@@ -135,8 +135,14 @@ export function layHostileRepository(): HostileRepository {
 
 /** Proof that the attacks work: git, called the ordinary way, falls for some of them. */
 export function fallFor({ root }: HostileRepository): void {
-  const without = ['-c', 'filter.evil.process=', '-c', 'filter.evil.required=false'];
-  for (const words of [['status'], ['diff'], [...without, 'diff', 'HEAD'], ['log', '-p', '-1', '--ext-diff']]) {
+  // A filter that answers wrongly ends git before it comes to the others.
+  for (const words of [
+    ['status'],
+    ['diff'],
+    ['config', '--remove-section', 'filter.evil'],
+    ['diff', 'HEAD'],
+    ['log', '-p', '-1'],
+  ]) {
     try {
       execFileSync('git', words, { cwd: root, stdio: 'ignore', timeout: 10_000 });
     } catch {
