@@ -1,11 +1,8 @@
 /** `mortise interface PATH…`: what a reader sees. */
 import type { Declared, FileInterface } from '../model/interface.ts';
 import { printable } from '../model/printable.ts';
-import { isSource, readSource } from '../readers/read-source.ts';
-import { openTree } from '../sources/open-tree.edge.ts';
-import type { SourceTree } from '../sources/tree.ts';
-import { type Command, EXIT, type Invocation, type Surroundings, UsageError } from './command.ts';
-import { insideTree } from './paths.edge.ts';
+import { type Command, EXIT, UsageError } from './command.ts';
+import { readPaths } from './read-paths.ts';
 
 export const command: Command = {
   name: 'interface',
@@ -29,19 +26,11 @@ With --json: {revision, files: {PATH: {language, form, procedures, commons, type
   async run(invocation, surroundings) {
     if (invocation.words.length === 0)
       throw new UsageError('mortise interface needs a file or a folder; "." is all of the code');
-    const { at } = invocation.options;
-    const tree = await openTree(surroundings.cwd, typeof at === 'string' ? at : undefined);
-    const paths = await chosen(tree, invocation.words, surroundings);
-    const define = defines(invocation);
-    const files: Record<string, FileInterface> = {};
-    for (const path of paths) {
-      if (surroundings.signal.aborted) return EXIT.interrupted;
-      const bytes = await tree.read(path);
-      if (bytes !== null) files[path] = await readSource(path, bytes, define === undefined ? {} : { define });
-    }
+    const { files, revision } = await readPaths(invocation.words, invocation, surroundings);
+    if (surroundings.signal.aborted) return EXIT.interrupted;
     surroundings.out(
       invocation.options.json === true
-        ? `${JSON.stringify({ revision: tree.revision, files: Object.fromEntries(Object.entries(files).map(([path, read]) => [path, withCounts(read)])) })}\n`
+        ? `${JSON.stringify({ revision, files: Object.fromEntries(Object.entries(files).map(([path, read]) => [path, withCounts(read)])) })}\n`
         : Object.entries(files)
             .map(([path, read]) => fileText(path, read))
             .join('\n'),
@@ -49,36 +38,6 @@ With --json: {revision, files: {PATH: {language, form, procedures, commons, type
     return EXIT.ok;
   },
 };
-
-/** Files named, and sources below folders named, in the tree's own paths. */
-async function chosen(tree: SourceTree, words: readonly string[], surroundings: Surroundings): Promise<string[]> {
-  const all = (await tree.entries()).filter((entry) => entry.kind === 'file').map((entry) => entry.path);
-  const paths = new Set<string>();
-  for (const word of words) {
-    const inside = insideTree(tree.root, surroundings.cwd, word);
-    const found =
-      inside === null
-        ? []
-        : all.filter((path) => path === inside || ((inside === '' || path.startsWith(`${inside}/`)) && isSource(path)));
-    if (found.length === 0)
-      throw new UsageError(
-        `there is no source file at or below ${word}${tree.revision === null ? '' : ' at this revision'}`,
-      );
-    for (const path of found) paths.add(path);
-  }
-  return [...paths].sort();
-}
-
-function defines({ options }: Invocation): Record<string, string> | undefined {
-  const given = (options.define as readonly string[] | undefined) ?? [];
-  if (given.length === 0) return undefined;
-  return Object.fromEntries(
-    given.map((text) => {
-      const equals = text.indexOf('=');
-      return equals < 0 ? [text, '1'] : [text.slice(0, equals), text.slice(equals + 1)];
-    }),
-  );
-}
 
 /** The published shape tells of each call how many arguments it passes. */
 function withCounts(read: FileInterface) {

@@ -17,6 +17,7 @@ export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command 
   demo: () => import('./demo.ts'),
   help: () => import('./help.ts'),
   unit: () => import('./unit.ts'),
+  callers: () => import('./callers.ts'),
   interface: () => import('./interface.ts'),
   constants: () => import('./constants.ts'),
 };

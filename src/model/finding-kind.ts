@@ -26,7 +26,17 @@ export type ManifestKind =
   | 'manifest-unknown-name'
   | 'manifest-inconsistent'
   | 'manifest-outside';
-export type ReaderKind = 'source-incomplete';
+export type ReaderKind =
+  | 'source-incomplete'
+  | 'call-count'
+  | 'call-keyword'
+  | 'call-kind'
+  | 'call-type'
+  | 'call-order'
+  | 'call-constant-out'
+  | 'common-differs'
+  | 'common-scratch'
+  | 'prototype-differs';
 export type ConstantKind =
   | 'constant-disagrees'
   | 'constant-edition-mixed'

@@ -201,6 +201,8 @@ export interface ActualArgument extends Position {
   readonly type?: string;
   readonly bytes?: number | null;
   readonly rank?: number;
+  /** Declared without a kind: a build may promote it. */
+  readonly declaredDefault?: boolean;
 }
 
 export interface CallSite extends Position {

@@ -1,4 +1,5 @@
 /** An audit and a register turned into what the screens show. Pure. */
+
 import type { Audit } from '../audit/audit.ts';
 import type { GatheredCode } from '../audit/gather.ts';
 import { adapterSource } from '../fit/adapter.ts';
@@ -7,6 +8,7 @@ import { dayOf } from '../history/commit-text.ts';
 import type { ModuleStep } from '../history/module-step.ts';
 import { SAFETY_CAUTION } from '../model/caution.ts';
 import type { Deviation } from '../model/deviation.ts';
+import { groupBy } from '../model/group.ts';
 import type { Domain, ManifestSet, Range } from '../model/manifest.ts';
 import { printable } from '../model/printable.ts';
 import { demandText, validatedText } from '../report/audit-report.ts';
@@ -206,7 +208,7 @@ function deviationView(one: Deviation): DeviationView {
 
 /** Steps of all modules, a history a module, in the order in which modules came into being. */
 export function historyViews(steps: readonly ModuleStep[]): HistoryView[] {
-  const byModule = Map.groupBy(steps, (step) => step.module);
+  const byModule = groupBy(steps, (step) => step.module);
   return [...byModule].map(([module, own]) => ({
     module,
     lineage: own.flatMap((step) => {

@@ -21,7 +21,11 @@ const NOT_CALLED = new Set(
  *
  * @param isArray  whether a name is declared as something that is indexed
  */
-export function callsIn(statement: Statement, isArray: (name: string) => boolean): Omit<CallSite, 'caller'>[] {
+export function callsIn(
+  statement: Statement,
+  isArray: (name: string) => boolean,
+  typeOf: (name: string) => KnownType | null = () => null,
+): Omit<CallSite, 'caller'>[] {
   const { code } = statement;
   const calls: Omit<CallSite, 'caller'>[] = [];
   let nameOfCall = -1;
@@ -33,7 +37,7 @@ export function callsIn(statement: Statement, isArray: (name: string) => boolean
     calls.push({
       callee: name.slice(name.lastIndexOf('%') + 1),
       how: name.includes('%') ? 'method' : 'subroutine',
-      args: open < 0 ? [] : actualArguments(statement, open),
+      args: open < 0 ? [] : actualArguments(statement, open, isArray, typeOf),
       ...positionIn(statement, code.indexOf('call', call.index + (call[1]?.length ?? 0))),
     });
     nameOfCall = nameAt;
@@ -53,12 +57,22 @@ export function callsIn(statement: Statement, isArray: (name: string) => boolean
     const open = code.indexOf('(', at + name.length);
     const close = closing(code, open);
     if (close < 0) continue;
-    calls.push({ callee: name, how: 'function', args: actualArguments(statement, open), ...positionIn(statement, at) });
+    calls.push({
+      callee: name,
+      how: 'function',
+      args: actualArguments(statement, open, isArray, typeOf),
+      ...positionIn(statement, at),
+    });
   }
   return calls;
 }
 
-function actualArguments(statement: Statement, open: number): ActualArgument[] {
+function actualArguments(
+  statement: Statement,
+  open: number,
+  isArray: (name: string) => boolean,
+  typeOf: (name: string) => KnownType | null,
+): ActualArgument[] {
   const close = closing(statement.code, open);
   const inside = statement.code.slice(open + 1, close < 0 ? undefined : close);
   if (inside.trim() === '') return [];
@@ -73,14 +87,36 @@ function actualArguments(statement: Statement, open: number): ActualArgument[] {
     const value = (keyword?.[2] ?? text).trim();
     return {
       text: shown,
-      ...formOf(value),
+      ...typedForm(formOf(value), isArray, typeOf),
       ...(keyword === null ? {} : { keyword: keyword[1]! }),
       ...positionIn(statement, begin),
     };
   });
 }
 
-function formOf(value: string): Pick<ActualArgument, 'form' | 'name' | 'type' | 'bytes' | 'rank'> {
+/** What a declaration in sight says of a name. */
+export interface KnownType {
+  readonly type: string;
+  readonly bytes: number | null;
+  readonly rank: number;
+  /** Its size is the build's default, which switches may promote. */
+  readonly declaredDefault?: boolean;
+}
+
+function typedForm(
+  form: ReturnType<typeof formOf>,
+  isArray: (name: string) => boolean,
+  typeOf: (name: string) => KnownType | null,
+): ReturnType<typeof formOf> {
+  if (form.name === undefined) return form;
+  // What is indexed like an array and declared as none is the result of a function.
+  if (form.form !== 'name' && !isArray(form.name)) return { form: 'expression' };
+  const known = typeOf(form.name);
+  if (known === null) return form;
+  return { ...form, ...known, rank: form.form === 'element' ? 0 : known.rank };
+}
+
+function formOf(value: string): Pick<ActualArgument, 'form' | 'name' | 'type' | 'bytes' | 'rank' | 'declaredDefault'> {
   if (/^\*\s*\d+$/.test(value)) return { form: 'alternate-return' };
   if (/^[a-z_]\w*$/.test(value)) return { form: 'name', name: value };
   const element = /^([a-z_]\w*)\s*\(/.exec(value);
@@ -94,7 +130,7 @@ function formOf(value: string): Pick<ActualArgument, 'form' | 'name' | 'type' | 
     return {
       form: 'literal',
       type: 'real',
-      ...(real[1] === 'd' ? { bytes: 8 } : real[2] === undefined ? { bytes: 4 } : {}),
+      ...(real[1] === 'd' ? { bytes: 8 } : real[2] === undefined ? { bytes: 4, declaredDefault: true } : {}),
       rank: 0,
     };
   if (/^\.(true|false)\.$/.test(value)) return { form: 'literal', type: 'logical', bytes: 4, rank: 0 };

@@ -21,7 +21,7 @@ import { claimsFromComment } from '../claims/claims-from-comment.ts';
 import { claimsFromName } from '../claims/claims-from-name.ts';
 import type { ReadOptions } from '../read-options.ts';
 import { evaluate } from './evaluate.ts';
-import { callsIn, literalsIn } from './executable.ts';
+import { callsIn, type KnownType, literalsIn } from './executable.ts';
 import { closing, kindBytes, kindExpression, splitTop, type TypeSpec, typeSpecAt } from './kinds.ts';
 import {
   argumentsOf,
@@ -865,7 +865,7 @@ export class FileReader {
     }
     const caller = this.ownPath();
     const known = (name: string) => this.isArray(name);
-    for (const call of callsIn(statement, known))
+    for (const call of callsIn(statement, known, (name) => this.typeOf(name)))
       this.calls.push({ ...call, caller, ...(statement.condition === null ? {} : { condition: statement.condition }) });
     this.assignment(statement);
     const opened = /^open\s*\(.*\bfile\s*=\s*(['"])(.*?)\1/i.exec(statement.text);
@@ -882,6 +882,17 @@ export class FileReader {
         return draft.bounds !== null || draft.type === 'character' || (draft.type ?? '').includes('(');
     }
     return false;
+  }
+
+  /** What declarations, or the implicit rule, say of a name; null for what is known from elsewhere. */
+  private typeOf(name: string): KnownType | null {
+    for (let at: Scope | null = this.scope; at !== null; at = at.parent) {
+      const draft = at.drafts.get(name);
+      if (draft === undefined) continue;
+      const { type, bytes, rank, kind } = declaredFrom(at, draft, () => null);
+      return { type, bytes, rank, ...(kind === undefined ? { declaredDefault: true } : {}) };
+    }
+    return null;
   }
 
   private assignment(statement: Statement): void {
