@@ -46,7 +46,7 @@ export function layHostileRepository(): HostileRepository {
 
   writeFiles(root, {
     '.gitattributes': '* filter=evil diff=evil merge=evil text\n*.ts ident\n',
-    '.gitmodules': `[submodule "library"]\n\tpath = library\n\turl = ext::${program('submodule')}\n\tupdate = !${program('submodule-update')}\n`,
+    '.gitmodules': `[submodule "library"]\n\tpath = library\n\turl = ext::${program('submodule')}\n`,
     'src/cool.ts': `${SMALL_CODE['src/cool.ts']!.replace('rho: number, temp: number', 'temp: number, rho: number')}// ${RAW}\n`,
     'src/name \u001b[31m\u202e<b>.ts': `export function x(a: number): number { return a; } // ${RAW}\n`,
     'manifests/modules/tagged.yaml': `!!js/function "function(){require('fs').writeFileSync('${marks}/yaml','')}"\n`,
@@ -126,6 +126,8 @@ export function layHostileRepository(): HostileRepository {
 	allow = always
 [credential]
 	helper = ${program('credential')}
+[submodule "library"]
+	update = !${program('submodule-update')}
 [interactive]
 	diffFilter = ${program('diff-filter')}
 `;
