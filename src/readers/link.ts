@@ -49,12 +49,13 @@ export function linkInterfaces(files: ReadonlyMap<string, FileInterface>, option
     for (const generic of read.generics) for (const one of generic.procedures) push(generics, generic.name, one);
     for (const type of read.types) for (const binding of type.bindings) push(generics, binding.name, binding.procedure);
   }
+  const resolver = new Resolver(linked, providers);
   return {
     files: linked,
     providers,
     prototypes,
     generics,
-    resolve: (file, call) => resolve(linked, providers, file, call),
+    resolve: (file, call) => resolver.resolve(file, call),
   };
 }
 
@@ -71,47 +72,71 @@ function push<T>(into: Map<string, T[]>, key: string, value: T): void {
   else known.push(value);
 }
 
-function resolve(
-  files: ReadonlyMap<string, FileInterface>,
-  providers: ReadonlyMap<string, readonly Provider[]>,
-  file: string,
-  call: CallSite,
-): readonly Provider[] {
-  const all = (providers.get(call.callee) ?? []).filter(
-    (one) => one.procedure.kind !== 'method' || call.how === 'method',
-  );
-  if (all.length < 2) return all;
-  const hosts = call.caller === null ? [] : call.caller.split('::');
-  // An internal procedure, then one of the same module.
-  for (let depth = hosts.length; depth > 0; depth--) {
-    const path = hosts.slice(0, depth).join('::');
-    const own = all.filter((one) => one.file === file && one.procedure.parent === path);
-    if (own.length > 0) return own;
-  }
-  const used = modulesSeen(files, file, call.caller);
-  const ofModules = all.filter((one) => one.procedure.parent !== null && used.has(one.procedure.parent));
-  if (ofModules.length > 0) return ofModules;
-  const here = all.filter((one) => one.file === file && one.procedure.parent === null);
-  if (here.length > 0) return here;
-  const outside = all.filter((one) => one.procedure.parent === null);
-  return outside.length > 0 ? outside : all;
-}
+class Resolver {
+  private readonly files: ReadonlyMap<string, FileInterface>;
+  private readonly providers: ReadonlyMap<string, readonly Provider[]>;
+  /** Modules that a module uses. */
+  private readonly uses = new Map<string, string[]>();
+  private readonly seen = new Map<string, ReadonlySet<string>>();
 
-/** Modules that a caller uses itself or through its hosts. What those modules pass on is taken as seen too. */
-function modulesSeen(
-  files: ReadonlyMap<string, FileInterface>,
-  file: string,
-  caller: string | null,
-): ReadonlySet<string> {
-  const uses = files.get(file)?.uses ?? [];
-  return new Set(
-    uses
+  constructor(files: ReadonlyMap<string, FileInterface>, providers: ReadonlyMap<string, readonly Provider[]>) {
+    this.files = files;
+    this.providers = providers;
+    for (const read of files.values()) {
+      for (const use of read.uses) {
+        if (use.parent !== null) push(this.uses, use.parent, use.module);
+      }
+    }
+  }
+
+  resolve(file: string, call: CallSite): readonly Provider[] {
+    const caller = this.files.get(file);
+    // A dummy procedure is whatever is passed for it.
+    const host = caller?.procedures.find(
+      (one) => one.name === call.caller?.split('::').at(-1) && one.line <= call.line && call.line <= one.endLine,
+    );
+    if (host?.args.some((one) => one.name === call.callee)) return [];
+    const all = (this.providers.get(call.callee) ?? []).filter(
+      (one) => one.procedure.kind !== 'method' || call.how === 'method',
+    );
+    if (caller?.language !== 'fortran') return all;
+    const hosts = call.caller === null ? [] : call.caller.split('::');
+    // An internal procedure, then one of the same module.
+    for (let depth = hosts.length; depth > 0; depth--) {
+      const path = hosts.slice(0, depth).join('::');
+      const own = all.filter((one) => one.file === file && one.procedure.parent === path);
+      if (own.length > 0) return own;
+    }
+    const used = this.modulesSeen(file, call.caller);
+    const ofModules = all.filter((one) => one.procedure.parent !== null && used.has(one.procedure.parent));
+    if (ofModules.length > 0) return ofModules;
+    // What stands in a module or a host that is not in sight can not be meant.
+    return all.filter((one) => one.procedure.parent === null || this.files.get(one.file)!.language !== 'fortran');
+  }
+
+  /** Modules that a caller uses itself or through its hosts, and those that these use in turn. */
+  private modulesSeen(file: string, caller: string | null): ReadonlySet<string> {
+    const key = `${file} ${caller ?? ''}`;
+    const known = this.seen.get(key);
+    if (known !== undefined) return known;
+    const uses = this.files.get(file)?.uses ?? [];
+    const open = uses
       .filter(
         (use) =>
           use.parent === null || caller === null || caller === use.parent || caller.startsWith(`${use.parent}::`),
       )
-      .map((use) => use.module),
-  );
+      .map((use) => use.module);
+    const seen = new Set(open);
+    for (let module = open.pop(); module !== undefined; module = open.pop()) {
+      for (const next of this.uses.get(module) ?? []) {
+        if (seen.has(next)) continue;
+        seen.add(next);
+        open.push(next);
+      }
+    }
+    this.seen.set(key, seen);
+    return seen;
+  }
 }
 
 class Kinds {
