@@ -9,6 +9,8 @@ import type { ModuleStep } from '../history/module-step.ts';
 import type { Finding } from '../model/finding.ts';
 import type { FileInterface } from '../model/interface.ts';
 import type { ManifestSet } from '../model/manifest.ts';
+import { checkCode } from '../readers/callers/check-code.ts';
+import { Register } from '../register/register.edge.ts';
 import type { CaseOutcome } from '../runs/case-outcome.ts';
 import { contentId } from '../runs/key.ts';
 import { thisMachine } from '../runs/machine.edge.ts';
@@ -21,9 +23,10 @@ import { parseCommit } from '../sources/git-object.ts';
 import { openRepository } from '../sources/open-tree.edge.ts';
 import type { SourceTree } from '../sources/tree.ts';
 import type { Gathered } from './audit.ts';
+import { noticeFindings } from './notice-findings.ts';
 import { pluggedModules } from './validated.ts';
 
-export const STEPS = ['manifests', 'joints', 'constants', 'history', 'cases', 'register'] as const;
+export const STEPS = ['manifests', 'joints', 'constants', 'history', 'register', 'cases'] as const;
 export type AuditStep = (typeof STEPS)[number];
 export type AuditEvent = { readonly what: 'step'; readonly step: AuditStep } | RunEvent;
 
@@ -68,11 +71,14 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
   const ids = new Map(listing.files.map((file) => [file.path, file.id]));
 
   say({ what: 'step', step: 'constants' });
-  findings.push(...constantFindings(manifests, interfaces));
+  findings.push(...constantFindings(manifests, interfaces), ...callerFindings(manifests, interfaces));
 
   say({ what: 'step', step: 'history' });
   const history = await historyOf(request, listing.commit);
   findings.push(...history.findings);
+
+  say({ what: 'step', step: 'register' });
+  findings.push(...noticeFindings(new Register(root).notices(), manifests));
 
   let outcomes: readonly CaseOutcome[] = [];
   if (request.run) {
@@ -126,6 +132,12 @@ function constantFindings(manifests: ManifestSet, interfaces: ReadonlyMap<string
     moduleOf: (file) => owners.get(file) ?? file,
     ...(promote === undefined ? {} : { promote }),
   }).findings;
+}
+
+/** Between the modules that manifests declare; "mortise callers" looks at all of the code. */
+function callerFindings(manifests: ManifestSet, interfaces: ReadonlyMap<string, FileInterface>): readonly Finding[] {
+  const promote = manifests.assembly?.value.build?.promote;
+  return checkCode(interfaces, promote === undefined ? {} : { promote });
 }
 
 async function historyOf(
