@@ -20,4 +20,6 @@ export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command 
   callers: () => import('./callers.ts'),
   interface: () => import('./interface.ts'),
   constants: () => import('./constants.ts'),
+  completion: () => import('./completion.ts'),
+  man: () => import('./man.ts'),
 };

@@ -76,11 +76,13 @@ export function sectionText(section: Section, options: TextOptions): string {
 
 /** Where a table is wider than the terminal: the first cell on a line, the others below it with their names. */
 function narrowRows(section: Section, options: TextOptions): string[] {
-  return section.rows.map((row) =>
+  return section.rows.map((row, rowIndex) =>
     row
       .map((cell, index) => {
         const text = painted(cell, printable(cellText(cell)), options);
-        if (index === 0) return text;
+        const above = section.rows[rowIndex - 1]?.[0];
+        // What stands above already is not said again.
+        if (index === 0) return above !== undefined && cellText(above) === cellText(cell) ? '' : text;
         const name = section.head[index] ?? '';
         return wrap(name === '' ? `  ${text}` : `  ${name}: ${text}`, options.width, '    ');
       })

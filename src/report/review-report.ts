@@ -1,6 +1,5 @@
 /** The report of a review: what a change does, in the order in which a reviewer asks. Nothing is computed here, only laid out. */
 import { versionAfter } from '../history/bumps.ts';
-import { dayOf } from '../history/commit-text.ts';
 import type { ModuleStep } from '../history/module-step.ts';
 import type { ChangeKind } from '../model/bump.ts';
 import { SAFETY_CAUTION } from '../model/caution.ts';
@@ -76,7 +75,6 @@ export function reviewReport(review: Review, manifests: ManifestSet, names: Revi
     findings: review.findings,
     accepted: [],
     deviations: review.outcomes.flatMap((one) => one.deviations),
-    drawings: drawings(review),
     caution: manifests.assembly?.value.consequence === 'safety-related' ? SAFETY_CAUTION : null,
   };
 }
@@ -196,24 +194,4 @@ function resultsSection({ results }: Review): Section {
     head: ['module', 'result'],
     rows: [...results].flatMap(([module, entries]) => entries.map((one): Cell[] => [module, one])),
   };
-}
-
-/** One strip of versions for the steps that ask for a bump. */
-function drawings({ steps }: Review): NonNullable<Report['drawings']> {
-  const asking = steps.filter((step) => step.asked !== 'none' && step.versionBefore !== null);
-  if (asking.length === 0) return [];
-  return [
-    {
-      draw: 'versions',
-      title: 'Bumps asked and declared, a bar a module',
-      steps: asking.map((step) => ({
-        date: dayOf(step.commit.authored),
-        version: step.module,
-        asked: step.asked,
-        declared: step.declared,
-        undeclared: step.state === 'undeclared',
-        says: `${step.module}: ${step.changes[0]?.says ?? ''}`,
-      })),
-    },
-  ];
 }

@@ -4,7 +4,7 @@ import { html, type Markup } from './markup.ts';
 
 type Versions = Extract<Drawing, { draw: 'versions' }>;
 
-const HEIGHTS: Readonly<Record<string, number>> = { none: 4, patch: 14, minor: 28, major: 42 };
+const HEIGHTS: Readonly<Record<string, number>> = { none: 1, patch: 14, minor: 28, major: 42 };
 
 export function drawVersions({ title, steps }: Versions): Markup {
   const width = Math.max(360, 40 + steps.length * 34);
@@ -14,7 +14,7 @@ export function drawVersions({ title, steps }: Versions): Markup {
 <line class="grid" x1="20" x2="${width - 10}" y1="70" y2="70"/>
 ${steps.map((one, index) => {
   const x = 30 + index * 34;
-  const [asked, declared] = [HEIGHTS[one.asked] ?? 4, HEIGHTS[one.declared] ?? 4];
+  const [asked, declared] = [HEIGHTS[one.asked] ?? 1, HEIGHTS[one.declared] ?? 1];
   return html`<g><title>${one.date} ${one.says}</title><rect class="${one.undeclared ? 'asked-undeclared' : 'asked'}" x="${x}" y="${70 - asked}" width="18" height="${asked}"/><rect class="declared" x="${x}" y="70" width="18" height="${declared}"/>${one.undeclared ? html`<text x="${x + 9}" y="${66 - asked}" text-anchor="middle">!</text>` : ''}<text class="small" transform="translate(${x + 12} 146) rotate(-60)">${one.version ?? ''}</text></g>`;
 })}
 </svg>

@@ -18,7 +18,8 @@ export function plotProfileSvg(deviation: Deviation, profile: Profile): Markup {
   if (values.length === 0) return html`<p>No finite value to draw.</p>`;
   const positive = values.every((value) => value > 0);
   const log = positive && Math.max(...values) / Math.min(...values) > 1000;
-  const y = axis(Math.min(...values), Math.max(...values), HEIGHT - BOTTOM, TOP, log);
+  const [low, high] = withBand(Math.min(...values), Math.max(...values), shown, profile);
+  const y = axis(log ? Math.min(...values) : low, log ? Math.max(...values) : high, HEIGHT - BOTTOM, TOP, log);
   const x = axis(along[shown[0]!]!, along[shown.at(-1)!]!, LEFT, WIDTH - RIGHT, false);
   const line = (of: readonly number[]) => path(shown, (index) => [x.at(along[index]!), y.at(of[index] ?? Number.NaN)]);
   const upper = shown.map((index) => (profile.reference[index] ?? 0) + (profile.band[index] ?? 0));
@@ -33,9 +34,9 @@ export function plotProfileSvg(deviation: Deviation, profile: Profile): Markup {
   return html`<figure>
 <svg viewBox="0 0 ${WIDTH} ${HEIGHT}" role="img" aria-label="${title}" class="plot">
 <polygon class="band" points="${band.map(([px, py]) => `${round(px)},${round(py)}`).join(' ')}"/>
+${y.ticks.map((tick) => html`<g><line class="grid" x1="${LEFT}" x2="${WIDTH - RIGHT}" y1="${round(y.at(tick))}" y2="${round(y.at(tick))}"/><text x="${LEFT - 8}" y="${round(y.at(tick) + 4)}" text-anchor="end">${numberText(tick)}</text></g>`)}
 <path class="reference" d="${line(profile.reference)}"/>
 <path class="result" d="${line(profile.result)}"/>
-${y.ticks.map((tick) => html`<g><line class="grid" x1="${LEFT}" x2="${WIDTH - RIGHT}" y1="${round(y.at(tick))}" y2="${round(y.at(tick))}"/><text x="${LEFT - 8}" y="${round(y.at(tick) + 4)}" text-anchor="end">${numberText(tick)}</text></g>`)}
 ${x.ticks.map((tick) => html`<text x="${round(x.at(tick))}" y="${HEIGHT - BOTTOM + 18}" text-anchor="middle">${numberText(tick)}</text>`)}
 <text x="${(LEFT + WIDTH - RIGHT) / 2}" y="${HEIGHT - 6}" text-anchor="middle">${profile.along.name} ${unitText(profile.along.unit)}</text>
 <text x="${LEFT}" y="16">${deviation.quantity} ${unitText(deviation.unit)}${log ? ', logarithmic' : ''}</text>
@@ -43,6 +44,18 @@ ${at === undefined ? '' : html`<g><line class="worst" x1="${round(x.at(at))}" x2
 </svg>
 <figcaption><span class="key"><svg viewBox="0 0 28 8" aria-hidden="true"><path class="result" d="M0 4H28"/></svg> result</span> <span class="key"><svg viewBox="0 0 28 8" aria-hidden="true"><path class="reference" d="M0 4H28"/></svg> reference</span> <span class="key"><svg viewBox="0 0 28 8" aria-hidden="true"><rect class="band" width="28" height="8"/></svg> tolerance</span></figcaption>
 </figure>`;
+}
+
+/** The range of the curves, widened to show the whole band where that does not make the curves small. */
+function withBand(low: number, high: number, shown: readonly number[], profile: Profile): [number, number] {
+  let [bottom, top] = [low, high];
+  for (const index of shown) {
+    const [at, half] = [profile.reference[index] ?? Number.NaN, profile.band[index] ?? Number.NaN];
+    if (!Number.isFinite(at - half) || !Number.isFinite(at + half)) continue;
+    bottom = Math.min(bottom, at - half);
+    top = Math.max(top, at + half);
+  }
+  return top - bottom <= 2 * (high - low) ? [bottom, top] : [low, high];
 }
 
 interface Axis {

@@ -19,7 +19,7 @@ code,pre{font-family:ui-monospace,monospace;font-size:.9em;overflow-wrap:anywher
 .quiet{color:var(--quiet);font-size:.9rem}.hidden{position:absolute;width:1px;height:1px;overflow:hidden;clip-path:inset(50%)}
 figure{margin:.5rem 0 1.5rem}figcaption{color:var(--quiet);font-size:.9rem}.key svg{width:28px;height:8px;vertical-align:middle}
 svg.plot{width:100%;height:auto;max-height:26rem}svg.fixed{width:auto;max-width:none}
-svg text{fill:var(--ink);font:12px system-ui,sans-serif}svg text.small{font-size:10px}
+svg text{fill:var(--ink);font:12px system-ui,sans-serif;paint-order:stroke;stroke:var(--ground);stroke-width:3px}.box+text{stroke:none}svg text.small{font-size:10px}
 .grid{stroke:var(--line)}.band{fill:var(--band)}.result{fill:none;stroke:var(--curve);stroke-width:2}.reference{fill:none;stroke:var(--ink);stroke-width:1.5;stroke-dasharray:2 4}.worst{stroke:var(--alarm);stroke-dasharray:6 3}
 .box{fill:var(--panel);stroke:var(--line)}.joint-fits{fill:none;stroke:var(--quiet);stroke-width:1.5}.joint-adapter{fill:none;stroke:var(--warm);stroke-width:2;stroke-dasharray:6 4}.joint-unfit{fill:none;stroke:var(--alarm);stroke-width:4}
 .joint-fits-end{fill:var(--quiet)}.joint-adapter-end{fill:var(--warm)}.joint-unfit-end{fill:var(--alarm)}
