@@ -1,6 +1,6 @@
 /** Files named on the command line. */
 import { randomBytes } from 'node:crypto';
-import { readFile, rename, rm, writeFile } from 'node:fs/promises';
+import { mkdir, readFile, rename, rm, writeFile } from 'node:fs/promises';
 import { dirname, join, resolve } from 'node:path';
 import { UsageError } from './command.ts';
 
@@ -28,4 +28,20 @@ export async function writeWhole(cwd: string, file: string, text: string): Promi
       `${file} could not be written: ${(error as NodeJS.ErrnoException).code ?? (error as Error).message}`,
     );
   }
+}
+
+/** The text of a file; null when there is none. */
+export async function readIfThere(file: string): Promise<string | null> {
+  try {
+    return await readFile(file, 'utf8');
+  } catch (error) {
+    if ((error as NodeJS.ErrnoException).code === 'ENOENT') return null;
+    throw error;
+  }
+}
+
+/** Writes a file that is not there yet, and the folders above it. @throws {NodeJS.ErrnoException} EEXIST when it is there after all */
+export async function writeNew(file: string, text: string): Promise<void> {
+  await mkdir(dirname(file), { recursive: true });
+  await writeFile(file, text, { flag: 'wx' });
 }

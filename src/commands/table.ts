@@ -3,6 +3,7 @@ import type { Command } from './command.ts';
 
 export const COMMANDS: Readonly<Record<string, () => Promise<{ command: Command }>>> = {
   open: () => import('./open.ts'),
+  draft: () => import('./draft.ts'),
   check: () => import('./check.ts'),
   audit: () => import('./audit.ts'),
   review: () => import('./review.ts'),
