@@ -1,21 +1,13 @@
 /** `mortise review`: what a change does, before it is merged. */
+import { join } from 'node:path';
+import { driftKeyOf } from '../history/drift-key.ts';
+import { keepReport, keptReport } from '../history/report-cache.edge.ts';
 import { findAssembly } from '../manifests/manifest-files.edge.ts';
-import { hasStop } from '../model/finding.ts';
-import { Register } from '../register/register.edge.ts';
-import type { Report } from '../report/report.ts';
-import { reportJson } from '../report/report-json.ts';
-import { reportText } from '../report/report-text.ts';
-import { reviewReport } from '../report/review-report.ts';
-import { type GatheredReview, gatherReview } from '../review/gather-review.ts';
-import { type ScratchCommit, scratchCommit } from '../review/scratch-commit.edge.ts';
+import { listRecordFiles, REGISTER_FOLDER } from '../register/register-files.edge.ts';
 import { openRepository } from '../sources/open-tree.edge.ts';
 import type { Repository } from '../sources/repository.edge.ts';
-import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
-import { jobsOf } from './jobs.ts';
-import { orUsage, RUN_OPTIONS } from './running.ts';
+import { type Command, EXIT, type Invocation, type Surroundings, UsageError } from './command.ts';
 import { textOptions } from './text-options.ts';
-import { version } from './version.ts';
-import { checkReports, writeReports } from './write-reports.ts';
 
 export const command: Command = {
   name: 'review',
@@ -34,7 +26,7 @@ export const command: Command = {
       value: 'FILE',
       says: 'also write the report; its form goes by the suffix: .txt .json .md .html .sarif .xml',
     },
-    ...RUN_OPTIONS,
+    executor: { type: 'string', value: 'NAME', says: 'run on this executor of the assembly; "local" is this machine' },
   },
   help: `
 Takes everything between two commits as one change and says, in this order: what changed at each interface and contract and
@@ -56,38 +48,30 @@ Exit status: 0 nothing of gravity stop; 1 a stop; 2 wrong usage; 3 a case could 
     if (words.length === 1 && options.staged === true)
       throw new UsageError('--staged reviews what is staged against HEAD; leave out the range');
     const reports = (options.report as readonly string[] | undefined) ?? [];
-    checkReports(reports);
+    if (reports.length > 0) (await import('./write-reports.ts')).checkReports(reports);
     const place = findAssembly(surroundings.cwd, typeof options.assembly === 'string' ? options.assembly : undefined);
     const repository = openRepository(place?.root ?? surroundings.cwd);
-    let scratch: ScratchCommit | null = null;
     try {
       const ends = await endsOf(words[0], repository, invocation);
-      if (ends.head === null) {
-        scratch = await scratchCommit(repository, options.staged === true ? 'index' : 'work tree', ends.base);
-        const same = (await scratch.repository.treeOf(scratch.commit)) === (await repository.treeOf(ends.base));
-        if (same)
-          throw new UsageError(
-            `nothing differs between HEAD and the ${options.staged === true ? 'index' : 'work tree'}; name a range: BASE..HEAD`,
-          );
+      const key = await keyOf(repository, ends, place?.folder, invocation, surroundings);
+      const kept = key === null ? null : keptReport(repository.place, key);
+      if (kept !== null) {
+        surroundings.out(kept.slice(1));
+        return kept[0] === '1' ? EXIT.stop : EXIT.ok;
       }
-      const gathered = await orUsage(() => gather(repository, ends, scratch, place?.folder, invocation, surroundings));
-      if (surroundings.signal.aborted || !gathered.complete) return EXIT.interrupted;
-      const report = reportOf(gathered, ends, scratch, invocation);
-      await writeReports(report, reports, surroundings);
-      surroundings.out(
-        options.json === true
-          ? reportJson(report, version())
-          : reportText(report, textOptions(invocation, surroundings)),
-      );
-      return statusOf(gathered);
+      const { reviewChange } = await import('./review-change.ts');
+      const { status, printed } = await reviewChange(repository, ends, place?.folder, invocation, surroundings);
+      if (printed !== '') surroundings.out(printed);
+      if (key !== null && (status === EXIT.ok || status === EXIT.stop))
+        keepReport(repository.place, key, `${status}${printed}`);
+      return status;
     } finally {
-      scratch?.remove();
       repository.close();
     }
   },
 };
 
-interface Ends {
+export interface Ends {
   readonly base: string;
   /** null is the work tree or the index. */
   readonly head: string | null;
@@ -111,83 +95,17 @@ async function endsOf(text: string | undefined, repository: Repository, { option
   return { base: range.from!, head: range.to, written: { base, head: head === '' ? 'HEAD' : head } };
 }
 
-function gather(
+/** Two commits that are only read always give the same answer. @returns null where something else can change it */
+async function keyOf(
   repository: Repository,
-  ends: Ends,
-  scratch: ScratchCommit | null,
+  { base, head, written }: Ends,
   folder: string | undefined,
-  invocation: Invocation,
-  surroundings: Surroundings,
-): Promise<GatheredReview> {
-  const { options } = invocation;
-  const jobs = jobsOf(invocation);
-  const { executor } = options;
-  const run = options['no-run'] !== true && !repository.place.bare;
-  return gatherReview({
-    repository: scratch?.repository ?? repository,
-    base: ends.base,
-    head: scratch?.commit ?? ends.head!,
-    folder: folder ?? 'manifests',
-    root: repository.place.root,
-    run: run
-      ? {
-          env: surroundings.env,
-          signal: surroundings.signal,
-          ...(jobs === undefined ? {} : { jobs }),
-          ...(typeof executor === 'string' ? { executor } : {}),
-        }
-      : null,
-    headCommands: options['run-head-commands'] === true,
-    register: repository.place.bare ? null : new Register(repository.place.root),
-    cache: scratch === null,
-    signal: surroundings.signal,
-    ...(jobs === undefined ? {} : { workers: jobs }),
-  });
-}
-
-function reportOf(
-  { review, manifests, parted }: GatheredReview,
-  ends: Ends,
-  scratch: ScratchCommit | null,
   { options }: Invocation,
-): Report {
-  const named = (written: string, commit: string) =>
-    commit.startsWith(written) ? commit.slice(0, 10) : `${written} (${commit.slice(0, 10)})`;
-  const base = named(ends.written.base, ends.base);
-  const report = reviewReport(
-    scratch === null || scratch.unread.length === 0
-      ? review
-      : { ...review, notes: [...review.notes, `${scratch.unread.join(', ')} could not be read`] },
-    manifests,
-    {
-      base,
-      head: ends.head === null ? ends.written.head : named(ends.written.head, ends.head),
-      parted: parted === ends.base ? base : parted.slice(0, 10),
-      now: new Date().toISOString(),
-      ran: review.outcomes.length > 0,
-      commandsFrom: options['run-head-commands'] === true ? 'head' : 'base',
-    },
-  );
-  return scratch === null ? report : withoutRevision(report, scratch.commit);
-}
-
-/** The scratch commit is nowhere once the review is done, so no place may name it. */
-function withoutRevision(report: Report, commit: string): Report {
-  const clean = (_key: string, value: unknown) =>
-    typeof value === 'object' && value !== null && (value as { revision?: unknown }).revision === commit
-      ? { ...value, revision: undefined }
-      : typeof value === 'string'
-        ? value.replaceAll(commit.slice(0, 10), 'not committed')
-        : value;
-  const { findings, sections, drawings } = JSON.parse(
-    JSON.stringify({ findings: report.findings, sections: report.sections, drawings: report.drawings }, clean),
-  ) as Pick<Report, 'findings' | 'sections' | 'drawings'>;
-  return { ...report, findings, sections, ...(drawings === undefined ? {} : { drawings }) };
-}
-
-function statusOf({ review }: GatheredReview): ExitStatus {
-  if (hasStop(review.findings)) return EXIT.stop;
-  return review.outcomes.some((one) => one.state === 'not runnable' || one.state === 'interrupted')
-    ? EXIT.incomplete
-    : EXIT.ok;
+  surroundings: Surroundings,
+): Promise<string | null> {
+  if (head === null || options['no-run'] !== true || options.report !== undefined) return null;
+  // Names of records hold the seal of their content.
+  const records = listRecordFiles(join(repository.place.root, REGISTER_FOLDER));
+  const range = driftKeyOf({ from: base, to: head }, folder ?? 'manifests', await repository.tags());
+  return `review ${range} ${JSON.stringify([written, options, records, textOptions({ words: [], options }, surroundings)])}`;
 }
