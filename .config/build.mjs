@@ -1,5 +1,5 @@
 // Bundles src/main.ts into dist/mortise.js with lazily loaded chunks beside it, each *.worker.ts into a script of its own,
-// compiles *.as.ts kernels to WebAssembly, and copies the grammars. `npm run build` and prepack call it.
+// compiles *.as.ts kernels to WebAssembly. `npm run build` and prepack call it.
 import { execFileSync } from 'node:child_process';
 import { chmodSync, copyFileSync, mkdirSync, readdirSync, readFileSync, rmSync } from 'node:fs';
 import { basename, dirname, join } from 'node:path';
@@ -63,11 +63,7 @@ for (const file of sources.filter((name) => name.endsWith('.as.ts'))) {
     },
   );
 }
-for (const grammar of ['tree-sitter-cpp.wasm', 'tree-sitter-python.wasm']) {
-  copyFileSync(join(root, 'node_modules/@vscode/tree-sitter-wasm/wasm', grammar), join(dist, grammar));
-}
 // The demo builds its TypeScript with this program, vendored into it when it is laid.
 copyFileSync(join(root, 'node_modules/amaro/dist/index.js'), join(dist, 'strip-types.cjs'));
 copyFileSync(join(root, 'node_modules/amaro/LICENSE.md'), join(dist, 'strip-types-licence.md'));
-copyFileSync(join(root, 'node_modules/web-tree-sitter/web-tree-sitter.wasm'), join(dist, 'web-tree-sitter.wasm'));
 chmodSync(join(dist, 'mortise.js'), 0o755);

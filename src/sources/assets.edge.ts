@@ -1,4 +1,4 @@
-/** Files that ship with the program: kernels, grammars and worker scripts in dist/, schemas and contracts in manifests/. */
+/** Files that ship with the program: kernels and worker scripts in dist/, schemas and contracts in manifests/. */
 import { existsSync } from 'node:fs';
 import { dirname, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
