@@ -17,7 +17,7 @@ import { findCallers } from './find-callers.ts';
 import { commandFindings } from './look-at-commands.ts';
 import { lookAtFiles } from './look-at-files.ts';
 import { type Review, review } from './review.ts';
-import { runSeeingCases } from './run-seeing-cases.ts';
+import { filesReadAt, runSeeingCases } from './run-seeing-cases.ts';
 
 export interface ReviewRequest {
   /** Holds both commits; its work tree is not looked at. */
@@ -87,14 +87,25 @@ export async function gatherReview(request: ReviewRequest): Promise<GatheredRevi
       : commandFindings(baseLoaded.set, headLoaded.set, request.headCommands ? 'head' : 'base')),
     ...(await freshFindings(request, parted, files, headLoaded)),
   ];
+  const runs =
+    request.run === null
+      ? null
+      : {
+          ...request.run,
+          root: repository.place.root,
+          store: storeFolder(request.root, request.run.env),
+          manifests,
+          manifestFolder: folder,
+        };
   const input = {
     base,
     head,
     manifests,
     drift: report,
     files: files.map(({ path }) => path),
+    appeared: files.filter(({ before, after }) => before === null || after === null).map(({ path }) => path),
     callers,
-    filesRead: new Map<string, ReadonlySet<string> | null>(),
+    filesRead: runs === null || manifests.cases.size === 0 ? new Map<string, null>() : await filesReadAt(runs, parted),
     outcomes: [],
     results: resultsOf(request.register, report),
     fresh,
@@ -102,20 +113,9 @@ export async function gatherReview(request: ReviewRequest): Promise<GatheredRevi
   };
   const still = review(input);
   const seeing = still.sees.filter((one) => one.sees).map((one) => one.case);
-  if (request.run === null || seeing.length === 0 || !report.complete || request.signal?.aborted === true)
+  if (runs === null || seeing.length === 0 || !report.complete || request.signal?.aborted === true)
     return { review: still, manifests: own.set, parted, complete: report.complete };
-  const outcomes = await runSeeingCases(
-    {
-      ...request.run,
-      root: repository.place.root,
-      store: storeFolder(request.root, request.run.env),
-      manifests,
-      manifestFolder: folder,
-    },
-    seeing,
-    parted,
-    head,
-  );
+  const outcomes = await runSeeingCases(runs, seeing, parted, head);
   return { review: review({ ...input, outcomes }), manifests: own.set, parted, complete: true };
 }
 

@@ -21,6 +21,8 @@ export interface ReviewInput {
   readonly drift: DriftReport;
   /** Every file that differs. */
   readonly files: readonly string[];
+  /** Those that are new or gone. */
+  readonly appeared: readonly string[];
   /** Places of the calls of each procedure whose interface changed, at the head; by its name in lower case. */
   readonly callers: ReadonlyMap<string, readonly Place[]>;
   /** Files that each case's build and run read, where a kept run tells; null where none does. */
@@ -84,6 +86,10 @@ function sightOf(theCase: Case, input: ReviewInput, changed: ReadonlySet<string>
   if (read !== null) {
     const seen = input.files.filter((file) => read.has(file));
     if (seen.length > 0) return { case: theCase.case, sees: true, because: `its build and run read ${few(seen)}` };
+    // A build that takes every file of a folder would read a new one.
+    const code = input.appeared.filter((file) => !/^manifests\/|\.(md|txt|rst)$/i.test(file));
+    if (code.length > 0)
+      return { case: theCase.case, sees: true, because: `${few(code)} came or went, and its build may notice` };
     return { case: theCase.case, sees: false, because: 'its build and run read none of the changed files' };
   }
   const modules = pluggedIn(input.manifests, theCase);

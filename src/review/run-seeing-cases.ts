@@ -33,3 +33,18 @@ export function runSeeingCases(
     );
   });
 }
+
+/**
+ * Which files each case's build and run read at the base, where a kept run tells; null where none does. Runs nothing.
+ *
+ * @param base  commit that the kept runs must have been made of, as far as they read it
+ */
+export function filesReadAt(
+  request: LaboratoryRequest,
+  base: string,
+): Promise<Map<string, ReadonlySet<string> | null>> {
+  return withLaboratory(request, async (laboratory) => {
+    const tree = await laboratory.tree(base);
+    return new Map(casesNamed(request.manifests, []).map((one) => [one.case, tree.readBefore(one)]));
+  });
+}

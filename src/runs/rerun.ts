@@ -15,7 +15,7 @@ import type { RunEvent } from './run-event.ts';
 import { slurmExecutor } from './slurm-executor.edge.ts';
 import { closeStore, expectedSeconds, openStore, type Store, storeFolder } from './store.edge.ts';
 import { listTree, type TreeListing } from './tree-files.edge.ts';
-import { type RunResult, Workshop } from './workshop.ts';
+import { type RunResult, type RunTask, Workshop } from './workshop.ts';
 
 export interface RerunRequest {
   /** Absolute path of the repository or folder of the code. */
@@ -159,6 +159,36 @@ export class TreeRuns {
     exchanges: readonly Exchange[],
     options: { replaced?: ReadonlyMap<string, Uint8Array | null>; repeat?: number; keepFailures?: boolean } = {},
   ): Promise<{ readonly result: RunResult; readonly produced: Produced | null }> {
+    const planned = this.planned(theCase, exchanges, options);
+    if ('mistaken' in planned)
+      return { result: { state: 'mistaken', why: planned.mistaken, logTail: '' }, produced: null };
+    const { task, configuration } = planned;
+    const result = await this.laboratory.workshop.run(task);
+    const produced = await producedBy({
+      case: theCase.case,
+      manifests: this.manifests,
+      listing: this.listing,
+      configuration,
+      command: task.words,
+      build: task.build,
+      inputs: theCase.inputs ?? [],
+      environment: task.environment,
+      executor: this.laboratory.executor.kind,
+    });
+    return { result, produced };
+  }
+
+  /** Files that an earlier build and run of a case on the same contents had read; null where no kept run tells. */
+  readBefore(theCase: Case): ReadonlySet<string> | null {
+    const planned = this.planned(theCase, [], {});
+    return 'mistaken' in planned ? null : this.laboratory.workshop.readBefore(planned.task);
+  }
+
+  private planned(
+    theCase: Case,
+    exchanges: readonly Exchange[],
+    options: { replaced?: ReadonlyMap<string, Uint8Array | null>; repeat?: number; keepFailures?: boolean },
+  ): { readonly task: RunTask; readonly configuration: Configuration } | { readonly mistaken: string } {
     let configuration: Configuration;
     let words: string[];
     let build: string[] | null;
@@ -176,11 +206,11 @@ export class TreeRuns {
           : fillCommand(splitCommand(configuration.build.run), { ...select, root: '{root}' });
     } catch (error) {
       if (!(error instanceof CommandMistake || error instanceof NotDeclared)) throw error;
-      return { result: { state: 'mistaken', why: error.message, logTail: '' }, produced: null };
+      return { mistaken: error.message };
     }
     const environment = cleanEnvironment(this.laboratory.request.env, configuration.pass, configuration.set);
     const limits = this.limits();
-    const result = await this.laboratory.workshop.run({
+    const task: RunTask = {
       case: theCase.case,
       words,
       build,
@@ -196,19 +226,8 @@ export class TreeRuns {
       repeat: options.repeat ?? 0,
       fresh: this.laboratory.request.fresh ?? false,
       keepFailures: options.keepFailures ?? false,
-    });
-    const produced = await producedBy({
-      case: theCase.case,
-      manifests: this.manifests,
-      listing: this.listing,
-      configuration,
-      command: words,
-      build,
-      inputs: theCase.inputs ?? [],
-      environment,
-      executor: this.laboratory.executor.kind,
-    });
-    return { result, produced };
+    };
+    return { task, configuration };
   }
 
   /** Builds, runs and compares one case with its reference. */

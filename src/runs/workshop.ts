@@ -132,6 +132,14 @@ export class Workshop {
     return run;
   }
 
+  /** Files that an earlier run of the same task on the same contents had read; null where none is kept that tells. */
+  readBefore(task: RunTask): ReadonlySet<string> | null {
+    const keys = this.keysOf(task);
+    const ids = new Map(keys.files.map((file) => [file.path, file.id]));
+    const earlier = keptReads(this.parts.store, keys.reads).find(({ reads }) => agreesOnReads(reads, ids));
+    return earlier === undefined ? null : new Set(Object.keys(earlier.reads));
+  }
+
   /** What keeps a task from being tried at all. */
   private unable(task: RunTask): RunResult | null {
     const absent = task.needs.filter(({ program }) => findProgram(program, task.environment.PATH) === null);

@@ -185,6 +185,20 @@ describe('cases of a review', () => {
     expect(document.findings.map((one) => one.kind)).toContain('result-beyond-tolerance');
   });
 
+  it('are left alone where a kept run read none of the changed files', async () => {
+    const root = laySmallCode({ 'src/unused.ts': 'export const unused = 1;\n' });
+    await mortise(root, 'rerun', 'front', '--record', '--reason', 'agrees with the exact solution');
+    commitAll(root, 'Record');
+    await mortise(root, 'rerun', 'front', '--at', 'HEAD');
+    writeFiles(root, { 'src/unused.ts': 'export const unused = 2;\n' });
+    commitAll(root, 'Change what nothing reads');
+    const document = await reviewed(root, 'HEAD~1..HEAD');
+    const [row] = section(document, 'Cases');
+    // Where the file system does not tell what was read, every file may be part of the build.
+    expect(row!.slice(0, 3).join()).toMatch(/^front,(no,its build and run read none|yes,no kept run tells)/);
+    expect(section(document, 'Quantities that moved')).toEqual([]);
+  });
+
   it('are held against the reference of the base, even where the change renews it', async () => {
     const root = await recorded();
     writeFiles(root, { 'run.mjs': MOVED });
