@@ -20,21 +20,35 @@ export function reportMarkdown(report: Report): string {
     ({ finding, acceptance }) =>
       `- \`${finding.kind}\` ${escaped(finding.says)} Accepted: ${escaped(acceptance.reason)}`,
   );
-  const blocks = [
-    ...GRAVITIES.flatMap((gravity) => report.findings.filter((one) => one.gravity === gravity).map(findingMarkdown)),
+  type Block = (room: number) => string | null;
+  const whole =
+    (text: string): Block =>
+    (room) =>
+      text.length <= room ? text : null;
+  const blocks: Block[] = [
+    ...GRAVITIES.flatMap((gravity) =>
+      report.findings.filter((one) => one.gravity === gravity).map((one) => whole(findingMarkdown(one))),
+    ),
     ...report.sections
       .filter((one) => one.rows.length > 0 || (one.lines ?? []).length > 0)
-      .map((one) => folded(one.title, sectionMarkdown(one))),
-    ...(accepted.length === 0 ? [] : [folded(`Accepted: ${accepted.length}`, accepted.join('\n'))]),
+      .map(
+        (one): Block =>
+          (room) =>
+            sectionWithin(one, room),
+      ),
+    ...(accepted.length === 0 ? [] : [whole(folded(`Accepted: ${accepted.length}`, accepted.join('\n')))]),
   ];
   const kept: string[] = [];
+  let left = 0;
   let room = LONGEST - head.length - tail.length - 200;
   for (const block of blocks) {
-    room -= block.length + 2;
-    if (room < 0) break;
-    kept.push(block);
+    const text = block(room - 2);
+    if (text === null) left += 1;
+    else {
+      kept.push(text);
+      room -= text.length + 2;
+    }
   }
-  const left = blocks.length - kept.length;
   const more =
     left === 0 ? '' : `\n\n${left} more parts are left out for length; the JSON and HTML reports hold them all.`;
   return `${head}\n\n${kept.join('\n\n')}${more}${tail}`;
@@ -49,6 +63,22 @@ function findingMarkdown(finding: Finding): string {
   });
   const details = [...evidence, `- Next: ${escaped(finding.next)}`].join('\n');
   return `**${finding.gravity}**${about} ${escaped(finding.says)}\n\n${folded(`${finding.kind} at ${printPlace(finding.place)}`, details)}`;
+}
+
+/** The section with as many of its first rows as there is room for, and how many are left out. */
+function sectionWithin(section: Section, room: number): string | null {
+  const cut = (rows: number) => {
+    const left = section.rows.length - rows;
+    const lines = [...(left === 0 ? [] : [`${left} more rows are left out for length.`]), ...(section.lines ?? [])];
+    return folded(section.title, sectionMarkdown({ ...section, rows: section.rows.slice(0, rows), lines }));
+  };
+  let [fits, over] = [-1, section.rows.length + 1];
+  while (over - fits > 1) {
+    const middle = Math.floor((fits + over) / 2);
+    if (cut(middle).length <= room) fits = middle;
+    else over = middle;
+  }
+  return fits < 0 || (fits === 0 && section.rows.length > 0) ? null : cut(fits);
 }
 
 function sectionMarkdown(section: Section): string {

@@ -89,6 +89,15 @@ describe('every form', () => {
     expect(text).toContain('2000 stops');
   });
 
+  it('Markdown keeps the first rows of a table that is too long, and says how many it left out', () => {
+    const rows = Array.from({ length: 5000 }, (_, index) => ['equation-of-state', `eos ${index}`, 'fits']);
+    const text = reportMarkdown({ ...sampleReport, sections: [{ title: 'Modules', head: ['a', 'b', 'c'], rows }] });
+    expect(text.length).toBeLessThan(65_000);
+    expect(text.length).toBeGreaterThan(60_000);
+    expect(text).toContain('eos 0 ');
+    expect(text).toMatch(/\d+ more rows are left out for length/);
+  });
+
   it('HTML is one file: nothing is fetched and nothing runs', () => {
     expect(forms.html).not.toMatch(/<script|<link|<img|<iframe|<[^>]*\s(src|href|on[a-z]+)=|@import|url\(|https?:\/\//);
     expect(forms.html).toContain("default-src 'none'");
