@@ -24,8 +24,16 @@ export interface ScreenOptions {
   readonly colour: boolean;
 }
 
-const ENTER_SCREEN = '\u001b[?1049h\u001b[?25l';
-const LEAVE_SCREEN = '\u001b[?25h\u001b[?1049l';
+/** Keys typed before the first frame are kept: the terminal passes each on from now, and not by lines. */
+function enterScreen(): void {
+  process.stdin.setRawMode?.(true);
+  process.stdout.write('\u001b[?1049h\u001b[?25l');
+}
+
+function leaveScreen(): void {
+  process.stdin.setRawMode?.(false);
+  process.stdout.write('\u001b[?25h\u001b[?1049l');
+}
 
 /** Answers when the user leaves. The terminal is as before, however it ends. */
 export async function openScreens(host: ScreenHost, options: ScreenOptions): Promise<void> {
@@ -36,14 +44,14 @@ export async function openScreens(host: ScreenHost, options: ScreenOptions): Pro
     for (const listener of listeners) listener();
   };
   const unsubscribe = host.subscribe(() => change({ ...app, views: host.views() }));
-  const restore = () => process.stdout.write(LEAVE_SCREEN);
-  process.stdout.write(ENTER_SCREEN);
+  const restore = leaveScreen;
+  enterScreen();
   process.once('exit', restore);
   const onSignal = () => process.exit(143);
   process.once('SIGTERM', onSignal);
   process.once('SIGHUP', onSignal);
   try {
-    for (let edit: Edit | null = null, left = false; !left; edit = null) {
+    for (let edit: Edit | null = null, suspended = false, left = false; !left; edit = null, suspended = false) {
       const shown = render(
         <Shown
           read={() => app}
@@ -65,15 +73,25 @@ export async function openScreens(host: ScreenHost, options: ScreenOptions): Pro
             }
             if (left || edit !== null) shown.unmount();
           }}
+          onSuspend={() => {
+            suspended = true;
+            shown.unmount();
+          }}
         />,
         { exitOnCtrlC: false, patchConsole: false },
       );
       await shown.waitUntilExit();
+      if (suspended) {
+        leaveScreen();
+        // The shell gets its terminal back; this line ends when the process is continued.
+        process.kill(process.pid, 'SIGSTOP');
+        enterScreen();
+      }
       if (edit !== null) {
-        process.stdout.write(LEAVE_SCREEN);
+        leaveScreen();
         const [program = 'vi', ...words] = host.editor(edit);
         const { error } = spawnSync(program, words, { stdio: 'inherit' });
-        process.stdout.write(ENTER_SCREEN);
+        enterScreen();
         app = {
           ...app,
           message: error === undefined ? 'back from the editor' : `the editor could not be started: ${error.message}`,
@@ -96,9 +114,10 @@ interface ShownProps {
   listen(listener: () => void): () => void;
   readonly options: ScreenOptions;
   onPressed(pressed: Pressed): void;
+  onSuspend(): void;
 }
 
-function Shown({ read, listen, options, onPressed }: ShownProps) {
+function Shown({ read, listen, options, onPressed, onSuspend }: ShownProps) {
   const { stdout } = useStdout();
   const sizeNow = (): Size => ({ columns: stdout.columns ?? 80, rows: Math.max(1, (stdout.rows ?? 24) - 1) });
   const [, redraw] = useState(0);
@@ -113,7 +132,7 @@ function Shown({ read, listen, options, onPressed }: ShownProps) {
   }, [stdout, listen]);
   useInput((input, key) => {
     if (key.ctrl && input === 'c') return onPressed(leave(read()));
-    if (key.ctrl && input === 'z') return suspend(() => redraw((count) => count + 1));
+    if (key.ctrl && input === 'z') return onSuspend();
     for (const one of keysOf(input, key)) onPressed(press(read(), one, sizeNow()));
   });
   return (
@@ -140,16 +159,4 @@ function keysOf(input: string, key: InkKey): Key[] {
     if (character === '\u007f' || character === '\b') return [{ named: 'rub-out' }];
     return character >= ' ' ? [{ character }] : [];
   });
-}
-
-/** Ctrl-Z: the shell gets its terminal back; the screen comes again when the process is continued. */
-function suspend(again: () => void): void {
-  process.stdout.write(LEAVE_SCREEN);
-  process.stdin.setRawMode?.(false);
-  process.once('SIGCONT', () => {
-    process.stdin.setRawMode?.(true);
-    process.stdout.write(ENTER_SCREEN);
-    again();
-  });
-  process.kill(process.pid, 'SIGSTOP');
 }

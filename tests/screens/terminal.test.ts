@@ -24,12 +24,11 @@ class Session {
       rows,
       cwd,
       env: {
-        ...process.env,
+        ...withoutCi(),
         LANG: 'C.UTF-8',
         XDG_CACHE_HOME: cache,
         NO_COLOR: '',
         TERM: 'xterm-256color',
-        CI: '',
       } as Record<string, string>,
     });
     this.process.onData((data) => {
@@ -62,6 +61,13 @@ class Session {
   press(keys: string): void {
     this.process.write(keys);
   }
+}
+
+/** Ink draws nothing but the last frame where it sees itself in CI. */
+function withoutCi(): NodeJS.ProcessEnv {
+  return Object.fromEntries(
+    Object.entries(process.env).filter(([name]) => !/^(CI|CI_.*|CONTINUOUS_INTEGRATION)$/.test(name)),
+  );
 }
 
 const cache = mkdtempSync(join(tmpdir(), 'mortise-terminal-'));
@@ -169,7 +175,7 @@ describe('the screens in a terminal', () => {
     session.press('q');
     await session.until(() => session.exit !== null);
     expect(session.exit?.exitCode).toBe(0);
-    expect(session.raw).toMatch(/\u001b\[\?25h\u001b\[\?1049l$/);
+    expect(session.raw).toMatch(/\u001b\[\?1049l(\u001b\[\?25h)*$/);
     expect(session.terminal.buffer.active.type).toBe('normal');
   });
 
@@ -189,8 +195,11 @@ describe('the screens in a terminal', () => {
     await session.until('cautions');
     session.press('\u001a');
     await session.until(() => session.terminal.buffer.active.type === 'normal');
-    session.process.kill('SIGCONT');
-    await session.until('Can the campaign start?');
+    await session.until(() => {
+      // Again and again, since the first may come before the process has stopped.
+      session.process.kill('SIGCONT');
+      return session.screen().includes('Can the campaign start?');
+    });
     expect(session.terminal.buffer.active.type).toBe('alternate');
   });
 });
