@@ -42,6 +42,8 @@ export interface AuditRequest {
   readonly executor?: string;
   /** False leaves the cases alone: only what can be known without running is. */
   readonly run: boolean;
+  /** True for a case that is not to be run now: its result is taken only if it is kept from before. */
+  readonly onlyKept?: (name: string) => boolean;
   readonly signal: AbortSignal;
   readonly onEvent?: (event: AuditEvent) => void;
 }
@@ -93,6 +95,7 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
       onEvent: say,
       ...(request.jobs === undefined ? {} : { jobs: request.jobs }),
       ...(request.executor === undefined ? {} : { executor: request.executor }),
+      ...(request.onlyKept === undefined ? {} : { onlyKept: request.onlyKept }),
     });
   }
   const references: ReferenceRecord[] = [];

@@ -78,6 +78,7 @@ export async function auditOpened(
   invocation: Invocation,
   surroundings: Surroundings,
   onEvent: (event: AuditEvent) => void,
+  onlyKept?: (name: string) => boolean,
 ): Promise<Audited> {
   const jobs = jobsOf(invocation);
   const { executor } = invocation.options;
@@ -91,6 +92,7 @@ export async function auditOpened(
     run: invocation.options['no-run'] !== true,
     signal: surroundings.signal,
     onEvent,
+    ...(onlyKept === undefined ? {} : { onlyKept }),
     ...(jobs === undefined ? {} : { jobs }),
     ...(typeof executor === 'string' ? { executor } : {}),
   });

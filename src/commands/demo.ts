@@ -4,7 +4,6 @@ import { command as auditCommand } from './audit.ts';
 import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
 import { FolderNotEmpty, freeFolder, layDemo } from './demo/demo-repository.edge.ts';
 import { openOn } from './open.ts';
-import { openCode } from './open-code.ts';
 
 export const command: Command = {
   name: 'demo',
@@ -48,13 +47,7 @@ async function show(folder: string, invocation: Invocation, surroundings: Surrou
   const there = { ...surroundings, cwd: folder };
   const status =
     surroundings.stdoutIsTerminal && invocation.options.plain !== true && invocation.options.json !== true
-      ? await openScreens(invocation, there)
+      ? await openOn({ words: [], options: { ascii: invocation.options.ascii } }, there, true)
       : await auditCommand.run({ words: [], options: { ...invocation.options, at: undefined } }, there);
   return status === EXIT.stop ? EXIT.ok : status;
-}
-
-async function openScreens(invocation: Invocation, surroundings: Surroundings): Promise<ExitStatus> {
-  const opened = await openCode(invocation, surroundings);
-  if (opened.place === null) throw new Error('the demo holds no assembly');
-  return openOn(opened, invocation, surroundings);
 }

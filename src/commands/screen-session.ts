@@ -1,34 +1,47 @@
-/** What stands behind the screens while they are open: audits, runs, records, accepts, and tells the screens when something changed. */
+/**
+ * What stands behind the screens while they are open: audits, runs, exchanges, records, accepts, follows the files, and tells the
+ * screens when something changed. It runs beside the screens, on a thread of its own.
+ */
 import type { AuditEvent } from '../audit/gather.ts';
+import { manifestsUnreadable } from '../manifests/load-manifests.ts';
 import type { Finding } from '../model/finding.ts';
-import { resultText, standingText } from '../register/find.ts';
-import { plainYaml } from '../register/plain-yaml.ts';
 import { Register, writerFrom } from '../register/register.edge.ts';
-import type { CaseOutcome } from '../runs/case-outcome.ts';
+import { readExchange } from '../runs/exchange.ts';
 import { recordReference } from '../runs/record-reference.ts';
-import type { ScreenHost } from '../screens/open-screens.edge.tsx';
+import { type CaseSwap, swapModules } from '../runs/swap.ts';
 import type { Wish } from '../screens/screen.ts';
-import { type Known, viewsOf } from '../screens/view-models.ts';
-import type { RegisterView, Views } from '../screens/views.ts';
+import { type Known, movingViews, type SettledViews, settledViews, viewsOf } from '../screens/view-models.ts';
+import type { Views } from '../screens/views.ts';
 import { appendAcceptance } from './accept.edge.ts';
 import { type Audited, auditOpened } from './audit.ts';
+import { codeSignature } from './code-signature.edge.ts';
 import type { Invocation, Surroundings } from './command.ts';
-import { writeWhole } from './files.edge.ts';
 import { type OpenedCode, openCode } from './open-code.ts';
+import { registerView } from './register-view.ts';
+import { runRequest } from './running.ts';
 
-export class ScreenSession implements ScreenHost {
+/** What only the session can do; the rest is done where the terminal is. */
+export type SessionWish = Exclude<Wish, { do: 'leave' | 'edit' | 'write file' | 'clipboard' }>;
+
+interface RunningCase {
+  readonly state: string;
+  readonly seconds: number | null;
+  readonly expectedSeconds: number | null;
+  readonly since: number;
+}
+
+export class ScreenSession {
   private readonly invocation: Invocation;
   private readonly surroundings: Surroundings;
   private opened: OpenedCode;
   private audited: Audited | null = null;
+  private swaps: readonly CaseSwap[] = [];
   private job: Known['job'] = null;
   private jobControl: AbortController | null = null;
-  private running = new Map<
-    string,
-    { state: string; seconds: number | null; expectedSeconds: number | null; since: number }
-  >();
+  private readonly running = new Map<string, RunningCase>();
   private readonly listeners = new Set<() => void>();
-  private drawn: Views | null = null;
+  private settled: SettledViews | null = null;
+  private signature = '';
 
   constructor(opened: OpenedCode, invocation: Invocation, surroundings: Surroundings) {
     this.opened = opened;
@@ -40,21 +53,20 @@ export class ScreenSession implements ScreenHost {
     return this.audited;
   }
 
+  get busy(): boolean {
+    return this.job !== null;
+  }
+
+  /** All that the screens show, the register included, for a printer without a terminal. */
   views(): Views {
-    this.drawn ??= viewsOf({
-      manifests: this.opened.set,
-      gathered: this.audited?.gathered ?? null,
-      audit: this.audited?.audit ?? null,
-      register: registerView(new Register(this.opened.place.root)),
-      job: this.job,
-      running: new Map(
-        [...this.running].map(([name, one]) => [
-          name,
-          { ...one, seconds: one.state === 'running' ? (Date.now() - one.since) / 1000 : null },
-        ]),
-      ),
-    });
-    return this.drawn;
+    return viewsOf({ ...this.known(), register: registerView(new Register(this.opened.place.root)) });
+  }
+
+  /** What the screens show besides the register. The settled part is the same object until it changes. */
+  shown(): Omit<Views, 'register'> {
+    const known = this.known();
+    this.settled ??= settledViews(known);
+    return { ...this.settled, ...movingViews(known) };
   }
 
   subscribe(listener: () => void): () => void {
@@ -62,52 +74,80 @@ export class ScreenSession implements ScreenHost {
     return () => this.listeners.delete(listener);
   }
 
-  editor(wish: Extract<Wish, { do: 'edit' }>): readonly string[] {
-    const { file, line } = wish.finding.place;
-    const words = (this.surroundings.env.VISUAL ?? this.surroundings.env.EDITOR ?? 'vi')
-      .split(/\s+/)
-      .filter((word) => word !== '');
-    // "+LINE FILE" is what the editors of the trade take (POSIX ex and vi, and most others after them).
-    return [...words, `+${line}`, `${this.opened.place.root}/${file}`];
+  /**
+   * Audits; the screens follow. A second call while something runs does nothing.
+   *
+   * @param runs  whether a case may be run now; of the others only a result kept from before is taken
+   */
+  audit(runs: (name: string) => boolean): Promise<void> {
+    return this.work('audit', async (signal) => {
+      this.signature = await codeSignature(this.opened);
+      const audited = await auditOpened(
+        this.opened,
+        this.invocation,
+        { ...this.surroundings, signal },
+        (event) => this.follow(event),
+        (name) => !runs(name),
+      );
+      if (!signal.aborted) this.audited = audited;
+    });
   }
 
-  /** Audits in the background; the screens follow. A second call while one runs does nothing. */
-  audit(): Promise<void> {
-    return this.work('audit', (signal) => this.auditOnce(signal));
+  /** Reads everything again when a file that it rests on, or HEAD, is not what it was. Runs nothing. */
+  async refresh(): Promise<void> {
+    if (this.busy || (await codeSignature(this.opened)) === this.signature) return;
+    await this.reopen();
+    await this.audit(() => false);
   }
 
-  async fulfil(wish: Wish): Promise<string> {
+  async fulfil(wish: SessionWish): Promise<string> {
+    if (this.job !== null && wish.do !== 'end job') return 'a job is running: wait for it, or end it with E';
     switch (wish.do) {
-      case 'run cases':
-        if (this.job !== null) return 'a job is running already';
-        await this.audit();
-        return `${wish.names.join(', ')}: run and compared`;
+      case 'run cases': {
+        await this.audit((name) => wish.names.includes(name));
+        return `${wish.names.length === 1 ? wish.names[0] : `${wish.names.length} cases`}: ${this.ended()}`;
+      }
+      case 'exchange':
+        await this.exchange(wish.words);
+        return `${wish.words.join(' ')}: ${this.ended()}`;
       case 'end job':
         this.jobControl?.abort();
-        return 'ended';
+        return 'ending the job';
       case 'read again':
         await this.reopen();
-        await this.audit();
+        await this.audit(() => false);
         return 'read again';
       case 'record':
         return this.record(wish.name, wish.reason);
       case 'accept':
         await this.accept(wish.finding, wish.reason);
         return 'accepted in manifests/accepted.yaml; commit it to keep it';
-      case 'write file':
-        await writeWhole(this.surroundings.cwd, wish.name, wish.text);
-        return `written to ${wish.name}`;
-      case 'clipboard':
-        // OSC 52 hands the text to the terminal, which owns the clipboard, also over SSH.
-        this.surroundings.out(`\u001b]52;c;${Buffer.from(wish.text, 'utf8').toString('base64')}\u0007`);
-        return 'copied';
-      default:
-        return '';
     }
   }
 
   close(): void {
     this.jobControl?.abort();
+  }
+
+  private known(): Omit<Known, 'register'> & { register: null } {
+    return {
+      manifests: this.opened.set,
+      gathered: this.audited?.gathered ?? null,
+      audit: this.audited?.audit ?? null,
+      swaps: this.swaps,
+      register: null,
+      job: this.job,
+      running: new Map(
+        [...this.running].map(([name, one]) => [
+          name,
+          { ...one, seconds: one.state === 'running' ? (Date.now() - one.since) / 1000 : null },
+        ]),
+      ),
+    };
+  }
+
+  private ended(): string {
+    return this.jobControl?.signal.aborted === true ? 'ended before it was done' : 'run and compared';
   }
 
   private async work(says: string, task: (signal: AbortSignal) => Promise<void>): Promise<void> {
@@ -122,15 +162,20 @@ export class ScreenSession implements ScreenHost {
       clearInterval(ticking);
       this.job = null;
       this.running.clear();
+      this.settled = null;
       this.changed();
     }
   }
 
-  private async auditOnce(signal: AbortSignal): Promise<void> {
-    const audited = await auditOpened(this.opened, this.invocation, { ...this.surroundings, signal }, (event) =>
-      this.follow(event),
-    );
-    if (!signal.aborted) this.audited = audited;
+  private exchange(words: readonly string[]): Promise<void> {
+    return this.work(`swap ${words.join(' ')}`, async (signal) => {
+      const swaps = await swapModules({
+        ...runRequest(this.opened, this.invocation, { ...this.surroundings, signal }),
+        exchanges: words.map(readExchange),
+        onEvent: (event) => this.follow(event),
+      });
+      if (!signal.aborted) this.swaps = [...this.swaps, ...swaps];
+    });
   }
 
   private follow(event: AuditEvent): void {
@@ -158,23 +203,24 @@ export class ScreenSession implements ScreenHost {
     this.changed();
   }
 
+  /** Manifests that can't be read now leave what was known; the finding is told at the next look. */
   private async reopen(): Promise<void> {
     const opened = await openCode(this.invocation, this.surroundings);
-    if (opened.place !== null) this.opened = opened;
+    if (opened.place !== null && !manifestsUnreadable(opened.findings)) this.opened = opened;
+    else this.signature = await codeSignature(this.opened);
   }
 
   private async record(name: string, reason: string): Promise<string> {
-    const outcome: CaseOutcome | undefined = this.audited?.gathered.outcomes.find((one) => one.case === name);
+    const outcome = this.audited?.gathered.outcomes.find((one) => one.case === name);
     const declared = this.opened.set.cases.get(name)?.value;
     if (outcome === undefined || declared === undefined) return 'run the case first';
-    const who = writerFrom(this.surroundings.env).name;
     await recordReference({
       root: this.opened.place.root,
       manifestFolder: this.opened.place.folder,
       case: declared,
       outcome,
       reason,
-      who,
+      who: writerFrom(this.surroundings.env).name,
     });
     return `recorded a reference of ${name}; commit it to keep it`;
   }
@@ -188,38 +234,10 @@ export class ScreenSession implements ScreenHost {
       writerFrom(this.surroundings.env).name,
     );
     await this.reopen();
-    await this.audit();
+    await this.audit(() => false);
   }
 
   private changed(): void {
-    this.drawn = null;
     for (const listener of this.listeners) listener();
   }
-}
-
-function registerView(register: Register): RegisterView | null {
-  const index = register.index();
-  if (index.total === 0) return null;
-  return {
-    total: index.total,
-    find: (text, from, count) =>
-      index
-        .find({ text }, from, count)
-        .map((one) => ({ id: one.id, date: one.day, result: one.result, standing: one.standing })),
-    count: (text) => index.count({ text }),
-    entry: (id) => {
-      const entry = register.entry(id);
-      if (entry === null) return ['this entry can not be read'];
-      return [
-        `${entry.id}  ${standingText(entry)}`,
-        resultText(entry.content.result),
-        '',
-        ...plainYaml(JSON.parse(JSON.stringify(entry.content))).split('\n'),
-      ];
-    },
-    notices: register
-      .notices()
-      .filter((one) => one.lifted === null)
-      .map((one) => `${one.content.module} ${one.content.versions ?? ''}: ${one.content.title}`),
-  };
 }

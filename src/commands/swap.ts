@@ -1,10 +1,11 @@
 /** `mortise swap`: what moves when modules, values of the build or variables are exchanged. */
 import { printable } from '../model/printable.ts';
-import { deviationsText, figure } from '../report/deviation-text.ts';
+import { deviationsText } from '../report/deviation-text.ts';
+import { effectLines } from '../report/effect-text.ts';
 import { paint } from '../report/style.ts';
 import { wrap } from '../report/wrap.ts';
 import { readExchange } from '../runs/exchange.ts';
-import { type CaseSwap, type Effect, swapModules } from '../runs/swap.ts';
+import { type CaseSwap, swapModules } from '../runs/swap.ts';
 import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
 import { jsonText, openForRuns, orUsage, RUN_OPTIONS, runRequest } from './running.ts';
 import { textOptions } from './text-options.ts';
@@ -94,31 +95,4 @@ function swapsText(
       return text + remarks.map((line) => `${wrap(`  ${printable(line)}`, options.width, '    ')}\n`).join('');
     })
     .join('\n');
-}
-
-function effectLines(effect: Effect, words: readonly string[]): string[] {
-  const lines: string[] = [];
-  if (effect.stretches.length > 0) {
-    const places = effect.stretches
-      .slice(0, 5)
-      .map(({ from, to }) => (from === to ? figure(from) : `${figure(from)} to ${figure(to)}`));
-    const more = effect.stretches.length > 5 ? ` and ${effect.stretches.length - 5} more stretches` : '';
-    lines.push(`${effect.quantity} leaves its band at ${places.join(', ')}${more}`);
-  }
-  if (words.length < 2 || effect.together === 0) return lines;
-  const each = words.map((word, i) => {
-    const alone = effect.alone[i];
-    const share = effect.shares?.[i];
-    const parts = [alone === null || alone === undefined ? 'no result alone' : `alone ${figure(alone)}`];
-    if (share !== undefined) {
-      const error = effect.shareErrors?.[i];
-      parts.push(`share ${figure(share)}${error === undefined ? '' : ` ± ${figure(error)}`}`);
-    }
-    return `${word} ${parts.join(', ')}`;
-  });
-  lines.push(`${effect.quantity}, in tolerances: together ${figure(effect.together)}; ${each.join('; ')}`);
-  for (const one of effect.interactions.slice(0, 3)) {
-    lines.push(`${effect.quantity}: ${one.exchanges.join(' with ')} adds ${figure(one.tolerances)} beyond its parts`);
-  }
-  return lines;
 }

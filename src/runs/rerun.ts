@@ -37,6 +37,8 @@ export interface RerunRequest {
   readonly onEvent?: (event: RunEvent) => void;
   /** Name of a declared executor; the assembly's only one, or this machine, when absent. */
   readonly executor?: string;
+  /** True for a case of which only a result kept from before is wanted; without one it is left out. */
+  readonly onlyKept?: (name: string) => boolean;
   /** Run again what is kept already, and keep the new result in its place. */
   readonly fresh?: boolean;
   /** Absolute folder where builds and results are kept. */
@@ -51,9 +53,10 @@ export interface RerunRequest {
  * @throws {GitFailed} when the revision can't be read
  */
 export async function rerunCases(request: RerunRequest): Promise<CaseOutcome[]> {
-  const cases = casesNamed(request.manifests, request.cases ?? []);
+  const asked = casesNamed(request.manifests, request.cases ?? []);
   return withLaboratory(request, async (laboratory) => {
     const tree = await laboratory.tree(request.at ?? null);
+    const cases = asked.filter((one) => request.onlyKept?.(one.case) !== true || tree.readBefore(one) !== null);
     const say = request.onEvent ?? (() => {});
     const planned = cases.map((one) => ({
       case: one.case,

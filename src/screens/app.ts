@@ -2,6 +2,8 @@
  * The terminal UI as a state and two pure functions: `press` turns a key into a new state and things to do outside,
  * `drawApp` turns a state into a frame. Neither knows Ink, the terminal or the disk.
  */
+import { csvText } from '../model/csv.ts';
+import textWidth from '../report/text-width.ts';
 import { type Frame, fitLine, type Line, line, lineText, type Size, span, spread } from './frame.ts';
 import { type Glyphs, ASCII as PLAIN_GLYPHS } from './glyphs.ts';
 import {
@@ -17,6 +19,7 @@ import {
   type ScreenName,
   type ScreenState,
   still,
+  type Wish,
   withState,
 } from './screen.ts';
 import { SCREENS } from './screens.ts';
@@ -68,7 +71,12 @@ function everywhere(app: App, character: string): Pressed {
     case '!':
       return { app: { ...app, message: 'reading again' }, wishes: [{ do: 'read again' }] };
     case '@':
-      return { app, wishes: [{ do: 'write file', name: `mortise-${app.screen}.txt`, text: shownText(app) }] };
+      return ask(app, {
+        asks: 'Write what is shown to (.txt, .csv or .svg):',
+        answer: `mortise-${app.screen}.txt`,
+        wants: 'words',
+        wish: (name) => writing(app, name),
+      });
     case '^':
       return { app, wishes: [{ do: 'clipboard', text: shownText(app) }] };
     case 'q':
@@ -77,6 +85,23 @@ function everywhere(app: App, character: string): Pressed {
     default:
       return still(app);
   }
+}
+
+/** The suffix of the name says what is written: text, the table behind it, or the drawing. */
+function writing(app: App, name: string): Wish | { readonly says: string } {
+  const screen = SCREENS[app.screen];
+  const state = app.states[app.screen];
+  if (name.endsWith('.csv')) {
+    const table = screen.table?.(app.views, state);
+    if (table === undefined) return { says: 'this screen is no table: write it as .txt' };
+    return { do: 'write file', name, text: csvText(table) };
+  }
+  if (name.endsWith('.svg')) {
+    const text = screen.drawing?.(app.views, state) ?? null;
+    if (text === null) return { says: 'nothing is drawn here: open a deviation, a joint or a history, or write .txt' };
+    return { do: 'write file', name, text };
+  }
+  return { do: 'write file', name, text: shownText(app) };
 }
 
 /** Leaving while a job runs is asked about first. */
@@ -99,7 +124,9 @@ function answer(app: App, question: Question, key: Key): Pressed {
   const said = question.answer.trim();
   const good = question.wants === 'yes' ? said === 'yes' : said !== '';
   if (!good) return still({ ...app, question: null, message: 'nothing was done' });
-  return { app: { ...app, question: null }, wishes: [question.wish(said)] };
+  const wish = question.wish(said);
+  const answered = { ...app, question: null };
+  return 'says' in wish ? still({ ...answered, message: wish.says }) : { app: answered, wishes: [wish] };
 }
 
 function typeOn(app: App, state: ScreenState, key: Key): Pressed {
@@ -111,6 +138,8 @@ function typeOn(app: App, state: ScreenState, key: Key): Pressed {
 }
 
 function move(app: App, state: ScreenState, key: Extract<Key, { named: string }>, size: Size): Pressed {
+  const lines = SCREENS[app.screen].page?.(app.views, state, size.columns) ?? null;
+  if (lines !== null) return scroll(app, state, key, lines.length, Math.max(1, size.rows - 4));
   const field = state.depth === 0 ? 'chosen' : 'inner';
   const count = SCREENS[app.screen].count(app.views, state);
   const page = Math.max(1, size.rows - 8);
@@ -136,9 +165,31 @@ function move(app: App, state: ScreenState, key: Extract<Key, { named: string }>
   }
 }
 
+function scroll(
+  app: App,
+  state: ScreenState,
+  key: Extract<Key, { named: string }>,
+  lines: number,
+  rows: number,
+): Pressed {
+  const steps: Partial<Record<typeof key.named, number>> = {
+    up: -1,
+    down: 1,
+    'page-up': -rows,
+    'page-down': rows,
+    home: -lines,
+    end: lines,
+  };
+  const step = steps[key.named];
+  if (step === undefined) return key.named === 'back' || key.named === 'left' ? back(app, state) : still(app);
+  const to = Math.max(0, Math.min(lines - rows, state.scroll + step));
+  return still(withState(app, { scroll: to }));
+}
+
 /** One step out: of the opened thing, of what was typed, of the screen, and at home nowhere. */
 function back(app: App, state: ScreenState): Pressed {
-  if (state.depth > 0) return still(withState(app, { depth: state.depth - 1, inner: 0 }));
+  if (state.depth > 0)
+    return still(withState(app, { depth: state.depth - 1, inner: state.depth > 1 ? state.inner : 0, scroll: 0 }));
   if (state.typed !== '') return still(withState(app, { typed: '' }));
   const previous = app.trail.at(-1);
   return still(previous === undefined ? app : { ...app, screen: previous, trail: app.trail.slice(0, -1) });
@@ -155,7 +206,7 @@ export function drawApp(app: App, size: Size, glyphs: Glyphs): Frame {
   const top = [
     header(app, size, glyphs),
     ...(caution === null ? [] : [line(span(caution, 'warm'))]),
-    line(span(glyphs.rule.repeat(size.columns), 'faint')),
+    places(app, size, glyphs),
   ];
   const foot = [line(span(glyphs.rule.repeat(size.columns), 'faint')), footer(app, size)];
   const room = { columns: size.columns, rows: size.rows - top.length - foot.length };
@@ -172,7 +223,11 @@ export function shownText(app: App, columns = 120, glyphs?: Glyphs): string {
 }
 
 function bodyOf(app: App, size: Size, glyphs: Glyphs): readonly Line[] {
-  return SCREENS[app.screen].draw(app.views, app.states[app.screen], size, glyphs);
+  const state = app.states[app.screen];
+  const page = SCREENS[app.screen].page?.(app.views, state, size.columns) ?? null;
+  if (page === null) return SCREENS[app.screen].draw(app.views, state, size, glyphs);
+  const first = Math.max(0, Math.min(page.length - size.rows, state.scroll));
+  return page.slice(first, first + size.rows);
 }
 
 function header(app: App, size: Size, glyphs: Glyphs): Line {
@@ -190,10 +245,26 @@ function footer(app: App, size: Size): Line {
   if (app.message !== '') return line(span(app.message, 'strong'));
   const state = app.states[app.screen];
   if (state.typing) return line(span('find:', 'strong'), ` ${state.typed}_`);
-  const keys = [...SCREENS[app.screen].keys(app.views, state), ...EVERYWHERE.slice(0, 1), ['Q', 'leave'] as const];
-  const places = SCREEN_NAMES.map((name) => `${SCREENS[name].letter} ${name}`).join('  ');
-  const text = keys.map(([key, does]) => `${key} ${does}`).join('   ');
-  return size.columns >= 110 ? spread(line(text), line(span(places, 'faint')), size.columns) : line(text);
+  const own = SCREENS[app.screen].keys(app.views, state).map(([key, does]) => `${key} ${does}`);
+  const always = '? all keys   Q leave';
+  let text = '';
+  for (const one of own) {
+    if (textWidth(text) + textWidth(one) + always.length + 3 > size.columns) break;
+    text += `${one}   `;
+  }
+  return line(text, always);
+}
+
+/** The rule below the title holds the names of the screens, each with the letter that goes there, where the terminal is wide enough. */
+function places(app: App, size: Size, glyphs: Glyphs): Line {
+  const names = SCREEN_NAMES.map((name) => name.charAt(0).toUpperCase() + name.slice(1));
+  const rest = size.columns - names.reduce((sum, name) => sum + name.length + 3, 1);
+  if (rest < 0) return line(span(glyphs.rule.repeat(size.columns), 'faint'));
+  const parts = names.flatMap((name, index) => [
+    span(` ${name} `, SCREEN_NAMES[index] === app.screen ? 'strong' : undefined),
+    span(glyphs.rule, 'faint'),
+  ]);
+  return line(span(glyphs.rule, 'faint'), ...parts, span(glyphs.rule.repeat(rest), 'faint'));
 }
 
 function overlay(app: App): readonly Line[] {
@@ -207,8 +278,8 @@ function overlay(app: App): readonly Line[] {
     line(''),
     ...block('Everywhere', [...EVERYWHERE, ['Enter', 'open what is chosen'], ['Esc', 'one step back']]),
     line(''),
-    line(span('Go to', 'strong')),
-    line(`  ${SCREEN_NAMES.map((name) => `${SCREENS[name].letter} ${name}`).join('   ')}`),
+    line(span('Go to', 'strong'), '  by the first letter of its name'),
+    ...[SCREEN_NAMES.slice(0, 4), SCREEN_NAMES.slice(4)].map((names) => line(`  ${names.join('   ')}`)),
   ];
 }
 

@@ -1,39 +1,33 @@
 /** Home: every component with the module in it and how it stands; answers whether the campaign can start. */
-import { type Line, line, row, type Span, span, widthsOf } from './frame.ts';
-import { listLines, matching } from './list.ts';
+import { drawJoints } from '../report/html/draw-joints.ts';
+import { standaloneSvg } from '../report/html/standalone-svg.ts';
+import { cellText, type Line, line, type Span, span } from './frame.ts';
+import { matching } from './list.ts';
 import { goTo, type Screen, type ScreenState, still } from './screen.ts';
+import { tableLines } from './table-lines.ts';
 import type { AssemblyView, PartView, Views } from './views.ts';
+
+const HEADS = ['component', 'module', 'version', 'validated', 'joints', 'drift'];
 
 export const assemblyScreen: Screen = {
   letter: 'a',
   count: (views, state) => parts(views, state).length,
   draw(views, state, size, glyphs) {
     const { assembly } = views;
-    const top = [...standing(assembly), line('')];
+    const top = [...standing(views), line('')];
     const below = [
       line(''),
       ...cases(views),
       ...campaign(assembly),
       ...assembly.notices.map((notice) => line(span('notice ', 'warm'), notice)),
     ];
-    const shown = parts(views, state);
-    const head = ['component', 'module', 'version', 'validated', 'joints', 'undeclared'];
-    const cells = shown.map(partCells);
-    const widths = widthsOf([head, ...cells], size.columns - 2, [0, 1, 3]);
-    const room = Math.max(3, size.rows - top.length - below.length - 1);
-    return [
-      ...top,
-      [
-        span('  '),
-        ...row(
-          head.map((name) => span(name, 'faint')),
-          widths,
-        ),
-      ],
-      ...listLines(shown.length, state.chosen, room, glyphs, (index) => row(cells[index]!, widths)),
-      ...below,
-    ];
+    const room = Math.max(4, size.rows - top.length - below.length);
+    const cells = parts(views, state).map(partCells);
+    const place = { columns: size.columns, room };
+    return [...top, ...tableLines(HEADS, cells, state.chosen, place, [3, 1, 0], glyphs), ...below];
   },
+  table: (views, state) => [HEADS, ...parts(views, state).map((part) => partCells(part).map(cellText))],
+  drawing: (views) => standaloneSvg(drawJoints(jointDrawing(views))),
   keys: () => [
     ['Enter', 'history of the module'],
     ['J', 'its joints'],
@@ -55,24 +49,43 @@ function parts(views: Views, state: ScreenState): readonly PartView[] {
   return matching(views.assembly.parts, state.typed, (part) => `${part.component} ${part.module}`);
 }
 
-function standing(view: AssemblyView): Line[] {
+function standing({ assembly: view, cases: all }: Views): Line[] {
   const changed = view.changed.length === 0 ? 'work tree clean' : `${view.changed.length} files changed since`;
-  const question = 'Can the campaign start?  ';
-  const answer =
-    view.outcome === null
-      ? span('not audited yet', 'warm')
-      : view.outcome === 'held'
-        ? span('No: held', 'alarm')
-        : span(
-            view.outcome === 'cleared' ? 'Yes: cleared' : 'Yes, with cautions',
-            view.outcome === 'cleared' ? 'good' : 'warm',
-          );
+  const asOf = view.asOf === null ? '' : `  as of ${view.asOf}, being read again`;
+  const notRun = all.filter((one) => one.state === 'not run').length;
   return [
-    line(`revision ${view.revision}  ${changed}`),
-    line(question, answer),
+    line(`revision ${view.revision}  ${changed}`, span(asOf, 'faint')),
+    line('Can the campaign start?  ', answer(view.outcome, notRun)),
     ...view.why.slice(0, 3).map((why) => line(`  - ${why}`)),
     ...(view.why.length > 3 ? [line(`  and ${view.why.length - 3} more, on the findings screen`)] : []),
   ];
+}
+
+function answer(outcome: AssemblyView['outcome'], notRun: number): Span {
+  if (outcome === null) return span('not audited yet', 'warm');
+  if (outcome === 'held') return span('No: held', 'alarm');
+  if (notRun > 0)
+    return span(`not known: ${notRun} ${notRun === 1 ? 'case is' : 'cases are'} not run (C, then A)`, 'warm');
+  return outcome === 'cleared' ? span('Yes: cleared', 'good') : span('Yes, with cautions', 'warm');
+}
+
+/** The joints between the modules of the assembly, for the drawing of the report. */
+export function jointDrawing({
+  assembly,
+  joints,
+}: Pick<Views, 'assembly' | 'joints'>): Parameters<typeof drawJoints>[0] {
+  const states = { fits: 'fits', adapter: 'fits through an adapter', unfit: 'does not fit' } as const;
+  return {
+    draw: 'joints',
+    title: `Joints of ${assembly.title}`,
+    modules: assembly.parts.map(({ module, component }) => ({ module, component })),
+    joints: joints.map((one) => ({
+      from: one.expecting.module,
+      to: one.offering.module,
+      contract: one.contract,
+      state: states[one.seam],
+    })),
+  };
 }
 
 function partCells(part: PartView): (string | Span)[] {

@@ -1,10 +1,16 @@
 /** Cases: progress while they run, results by quantity; start, end, run the failed again, record a reference. */
-import { type Line, line, row, type Size, type Span, span, widthsOf } from './frame.ts';
+
+import { quantityText } from './deviation-screen.ts';
+import { cellText, type Line, line, type Size, type Span, span } from './frame.ts';
 import type { Glyphs } from './glyphs.ts';
-import { listLines, matching } from './list.ts';
+import { matching } from './list.ts';
 import { tolerancesText } from './numbers.ts';
 import { type App, ask, goTo, type Pressed, progressBar, type Screen, type ScreenState, still } from './screen.ts';
+import { tableLines } from './table-lines.ts';
 import type { CaseView, Views } from './views.ts';
+
+const LIST_HEADS = ['case', 'state', 'time', 'result'];
+const QUANTITY_HEADS = ['quantity', 'class', 'tolerances', ''];
 
 export const casesScreen: Screen = {
   letter: 'c',
@@ -15,34 +21,36 @@ export const casesScreen: Screen = {
     const one = shown[state.chosen];
     if (shown.length === 0) return [line('No case is declared. A case is a file under manifests/cases/.')];
     if (state.depth > 0 && one !== undefined) return opened(one, state, size, glyphs);
-    const head = ['case', 'state', 'time', 'result'];
     const cells = shown.map((each) => caseCells(each, glyphs));
-    const widths = widthsOf([head, ...cells], size.columns - 2, [0, 3]);
-    return [
-      [
-        span('  '),
-        ...row(
-          head.map((name) => span(name, 'faint')),
-          widths,
-        ),
-      ],
-      ...listLines(shown.length, state.chosen, size.rows - 1, glyphs, (index) => row(cells[index]!, widths)),
-    ];
+    return tableLines(LIST_HEADS, cells, state.chosen, { columns: size.columns, room: size.rows }, [0, 3], glyphs);
+  },
+  table(views, state) {
+    const shown = cases(views, state);
+    const one = shown[state.chosen];
+    return state.depth > 0 && one !== undefined
+      ? [QUANTITY_HEADS, ...one.quantities.map((each) => quantityCells(each).map(cellText))]
+      : [
+          LIST_HEADS,
+          ...shown.map((each) => [each.name, each.state, String(each.seconds ?? ''), each.worst ?? each.why]),
+        ];
   },
   keys: (views) => [
-    ['B', 'begin this case'],
-    ['T', 'try the failed again'],
+    ['B', 'begin this'],
+    ['A', 'begin all'],
+    ['T', 'failed again'],
     ...(views.assembly.job === null ? [] : [['E', 'end the job'] as const]),
-    ['W', 'write a reference'],
-    ['Enter', 'its quantities'],
+    ['W', 'new reference'],
+    ['Enter', 'quantities'],
   ],
   press(app, state, key) {
     const one = cases(app.views, state)[state.chosen];
     if (one === undefined) return undefined;
     if ('character' in key) return pressLetter(app, one, key.character.toLowerCase());
     if ((key.named === 'enter' || key.named === 'right') && state.depth === 1) {
-      const quantity = one.quantities[state.inner]?.name;
-      const index = app.views.deviations.findIndex((each) => each.case === one.name && each.quantity === quantity);
+      const quantity = one.quantities[state.inner];
+      const index = app.views.deviations.findIndex(
+        (each) => each.case === one.name && each.quantity === quantity?.name && each.of === quantity.of,
+      );
       return still(
         index < 0
           ? { ...app, message: 'nothing to plot for this quantity' }
@@ -57,6 +65,8 @@ function pressLetter(app: App, one: CaseView, letter: string): Pressed | undefin
   switch (letter) {
     case 'b':
       return { app, wishes: [{ do: 'run cases', names: [one.name] }] };
+    case 'a':
+      return { app, wishes: [{ do: 'run cases', names: app.views.cases.map((each) => each.name) }] };
     case 't': {
       const failed = app.views.cases.filter(
         (each) =>
@@ -102,24 +112,21 @@ function timeText(one: CaseView, glyphs: Glyphs): string {
 }
 
 function opened(one: CaseView, state: ScreenState, size: Size, glyphs: Glyphs): Line[] {
-  const head = ['quantity', 'class', 'tolerances', ''];
-  const cells = one.quantities.map((each) => {
-    const bad = each.class === 'beyond tolerance' || each.class === 'not comparable';
-    return [each.name, span(each.class, bad ? 'alarm' : undefined), tolerancesText(each.tolerances), each.says];
-  });
-  const widths = widthsOf([head, ...cells], size.columns - 2, [0, 3]);
+  const cells = one.quantities.map(quantityCells);
+  const place = { columns: size.columns, room: Math.max(4, size.rows - 2) };
   return [
     line(span(one.name, 'strong'), `  ${one.title}`),
-    [
-      span('  '),
-      ...row(
-        head.map((name) => span(name, 'faint')),
-        widths,
-      ),
-    ],
-    ...listLines(one.quantities.length, state.inner, Math.max(3, size.rows - 3), glyphs, (index) =>
-      row(cells[index]!, widths),
-    ),
+    ...tableLines(QUANTITY_HEADS, cells, state.inner, place, [3, 0], glyphs),
     ...(one.why === '' ? [] : [line(one.why)]),
+  ];
+}
+
+function quantityCells(each: CaseView['quantities'][number]): (string | Span)[] {
+  const bad = each.class === 'beyond tolerance' || each.class === 'not comparable';
+  return [
+    quantityText({ quantity: each.name, of: each.of }),
+    span(each.class, bad ? 'alarm' : undefined),
+    tolerancesText(each.tolerances),
+    each.says,
   ];
 }

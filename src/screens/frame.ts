@@ -53,6 +53,10 @@ export function spread(left: Line, right: Line, columns: number): Line {
   return [...fitLine(left, columns - rightWidth), ...fitLine(right, rightWidth)];
 }
 
+export function cellText(cell: string | Span): string {
+  return typeof cell === 'string' ? cell : cell.text;
+}
+
 const GAP = '  ';
 
 /** A row of columns, each cut or padded to its width, with a gap between. */
@@ -73,7 +77,7 @@ export function widthsOf(
   const widths: number[] = [];
   for (const cells of rows) {
     cells.forEach((cell, index) => {
-      widths[index] = Math.max(widths[index] ?? 0, textWidth(typeof cell === 'string' ? cell : cell.text));
+      widths[index] = Math.max(widths[index] ?? 0, textWidth(cellText(cell)));
     });
   }
   let over = widths.reduce((sum, width) => sum + width + GAP.length, -GAP.length) - columns;

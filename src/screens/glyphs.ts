@@ -11,6 +11,10 @@ export interface Glyphs {
   readonly full: string;
   readonly empty: string;
   readonly point: string;
+  /** A step on a time line whose change was not declared. */
+  readonly undeclared: string;
+  /** Below the chosen step of a time line. */
+  readonly here: string;
   readonly steps: readonly string[];
   readonly worst: string;
   readonly braille: boolean;
@@ -30,6 +34,8 @@ export const UNICODE: Glyphs = {
   full: '▰',
   empty: '▱',
   point: '●',
+  undeclared: '╳',
+  here: '┴',
   steps: ['▁', '▂', '▃', '▄', '▅', '▆', '▇', '█'],
   worst: '▼',
   braille: true,
@@ -49,6 +55,8 @@ export const ASCII: Glyphs = {
   full: '#',
   empty: '.',
   point: 'o',
+  undeclared: 'X',
+  here: '^',
   steps: ['.', '.', ':', ':', '|', '|', '#', '#'],
   worst: 'v',
   braille: false,

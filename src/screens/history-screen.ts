@@ -1,8 +1,12 @@
 /** A module through time: its commits and versions on a line, what changed at each, the bump asked against the bump declared. */
-import { type Line, line, row, type Size, span, widthsOf } from './frame.ts';
+import { drawVersions } from '../report/html/draw-versions.ts';
+import { standaloneSvg } from '../report/html/standalone-svg.ts';
+import { cellText, type Line, line, type Size, type Span, span } from './frame.ts';
 import type { Glyphs } from './glyphs.ts';
-import { listLines, matching } from './list.ts';
+import { matching } from './list.ts';
 import { type Screen, type ScreenState, still, withState } from './screen.ts';
+import { tableLines } from './table-lines.ts';
+import { timeLines } from './time-lines.ts';
 import type { HistoryView, StepView, Views } from './views.ts';
 
 export const historyScreen: Screen = {
@@ -12,18 +16,28 @@ export const historyScreen: Screen = {
   draw(views, state, size, glyphs) {
     const shown = histories(views, state);
     const history = shown[state.chosen];
-    if (state.depth > 0 && history !== undefined)
-      return state.depth === 1 ? steps(history, state, size, glyphs) : step(history, state);
+    if (state.depth > 0 && history !== undefined) return steps(history, state, size, glyphs);
     if (shown.length === 0)
       return [line('No history was read. Run "mortise audit" or "mortise drift" in a git repository.')];
-    return listLines(shown.length, state.chosen, size.rows, glyphs, (index) => {
-      const one = shown[index]!;
-      const undeclared = one.steps.filter((each) => each.undeclared).length;
-      return line(
-        `${one.module.padEnd(24)} ${String(one.steps.length).padStart(4)} steps  `,
-        span(undeclared === 0 ? 'all declared' : `${undeclared} undeclared`, undeclared === 0 ? undefined : 'alarm'),
-      );
-    });
+    const cells = shown.map((one) => listCells(one));
+    return tableLines(LIST_HEADS, cells, state.chosen, { columns: size.columns, room: size.rows }, [5, 0], glyphs);
+  },
+  page(views, state) {
+    const history = histories(views, state)[state.chosen];
+    return state.depth === 2 && history !== undefined ? step(history, state) : null;
+  },
+  table(views, state) {
+    const shown = histories(views, state);
+    const history = shown[state.chosen];
+    return state.depth > 0 && history !== undefined
+      ? [STEP_HEADS, ...history.steps.map((one) => stepCells(one).map(cellText))]
+      : [LIST_HEADS, ...shown.map((one) => listCells(one).map(cellText))];
+  },
+  drawing(views, state) {
+    const history = histories(views, state)[state.chosen];
+    if (history === undefined || state.depth === 0) return null;
+    const steps = history.steps.map((one) => ({ ...one, says: one.changes[0]?.says ?? one.subject }));
+    return standaloneSvg(drawVersions({ draw: 'versions', title: history.module, steps }));
   },
   keys: (_, state) =>
     state.depth === 0
@@ -36,8 +50,7 @@ export const historyScreen: Screen = {
         : [['Esc', 'all steps']],
   press(app, state, key) {
     if ('named' in key && (key.named === 'enter' || key.named === 'right') && state.depth === 1)
-      return still(withState(app, { depth: 2 }));
-    if ('named' in key && key.named === 'back' && state.depth === 2) return still(withState(app, { depth: 1 }));
+      return still(withState(app, { depth: 2, scroll: 0 }));
     return undefined;
   },
 };
@@ -46,10 +59,25 @@ function histories(views: Views, state: ScreenState): readonly HistoryView[] {
   return matching(views.histories, state.typed, (one) => one.module);
 }
 
-function steps(history: HistoryView, state: ScreenState, size: Size, glyphs: Glyphs): Line[] {
-  const lineage = history.lineage.slice(0, 3).map((text) => line(span(text, 'faint')));
-  const head = ['version', 'date', 'commit', 'subject', 'asks', 'declared', ''];
-  const cells = history.steps.map((one) => [
+const LIST_HEADS = ['module', 'version', 'steps', 'undeclared', 'last step', ''];
+
+function listCells(one: HistoryView): (string | Span)[] {
+  const undeclared = one.steps.filter((each) => each.undeclared).length;
+  const last = one.steps.at(-1);
+  return [
+    one.module,
+    one.steps.findLast((each) => each.version !== null)?.version ?? '',
+    String(one.steps.length),
+    undeclared === 0 ? span('0') : span(String(undeclared), 'alarm'),
+    last?.date ?? '',
+    last?.subject ?? '',
+  ];
+}
+
+const STEP_HEADS = ['version', 'date', 'commit', 'subject', 'asks', 'declared', ''];
+
+function stepCells(one: StepView): (string | Span)[] {
+  return [
     one.version ?? '',
     one.date,
     one.commit.slice(0, 9),
@@ -57,20 +85,19 @@ function steps(history: HistoryView, state: ScreenState, size: Size, glyphs: Gly
     one.asked,
     one.declared,
     one.undeclared ? span('undeclared', 'alarm') : span(''),
-  ]);
-  const widths = widthsOf([head, ...cells], size.columns - 2, [3]);
+  ];
+}
+
+function steps(history: HistoryView, state: ScreenState, size: Size, glyphs: Glyphs): Line[] {
+  const lineage = history.lineage.slice(0, 3).map((text) => line(span(text, 'faint')));
+  const through = timeLines(history.steps, state.inner, size.columns, glyphs);
+  const room = Math.max(4, size.rows - 2 - through.length - lineage.length);
+  const cells = history.steps.map(stepCells);
   return [
     line(span(history.module, 'strong'), `  ${history.steps.length} steps`),
-    [
-      span('  '),
-      ...row(
-        head.map((name) => span(name, 'faint')),
-        widths,
-      ),
-    ],
-    ...listLines(history.steps.length, state.inner, Math.max(3, size.rows - 2 - lineage.length), glyphs, (index) =>
-      row(cells[index]!, widths),
-    ),
+    ...through,
+    line(''),
+    ...tableLines(STEP_HEADS, cells, state.inner, { columns: size.columns, room }, [3], glyphs),
     ...lineage,
   ];
 }

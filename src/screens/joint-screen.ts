@@ -4,8 +4,12 @@
  */
 
 import { shortNumber } from '../model/short-number.ts';
+import { drawJoints } from '../report/html/draw-joints.ts';
+import { standaloneSvg } from '../report/html/standalone-svg.ts';
+import textWidth, { cutToWidth } from '../report/text-width.ts';
+import { jointDrawing } from './assembly-screen.ts';
 import { axisOf, bar } from './axis.ts';
-import { fitLine, type Line, line, type Size, span } from './frame.ts';
+import { fitLine, type Line, line, lineText, type Size, span } from './frame.ts';
 import type { Glyphs } from './glyphs.ts';
 import { listLines, matching } from './list.ts';
 
@@ -24,16 +28,35 @@ export const jointScreen: Screen = {
     const joint = shown[state.chosen];
     if (state.depth > 0 && joint !== undefined) return opened(joint, state, size, glyphs);
     if (shown.length === 0) return [line('No joint: no module here expects what another offers.')];
+    const words = Math.max(...shown.map((one) => one.contract.length)) + 18;
+    const half = Math.max(8, Math.floor((size.columns - 2 - SEAM_WIDTH - words) / 2));
     return listLines(shown.length, state.chosen, size.rows, glyphs, (index) => {
       const one = shown[index]!;
-      return line(
-        `${one.expecting.module} `,
-        span(glyphs.seam[one.seam], SEAM_STYLES[one.seam]),
-        ` ${one.offering.module}  ${one.contract}  `,
+      const left = cutToWidth(one.expecting.module, half);
+      return [
+        span(' '.repeat(half - textWidth(left))),
+        ...halves([span(left)], seamOf(one.seam, glyphs), [span(one.offering.module)], textWidth(left), half),
+        span(`  ${one.contract}  `, 'faint'),
         span(SEAM_WORDS[one.seam], SEAM_STYLES[one.seam]),
-      );
+      ];
     });
   },
+  table: (views, state) => [
+    ['expects', 'seam', 'offers', 'contract', 'quantity', 'says'],
+    ...joints(views, state)
+      .filter((_, index) => state.depth === 0 || index === state.chosen)
+      .flatMap((one) =>
+        one.rows.map((each) => [
+          one.expecting.module,
+          SEAM_WORDS[each.seam],
+          one.offering.module,
+          one.contract,
+          each.quantity,
+          each.says,
+        ]),
+      ),
+  ],
+  drawing: (views) => standaloneSvg(drawJoints(jointDrawing(views))),
   keys: (_, state) =>
     state.depth === 0
       ? [['Enter', 'open the joint']]
@@ -59,14 +82,12 @@ function joints(views: Views, state: ScreenState): readonly JointView[] {
 }
 
 function opened(joint: JointView, state: ScreenState, size: Size, glyphs: Glyphs): Line[] {
-  const seam = 7;
-  const half = Math.floor((size.columns - 2 - seam) / 2);
+  const half = Math.floor((size.columns - 2 - SEAM_WIDTH) / 2);
   const head = halves(
     [span(`${joint.expecting.module} ${joint.expecting.version} expects`, 'strong')],
     [],
     [span(`${joint.offering.module} ${joint.offering.version} offers`, 'strong')],
     half,
-    seam,
   );
   const chosen = joint.rows[state.inner];
   const detail = chosen === undefined ? [] : rowDetail(chosen, size, glyphs);
@@ -78,10 +99,9 @@ function opened(joint: JointView, state: ScreenState, size: Size, glyphs: Glyphs
       const one = joint.rows[index]!;
       return halves(
         [span(`${one.quantity}  ${halfText(one.left)}`)],
-        [span(glyphs.seam[one.seam], SEAM_STYLES[one.seam])],
+        seamOf(one.seam, glyphs),
         [span(halfText(one.right), SEAM_STYLES[one.seam])],
         half,
-        seam,
       );
     }),
     line(''),
@@ -89,17 +109,22 @@ function opened(joint: JointView, state: ScreenState, size: Size, glyphs: Glyphs
   ];
 }
 
-/** Left half set to the right against the seam, right half to the left, so that equal halves meet. */
-function halves(left: Line, middle: Line, right: Line, half: number, seam: number): Line {
-  const text = fitLine(left, half);
-  const sign = middle.map((one) => one.text).join('');
-  const before = Math.max(0, Math.floor((seam - sign.length) / 2));
+const SEAM_WIDTH = 7;
+
+function seamOf(seam: Seam, glyphs: Glyphs): Line {
+  return [span(glyphs.seam[seam], SEAM_STYLES[seam])];
+}
+
+/** The left half ends at the seam and the right half begins there, each cut to its width, so that the seams stand in one column. */
+function halves(left: Line, middle: Line, right: Line, leftWidth: number, rightWidth = leftWidth): Line {
+  const sign = lineText(middle).length;
+  const before = Math.max(0, Math.floor((SEAM_WIDTH - sign) / 2));
   return [
-    ...text,
+    ...fitLine(left, leftWidth),
     span(' '.repeat(before)),
     ...middle,
-    span(' '.repeat(Math.max(0, seam - before - sign.length))),
-    ...fitLine(right, half),
+    span(' '.repeat(Math.max(0, SEAM_WIDTH - before - sign))),
+    ...fitLine(right, rightWidth),
   ];
 }
 

@@ -1,7 +1,7 @@
 /** Published results and the module versions that made them: found as you type. */
 import { type Line, line, row, span } from './frame.ts';
 import { firstShown } from './list.ts';
-import { type Screen, still, withState } from './screen.ts';
+import type { Screen } from './screen.ts';
 
 export const registerScreen: Screen = {
   letter: 'r',
@@ -17,10 +17,6 @@ export const registerScreen: Screen = {
     const rows = Math.max(1, size.rows - head.length);
     const first = firstShown(state.chosen, count, rows);
     const shown = register.find(state.typed, first, rows);
-    if (state.depth > 0) {
-      const chosen = shown[state.chosen - first];
-      return chosen === undefined ? head : register.entry(chosen.id).map((text) => line(text));
-    }
     const widths = [12, Math.max(16, size.columns - 44), 28];
     return [
       ...head,
@@ -32,6 +28,11 @@ export const registerScreen: Screen = {
       ),
     ];
   },
+  page({ register }, state) {
+    if (state.depth === 0 || register === null) return null;
+    const chosen = register.find(state.typed, state.chosen, 1)[0];
+    return chosen === undefined ? null : register.entry(chosen.id).map((text) => line(text));
+  },
   keys: (_, state) =>
     state.depth === 0
       ? [
@@ -39,9 +40,4 @@ export const registerScreen: Screen = {
           ['Enter', 'open'],
         ]
       : [['Esc', 'all results']],
-  press(app, state, key) {
-    if (state.depth > 0 && 'named' in key && (key.named === 'up' || key.named === 'down'))
-      return still(withState(app, {}));
-    return undefined;
-  },
 };

@@ -25,6 +25,8 @@ export interface ScreenState {
   readonly depth: number;
   /** Row chosen inside the opened thing. */
   readonly inner: number;
+  /** First line in sight of an opened page of text. */
+  readonly scroll: number;
   /** Text typed to find something. */
   readonly typed: string;
   readonly typing: boolean;
@@ -32,17 +34,21 @@ export interface ScreenState {
   readonly from: number;
   readonly to: number;
   readonly logValue: boolean;
+  /** Names of rows taken together. */
+  readonly taken: readonly string[];
 }
 
 export const FRESH: ScreenState = {
   chosen: 0,
   depth: 0,
   inner: 0,
+  scroll: 0,
   typed: '',
   typing: false,
   from: 0,
   to: 1,
   logValue: false,
+  taken: [],
 };
 
 /** Something that the screens ask of the program around them. */
@@ -51,6 +57,7 @@ export type Wish =
   | { readonly do: 'edit'; readonly finding: Finding }
   | { readonly do: 'accept'; readonly finding: Finding; readonly reason: string }
   | { readonly do: 'run cases'; readonly names: readonly string[] }
+  | { readonly do: 'exchange'; readonly words: readonly string[] }
   | { readonly do: 'end job' }
   | { readonly do: 'record'; readonly name: string; readonly reason: string }
   | { readonly do: 'write file'; readonly name: string; readonly text: string }
@@ -63,7 +70,8 @@ export interface Question {
   readonly answer: string;
   /** `words`: any text; `yes`: only the word yes goes on. */
   readonly wants: 'words' | 'yes';
-  readonly wish: (answer: string) => Wish;
+  /** What is wished then, or why that can't be. */
+  readonly wish: (answer: string) => Wish | { readonly says: string };
 }
 
 export interface App {
@@ -75,6 +83,11 @@ export interface App {
   readonly question: Question | null;
   /** A line about what was just done or could not be. */
   readonly message: string;
+}
+
+export interface ScreenOptions {
+  readonly glyphs: Glyphs;
+  readonly colour: boolean;
 }
 
 /** A key as the terminal names it: a printable character, or one of these. */
@@ -103,6 +116,12 @@ export interface Screen {
   draw(views: Views, state: ScreenState, size: Size, glyphs: Glyphs): readonly Line[];
   /** Its own keys with what each does, for the foot and the overlay. */
   keys(views: Views, state: ScreenState): readonly (readonly [string, string])[];
+  /** The whole of what is opened when it is a page of text, which the app scrolls; null when it is not. */
+  page?(views: Views, state: ScreenState, columns: number): readonly Line[] | null;
+  /** What is shown as a table for a CSV file, the heads first. */
+  table?(views: Views, state: ScreenState): readonly (readonly string[])[];
+  /** What is opened as an SVG drawing; null when it is nothing that can be drawn. */
+  drawing?(views: Views, state: ScreenState): string | null;
   /** Undefined when the key means nothing here. */
   press?(app: App, state: ScreenState, key: Key): Pressed | undefined;
 }

@@ -12,7 +12,9 @@ import { groupBy } from '../model/group.ts';
 import type { Domain, ManifestSet, Range } from '../model/manifest.ts';
 import { printable } from '../model/printable.ts';
 import { demandText, validatedText } from '../report/audit-report.ts';
+import { effectLines } from '../report/effect-text.ts';
 import type { CaseOutcome } from '../runs/case-outcome.ts';
+import type { CaseSwap, SwapRun } from '../runs/swap.ts';
 import type {
   AssemblyView,
   CaseView,
@@ -23,6 +25,8 @@ import type {
   PartView,
   RegisterView,
   Seam,
+  SwapCell,
+  SwapView,
   Views,
 } from './views.ts';
 
@@ -31,6 +35,8 @@ export interface Known {
   /** What was audited; null before the first audit has ended. */
   readonly gathered: GatheredCode | null;
   readonly audit: Audit | null;
+  /** Swaps made since the screens were opened. */
+  readonly swaps: readonly CaseSwap[];
   readonly register: RegisterView | null;
   readonly job: AssemblyView['job'];
   /** Cases that are running or waiting now. */
@@ -41,16 +47,20 @@ export interface Known {
 }
 
 export function viewsOf(known: Known): Views {
-  const { gathered, audit } = known;
+  return { ...settledViews(known), ...movingViews(known), register: known.register };
+}
+
+export type SettledViews = Pick<Views, 'joints' | 'histories' | 'deviations' | 'swap' | 'findings'>;
+export type MovingViews = Pick<Views, 'assembly' | 'cases'>;
+
+/** What an audit or a swap changes, and nothing while one is on its way. */
+export function settledViews({ manifests, gathered, audit, swaps }: Known): SettledViews {
   const outcomes = gathered?.outcomes ?? [];
   return {
-    assembly: assemblyView(known),
     joints: (gathered?.joints ?? []).filter((one) => one.offering !== null).map((one) => jointView(one, outcomes)),
     histories: historyViews(gathered?.steps ?? []),
-    cases: caseViews(known),
     deviations: outcomes.flatMap((one) => one.deviations.map(deviationView)),
-    swap: null,
-    register: known.register,
+    swap: swapView(manifests, swaps),
     findings:
       audit === null
         ? []
@@ -58,6 +68,56 @@ export function viewsOf(known: Known): Views {
             ...audit.open.map((finding) => ({ finding, accepted: null })),
             ...audit.accepted.map(({ finding, acceptance }) => ({ finding, accepted: acceptance.reason })),
           ],
+  };
+}
+
+/** What follows a job as it runs. */
+export function movingViews(known: Known): MovingViews {
+  return { assembly: assemblyView(known), cases: caseViews(known) };
+}
+
+/** Exchanges that were run come first; then every module that could stand in for a plugged one, alone. */
+function swapView(manifests: ManifestSet, swaps: readonly CaseSwap[]): SwapView {
+  const cases = [...manifests.cases.keys()];
+  const run = new Map<string, Map<string, SwapRun>>();
+  const effects = new Map<string, string[]>();
+  for (const swap of swaps) {
+    for (const one of swap.runs) {
+      const exchange = one.exchanges.join(' ');
+      run.set(exchange, (run.get(exchange) ?? new Map()).set(swap.case, one));
+    }
+    const together = swap.runs.at(-1)?.exchanges ?? [];
+    const told = swap.effects.flatMap((effect) => effectLines(effect, together)).map((text) => `${swap.case}: ${text}`);
+    if (told.length > 0) effects.set(together.join(' '), [...(effects.get(together.join(' ')) ?? []), ...told]);
+  }
+  const others = exchangesOf(manifests).filter((one) => !run.has(one));
+  return {
+    cases,
+    rows: [...run.keys(), ...others].map((exchange) => ({
+      exchange,
+      cells: cases.map((name) => swapCell(run.get(exchange)?.get(name))),
+      effects: (effects.get(exchange) ?? []).map(printable),
+    })),
+  };
+}
+
+function exchangesOf(manifests: ManifestSet): string[] {
+  const plugged = Object.entries(manifests.assembly?.value.plugged ?? {});
+  return plugged.flatMap(([component, module]) =>
+    [...manifests.modules.values()]
+      .filter(({ value }) => value.component === component && value.module !== module)
+      .map(({ value }) => `${component}=${value.module}`),
+  );
+}
+
+function swapCell(run: SwapRun | undefined): SwapCell {
+  if (run === undefined) return { class: null, tolerances: null, why: '', deviations: [] };
+  const known = run.deviations.flatMap((one) => (one.tolerances === null ? [] : [one.tolerances]));
+  return {
+    class: run.class,
+    tolerances: known.length === 0 ? null : Math.max(...known),
+    why: run.class === null ? printable(run.why === '' ? run.state : run.why) : '',
+    deviations: run.deviations.map(deviationView),
   };
 }
 
@@ -84,6 +144,7 @@ function assemblyView(known: Known): AssemblyView {
           },
     notices: known.register?.notices ?? [],
     caution: assembly?.consequence === 'safety-related' ? SAFETY_CAUTION : null,
+    asOf: null,
     job: known.job,
   };
 }
@@ -184,6 +245,7 @@ function caseViews({ manifests, gathered, running }: Known): CaseView[] {
       why: printable(outcome?.why ?? ''),
       quantities: (outcome?.deviations ?? []).map((one) => ({
         name: one.quantity,
+        of: one.of,
         class: one.class,
         tolerances: one.tolerances,
         says: whereText(one),

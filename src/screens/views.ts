@@ -1,5 +1,5 @@
 /** What the screens show, as plain data: made from an audit, a register and a running job by view-models.ts, drawn by the screen files. */
-import type { DeviationClass, Measures, Profile, Tolerance } from '../model/deviation.ts';
+import type { Deviation, DeviationClass, Profile } from '../model/deviation.ts';
 import type { Finding } from '../model/finding.ts';
 
 export type Outcome = 'cleared' | 'cleared with cautions' | 'held';
@@ -29,6 +29,8 @@ export interface AssemblyView {
   readonly notices: readonly string[];
   /** Shown on every screen of a safety-related assembly. */
   readonly caution: string | null;
+  /** When this was known, where it is what an earlier look found and is being read again; null when it is fresh. */
+  readonly asOf: string | null;
   /** A job in progress: what it does and how far it is, 0 to 1. */
   readonly job: { readonly says: string; readonly done: number } | null;
 }
@@ -113,31 +115,40 @@ export interface CaseView {
   readonly why: string;
   readonly quantities: readonly {
     readonly name: string;
+    readonly of: Deviation['of'];
     readonly class: DeviationClass;
     readonly tolerances: number | null;
     readonly says: string;
   }[];
 }
 
-export interface DeviationView {
-  readonly case: string;
-  readonly quantity: string;
-  readonly unit: string;
-  readonly class: DeviationClass;
-  readonly tolerances: number | null;
-  readonly tolerance: Tolerance | null;
-  readonly measures: Measures | null;
+export interface DeviationView extends Omit<Deviation, 'profile' | 'why'> {
   readonly profile: Profile | null;
   readonly why: string;
 }
 
 export interface SwapView {
   readonly cases: readonly string[];
-  readonly rows: readonly {
-    readonly exchange: string;
-    readonly cells: readonly { readonly class: DeviationClass | null; readonly tolerances: number | null }[];
-  }[];
+  /** Exchanges that were run, and single ones that could be. */
+  readonly rows: readonly SwapRow[];
+}
+
+export interface SwapRow {
+  /** As on the command line, several with a blank between. */
+  readonly exchange: string;
+  /** In the order of the cases. */
+  readonly cells: readonly SwapCell[];
+  /** What each exchange of several does, and what they do together. */
   readonly effects: readonly string[];
+}
+
+export interface SwapCell {
+  /** Null when it was not run, or has no result. */
+  readonly class: DeviationClass | null;
+  readonly tolerances: number | null;
+  /** Why there is no result; empty when there is, or when it was not run. */
+  readonly why: string;
+  readonly deviations: readonly DeviationView[];
 }
 
 export interface RegisterView {

@@ -6,6 +6,7 @@ const reference = points.map((x) => 100 + 9000 / (1 + Math.exp((x - 0.5) * 40)))
 
 export const deviation: DeviationView = {
   case: 'cloud-shock',
+  of: 'field',
   quantity: 'temperature',
   unit: 'K',
   class: 'beyond tolerance',
@@ -43,6 +44,7 @@ export const sampleViews: Views = {
     revision: '3f2a91c0',
     changed: ['src/eos/ionising.ts'],
     outcome: 'held',
+    asOf: null,
     why: [
       'eos-ionising offers energy-zero ionised where hydro expects neutral-atom',
       'temperature of cloud-shock is 37 tolerances from its reference',
@@ -180,8 +182,8 @@ export const sampleViews: Views = {
       worst: 'beyond tolerance',
       why: '',
       quantities: [
-        { name: 'temperature', class: 'beyond tolerance', tolerances: 37.2, says: 'worst at 5e17 cm' },
-        { name: 'density', class: 'within tolerance', tolerances: 0.4, says: '' },
+        { name: 'temperature', of: 'field', class: 'beyond tolerance', tolerances: 37.2, says: 'worst at 5e17 cm' },
+        { name: 'density', of: 'field', class: 'within tolerance', tolerances: 0.4, says: '' },
       ],
     },
     {
@@ -200,11 +202,16 @@ export const sampleViews: Views = {
     cases: ['cloud-shock'],
     rows: [
       {
-        exchange: 'equation-of-state = eos-table',
-        cells: [{ class: 'within tolerance', tolerances: 0.2 }],
+        exchange: 'equation-of-state=eos-table',
+        cells: [{ class: 'beyond tolerance', tolerances: 37.2, why: '', deviations: [deviation] }],
+        effects: ['cloud-shock: temperature leaves its band at 5e17'],
+      },
+      {
+        exchange: 'equation-of-state=eos-perfect',
+        cells: [{ class: null, tolerances: null, why: '', deviations: [] }],
+        effects: [],
       },
     ],
-    effects: ['equation-of-state alone: 0.2 tolerances'],
   },
   register: null,
   findings: [

@@ -1,4 +1,5 @@
 /** Entries as a table, a row each. @source RFC 4180 */
+import { csvText } from '../../model/csv.ts';
 import type { StandingEntry } from '../chain.ts';
 import { dayOf, standingText } from '../find.ts';
 
@@ -35,11 +36,5 @@ export function csv(entries: readonly StandingEntry[]): string {
       notes ?? '',
     ];
   });
-  return [CSV_HEAD, ...rows].map((row) => `${row.map(field).join(',')}\r\n`).join('');
-}
-
-/** Quoted where RFC 4180 asks for it; a leading sign that a spreadsheet would run as a formula gets a quote mark before it. */
-function field(value: string): string {
-  const safe = /^[=+@\t\r-]/.test(value) ? `'${value}` : value;
-  return /[",\r\n]/.test(safe) ? `"${safe.replaceAll('"', '""')}"` : safe;
+  return csvText([CSV_HEAD, ...rows]);
 }
