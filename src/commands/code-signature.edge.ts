@@ -6,7 +6,7 @@ import { findRepository } from '../sources/find-repository.edge.ts';
 import type { OpenedCode } from './open-code.ts';
 
 /**
- * A text that stays the same until a manifest, a declared source, table or input, HEAD or the index of git changes. Files are asked
+ * A text that stays the same until a manifest, a declared source, table or input or HEAD changes. Files are asked
  * for their state instead of being watched, since network file systems tell nobody of a change.
  */
 export async function codeSignature({ place, set }: OpenedCode): Promise<string> {
@@ -27,7 +27,7 @@ async function headOf(root: string): Promise<string> {
   const ref = /^ref: (.+)$/m.exec(head)?.[1];
   const loose = ref === undefined ? '' : await readFile(join(repository.commonFolder, ref), 'utf8').catch(() => '');
   const packed = stateOf(join(repository.commonFolder, 'packed-refs'));
-  return [head, loose, packed, stateOf(join(repository.gitFolder, 'index'))].join(' ');
+  return [head, loose, packed].join(' ');
 }
 
 async function namesBelow(folder: string): Promise<string[]> {

@@ -41,6 +41,7 @@ export class ScreenSession {
   private readonly running = new Map<string, RunningCase>();
   private readonly listeners = new Set<() => void>();
   private settled: SettledViews | null = null;
+  private reading: Promise<void> | null = null;
   private signature = '';
 
   constructor(opened: OpenedCode, invocation: Invocation, surroundings: Surroundings) {
@@ -96,11 +97,27 @@ export class ScreenSession {
   /** Reads everything again when a file that it rests on, or HEAD, is not what it was. Runs nothing. */
   async refresh(): Promise<void> {
     if (this.busy || (await codeSignature(this.opened)) === this.signature) return;
+    await this.reread();
+  }
+
+  /** Audits with what is kept of the cases and runs none. */
+  async read(): Promise<void> {
+    this.reading = this.audit(() => false);
+    try {
+      await this.reading;
+    } finally {
+      this.reading = null;
+    }
+  }
+
+  private async reread(): Promise<void> {
     await this.reopen();
-    await this.audit(() => false);
+    await this.read();
   }
 
   async fulfil(wish: SessionWish): Promise<string> {
+    // A reading takes a moment and is waited for; a run is not.
+    if (wish.do !== 'end job') await this.reading?.catch(() => {});
     if (this.job !== null && wish.do !== 'end job') return 'a job is running: wait for it, or end it with E';
     switch (wish.do) {
       case 'run cases': {
@@ -114,8 +131,7 @@ export class ScreenSession {
         this.jobControl?.abort();
         return 'ending the job';
       case 'read again':
-        await this.reopen();
-        await this.audit(() => false);
+        await this.reread();
         return 'read again';
       case 'record':
         return this.record(wish.name, wish.reason);
@@ -233,8 +249,7 @@ export class ScreenSession {
       reason,
       writerFrom(this.surroundings.env).name,
     );
-    await this.reopen();
-    await this.audit(() => false);
+    await this.reread();
   }
 
   private changed(): void {

@@ -74,7 +74,7 @@ if (opened.place === null || manifestsUnreadable(opened.findings)) {
     say({ say: 'answer', to: message.number, text: answer });
   });
   try {
-    await session.audit(() => runs);
+    await (runs ? session.audit(() => true) : session.read());
     settle();
   } catch (error) {
     say({ say: 'unreadable', text: `mortise: ${printable((error as Error).message)}\n` });

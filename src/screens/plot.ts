@@ -48,9 +48,11 @@ export function plotProfile(profile: Profile, window: Window, width: number, hei
   const dots: Uint8Array = new Uint8Array(width * height);
   const marks: string[] = Array.from({ length: width * height }, () => ' ');
   const columns = width * across;
-  const place = (index: number) =>
-    shown.length === 1 ? 0 : Math.round(((index - first) / (last - first)) * (columns - 1));
-  const rowOf = (value: number) => Math.round((1 - (scale(value) - low) / span) * (height * down - 1));
+  const at = positions(profile.along.values, first, last);
+  const place = (index: number) => Math.round(at(index) * (columns - 1));
+  // Between two values a hair apart, rounding can lead past both.
+  const rowOf = (value: number) =>
+    Math.round((1 - Math.max(0, Math.min(1, (scale(value) - low) / span))) * (height * down - 1));
   const put = (x: number, y: number, mark: string) => {
     const cell = Math.floor(y / down) * width + Math.floor(x / across);
     dots[cell]! |= DOTS[y % 4]![x % 2]!;
@@ -66,12 +68,12 @@ export function plotProfile(profile: Profile, window: Window, width: number, hei
       }
       const start: { x: number; value: number } = previous ?? { x, value };
       let lastRow = rowOf(start.value);
-      for (let at = start.x; at <= x; at++) {
-        const part = x === start.x ? 1 : (at - start.x) / (x - start.x);
+      for (let column = start.x; column <= x; column++) {
+        const part = x === start.x ? 1 : (column - start.x) / (x - start.x);
         const y = rowOf(mix(start.value, value, part, window.logValue));
         // A steep stretch is filled, so that the curve does not fall apart into dots.
         for (let row = Math.min(y, lastRow); row <= Math.max(y, lastRow); row++) {
-          if ((at + row) % every === 0) put(at, row, mark);
+          if ((column + row) % every === 0) put(column, row, mark);
         }
         lastRow = y;
       }
@@ -113,6 +115,16 @@ export function plotProfile(profile: Profile, window: Window, width: number, hei
     beyond: share.map((part) => part > 1),
     worstColumn,
   };
+}
+
+/** Where a point stands across the plot, 0 to 1: by its place on the axis where that only grows, else by its number. */
+function positions(along: readonly number[], first: number, last: number): (index: number) => number {
+  const [low, high] = [along[first] ?? Number.NaN, along[last] ?? Number.NaN];
+  for (let index = first + 1; index <= last; index++) {
+    if (!((along[index] ?? Number.NaN) > (along[index - 1] ?? Number.NaN)))
+      return (point) => (last === first ? 0 : (point - first) / (last - first));
+  }
+  return (point) => (high > low ? ((along[point] ?? low) - low) / (high - low) : 0);
 }
 
 function mix(a: number, b: number, part: number, log: boolean): number {

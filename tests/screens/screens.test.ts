@@ -101,6 +101,19 @@ describe('joint', () => {
   });
 });
 
+describe('the answer at home', () => {
+  it('is not known while a case has not run', () => {
+    const [one] = sampleViews.cases;
+    const views = {
+      ...sampleViews,
+      assembly: { ...sampleViews.assembly, outcome: 'cleared' as const },
+      cases: [{ ...one!, state: 'not run', worst: null }],
+    };
+    expect(shown(startApp(views))).toContain('not known: 1 case is not run');
+    expect(shown(startApp({ ...views, cases: [] }))).toContain('Yes: cleared');
+  });
+});
+
 describe('deviation', () => {
   it('marks the worst place above the profile and tells it below', () => {
     const text = shown(type(['d', { named: 'enter' }]).app);
@@ -128,7 +141,64 @@ describe('deviation', () => {
   });
 });
 
+describe('a module through time', () => {
+  it('stands on a line with its versions, what was not declared set apart from the rest', () => {
+    const [history] = sampleViews.histories;
+    const [born] = history!.steps;
+    const steps = [born!, { ...born!, date: '2024-05-01', version: '2.0.0', undeclared: false }];
+    const views = { ...sampleViews, histories: [{ ...history!, steps }] };
+    const rows = shown(type(['h', { named: 'enter' }], startApp(views)).app).split('\n');
+    const rail = rows.find((one) => one.startsWith('2021 '));
+    expect(rail).toMatch(/^2021 ╳─+● 2024$/);
+  });
+});
+
+describe('a page longer than the screen', () => {
+  it('scrolls to its end and no further', () => {
+    const short = { columns: 80, rows: 13 };
+    const open = type(['f', 'm']).app;
+    const first = shown(open, short);
+    expect(first).toContain('What it means');
+    let app = open;
+    for (let times = 0; times < 100; times++) app = press(app, { named: 'down' }, short).app;
+    expect(shown(app, short)).toContain('An example');
+    expect(shown(press(app, { named: 'up' }, short).app, short)).not.toBe(shown(app, short));
+  });
+});
+
+describe('an exchange', () => {
+  it('is begun alone, or with what was taken along', () => {
+    const below: Key = { named: 'down' };
+    expect(type(['s', below, 'b']).wishes).toEqual([{ do: 'exchange', words: ['equation-of-state=eos-perfect'] }]);
+    const both = type(['s', 'm', below, 'm', 'b']);
+    expect(both.wishes).toEqual([]);
+    expect(both.app.message).toBe('equation-of-state can take one module at a time');
+  });
+
+  it('shows what it moved, and where along the profile', () => {
+    expect(shown(type(['s']).app)).toMatch(/eos-table +37 of 1/);
+    const opened = type(['s', { named: 'enter' }]);
+    expect(shown(opened.app)).toMatch(/cloud-shock +temperature +beyond tolerance +37 of 1/);
+    expect(shown(type([{ named: 'enter' }], opened.app).app)).toContain('▼');
+  });
+});
+
 describe('what is asked of the program around', () => {
+  const enter: Key = { named: 'enter' };
+  const named = (suffix: string): (string | Key)[] => [...Array(3).fill({ named: 'rub-out' }), suffix, enter];
+
+  it('writes what is shown as text, as the table behind it, or as a drawing, by the suffix of the name', () => {
+    expect(type(['f', '@', enter]).wishes).toMatchObject([{ do: 'write file', name: 'mortise-findings.txt' }]);
+    const [table] = type(['f', '@', ...named('csv')]).wishes;
+    expect(table).toMatchObject({ do: 'write file', name: 'mortise-findings.csv' });
+    expect((table as { text: string }).text).toMatch(
+      /^gravity,kind,module,place,says,next,accepted\r\nstop,unit-unknown,/,
+    );
+    const [drawing] = type(['d', enter, '@', ...named('svg')]).wishes;
+    expect((drawing as { text: string }).text).toMatch(/^<svg xmlns="http:\/\/www.w3.org\/2000\/svg"[\s\S]*<\/svg>\n$/);
+    expect(type(['f', '@', ...named('svg')]).app.message).toContain('nothing is drawn here');
+  });
+
   it('accepts a finding only with a reason', () => {
     expect(type(['f', 'g', { named: 'enter' }]).wishes).toEqual([]);
     expect(type(['f', 'g', 'known', { named: 'enter' }]).wishes).toMatchObject([{ do: 'accept', reason: 'known' }]);
@@ -140,6 +210,11 @@ describe('what is asked of the program around', () => {
     expect(type(['c', 'w', 'new solver', { named: 'enter' }]).wishes).toEqual([
       { do: 'record', name: 'cloud-shock', reason: 'new solver' },
     ]);
+  });
+
+  it('begins one case or all of them', () => {
+    expect(type(['c', 'b']).wishes).toEqual([{ do: 'run cases', names: ['cloud-shock'] }]);
+    expect(type(['c', 'a']).wishes).toEqual([{ do: 'run cases', names: ['cloud-shock', 'riemann'] }]);
   });
 
   it('runs the failed cases again', () => {

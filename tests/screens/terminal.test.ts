@@ -1,4 +1,4 @@
-import { mkdtempSync, rmSync } from 'node:fs';
+import { mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
@@ -96,6 +96,13 @@ const LETTERS = {
   findings: 'f',
 };
 
+/** A code of its own for a test that changes it. */
+function openOn(folder: string): Session {
+  const session = new Session(folder, 80, 24);
+  sessions.push(session);
+  return session;
+}
+
 describe('the screens in a terminal', () => {
   for (const [columns, rows] of [
     [80, 24],
@@ -104,7 +111,8 @@ describe('the screens in a terminal', () => {
   ] as const) {
     it(`are all reached by their letter at ${columns}x${rows}, nothing left over from the one before`, async () => {
       const session = open(columns, rows);
-      await session.until('Can the campaign start?  Yes, with cautions');
+      await session.until('Can the campaign start?');
+      await session.until(/ cleared with cautions *$/m);
       for (const [name, letter] of Object.entries(LETTERS)) {
         session.press(letter);
         const screen = await session.until(new RegExp(`^ A small code {2}${name}\\b`));
@@ -118,14 +126,18 @@ describe('the screens in a terminal', () => {
 
   it('answer "held" or "cleared" once the audit has run, and show the case as it went', async () => {
     const session = open(80, 24);
-    await session.until('cautions');
+    await session.until('not known: 1 case is not run');
     session.press('c');
+    await session.until(/front +not run/);
+    session.press('a');
     await session.until(/front +no reference/);
+    session.press('\u001b');
+    await session.until('Yes, with cautions');
   });
 
   it('follow the size of the terminal, down to where they say that it is too small', async () => {
     const session = open(120, 40);
-    await session.until('cautions');
+    await session.until(/ cleared with cautions *$/m);
     for (const [columns, rows] of [
       [60, 20],
       [40, 13],
@@ -140,7 +152,7 @@ describe('the screens in a terminal', () => {
             .screen()
             .split('\n')
             .slice(0, rows - 1)
-            .filter((line) => /^─+$/.test(line.trim()) && line.trim().length === columns).length === 2,
+            .filter((line) => /^─+$/.test(line.trim()) && line.trim().length === columns).length >= 1,
       );
     }
     session.process.resize(39, 11);
@@ -150,7 +162,7 @@ describe('the screens in a terminal', () => {
 
   it('never clear the whole screen between frames', async () => {
     const session = open(80, 24);
-    await session.until('cautions');
+    await session.until(/ cleared with cautions *$/m);
     const before = session.raw.length;
     for (const letter of 'jhcdsrfa') session.press(letter);
     await session.until(/assembly/);
@@ -159,9 +171,32 @@ describe('the screens in a terminal', () => {
     expect(session.raw.slice(before)).not.toContain('\u001b[3J');
   });
 
+  it('follow the files: a changed manifest is read again without being asked', async () => {
+    const folder = laySmallCode();
+    const session = openOn(folder);
+    await session.until(/ cleared with cautions *$/m);
+    const file = join(folder, 'manifests/assembly.yaml');
+    writeFileSync(file, readFileSync(file, 'utf8').replace('A small code', 'Another name'));
+    await session.until(/^ Another name/);
+    await session.until('1 files changed');
+  });
+
+  it('begin with what they showed last, and say of when it is', async () => {
+    const folder = laySmallCode();
+    const first = openOn(folder);
+    await first.until(/ cleared with cautions *$/m);
+    first.press('q');
+    await first.until(() => first.exit !== null);
+    const second = openOn(folder);
+    await second.until(/ cleared with cautions *$/m);
+    expect(second.raw.slice(0, second.raw.indexOf('Leave') + 1 || undefined)).toMatch(
+      /as of \d{4}-\d\d-\d\d \d\d:\d\d UTC/,
+    );
+  });
+
   it('with --ascii hold no other character', async () => {
     const session = open(80, 24, ['--ascii']);
-    await session.until('cautions');
+    await session.until(/ cleared with cautions *$/m);
     for (const letter of 'jcf') {
       session.press(letter);
       await new Promise((done) => setTimeout(done, 150));
@@ -171,7 +206,7 @@ describe('the screens in a terminal', () => {
 
   it('give the terminal back on Q', async () => {
     const session = open(80, 24);
-    await session.until('cautions');
+    await session.until(/ cleared with cautions *$/m);
     session.press('q');
     await session.until(() => session.exit !== null);
     expect(session.exit?.exitCode).toBe(0);
@@ -182,7 +217,7 @@ describe('the screens in a terminal', () => {
   for (const signal of ['SIGTERM', 'SIGHUP']) {
     it(`give the terminal back on ${signal}`, async () => {
       const session = open(80, 24);
-      await session.until('cautions');
+      await session.until(/ cleared with cautions *$/m);
       session.process.kill(signal);
       await session.until(() => session.exit !== null);
       expect(session.raw).toContain('\u001b[?1049l');
@@ -192,7 +227,7 @@ describe('the screens in a terminal', () => {
 
   it('give the terminal back on Ctrl-Z and come again when continued', async () => {
     const session = open(80, 24);
-    await session.until('cautions');
+    await session.until(/ cleared with cautions *$/m);
     session.press('\u001a');
     await session.until(() => session.terminal.buffer.active.type === 'normal');
     await session.until(() => {
