@@ -2,9 +2,11 @@
  * The gate before a campaign. Everything that the earlier stages know of one code comes in; findings, what may stand of them, and
  * the clearance go out. What touches the machine is done by the stages called; nothing is decided there.
  */
+import { axisRange, datasetNamed, edgesOf } from '../fit/fit-tables.ts';
 import { contractReference } from '../manifests/contract-reference.ts';
 import { SAFETY_CAUTION } from '../model/caution.ts';
 import { type Finding, sortFindings } from '../model/finding.ts';
+import type { FileInterface } from '../model/interface.ts';
 import type { Case, ManifestSet, ModuleManifest, Range } from '../model/manifest.ts';
 import type { CaseOutcome } from '../runs/case-outcome.ts';
 import type { ReferenceRecord } from '../runs/reference-record.ts';
@@ -27,6 +29,8 @@ export interface Gathered {
   contentOf(file: string): string | null;
   /** `sha256:` digest of each declared table that is there. */
   readonly tableDigests: ReadonlyMap<string, string>;
+  /** What readers saw, tables among them; without it the edges of tables are those that manifests declare. */
+  readonly interfaces?: ReadonlyMap<string, FileInterface>;
   readonly outcomes: readonly CaseOutcome[];
   readonly references: readonly ReferenceRecord[];
   /** From manifests, fit, callers, constants, history and the register. */
@@ -55,7 +59,7 @@ export function audit(gathered: Gathered): Audit {
     ...tableFindings(gathered),
     ...caseFindings(outcomes, manifests),
     ...runFindings(outcomes, manifests),
-    ...statesFindings(manifests, outcomes),
+    ...statesFindings(gathered),
     ...validationFindings(manifests, validated, outcomes),
     ...platformFindings(references, outcomes, manifests),
     ...(manifests.assembly === null ? [] : campaignFindings(manifests.assembly, measured)),
@@ -148,7 +152,7 @@ function tableFindings({ manifests, tableDigests }: Gathered): Finding[] {
   });
 }
 
-function statesFindings(manifests: ManifestSet, outcomes: readonly CaseOutcome[]): Finding[] {
+function statesFindings({ manifests, outcomes, interfaces }: Gathered): Finding[] {
   const visited: Visited[] = outcomes.flatMap((outcome) => {
     const theCase = manifests.cases.get(outcome.case)?.value;
     if (theCase === undefined || outcome.footprint === null || outcome.produced === null) return [];
@@ -167,8 +171,14 @@ function statesFindings(manifests: ManifestSet, outcomes: readonly CaseOutcome[]
       states: Object.fromEntries(states),
     });
   }
-  return checkStates([...manifests.modules.values()], visited, (module, offer, quantity) =>
-    offerUnit(manifests, module, offer, quantity),
+  return checkStates(
+    [...manifests.modules.values()],
+    visited,
+    (module, offer, quantity) => offerUnit(manifests, module, offer, quantity),
+    (file, name, axis) => {
+      const dataset = datasetNamed(interfaces?.get(file), name);
+      return edgesOf(axis, dataset === null ? null : axisRange(dataset, axis));
+    },
   );
 }
 

@@ -19,6 +19,7 @@ import { ReferenceDamaged, type ReferenceRecord } from '../runs/reference-record
 import { rerunCases } from '../runs/rerun.ts';
 import type { RunEvent } from '../runs/run-event.ts';
 import { listTree } from '../runs/tree-files.edge.ts';
+import { sha256OfFile } from '../sources/digest.edge.ts';
 import { parseCommit } from '../sources/git-object.ts';
 import { openRepository } from '../sources/open-tree.edge.ts';
 import type { SourceTree } from '../sources/tree.ts';
@@ -186,6 +187,11 @@ async function tableDigests(manifests: ManifestSet, tree: SourceTree): Promise<M
     for (const { file } of manifests.modules.get(name)?.value.tables ?? []) {
       const bytes = await tree.read(file);
       if (bytes !== null) digests.set(file, `sha256:${createHash('sha256').update(bytes).digest('hex')}`);
+      else {
+        // Too long to be read whole, or not there.
+        const path = await tree.onDisk?.(file);
+        if (path != null) digests.set(file, await sha256OfFile(path));
+      }
     }
   }
   return digests;

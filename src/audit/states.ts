@@ -1,7 +1,7 @@
 /** The states that runs visit, against the ranges of tables and offers: does a run leave what a module is valid for? */
 
 import type { Finding } from '../model/finding.ts';
-import type { Declaration, ModuleManifest, Range } from '../model/manifest.ts';
+import type { Declaration, ModuleManifest, Range, TableAxis } from '../model/manifest.ts';
 import { shortNumber } from '../model/short-number.ts';
 import { conversion } from '../units/conversion.ts';
 
@@ -18,12 +18,14 @@ export interface Visited {
  * Table axes and offered domains that do not hold the states visited.
  *
  * @param unitOf  the unit in which an offer's domain of a quantity is given
+ * @param edgesRead  the ends of an axis in its unit: those of the table itself where it could be read, else those declared
  * @returns a stop for each end passed, with both values in the module's unit
  */
 export function checkStates(
   modules: readonly Declaration<ModuleManifest>[],
   visited: readonly Visited[],
   unitOf: (module: ModuleManifest, offer: number, quantity: string) => string | null,
+  edgesRead: (file: string, name: string, axis: TableAxis) => Range | null = (_file, _name, axis) => axis.range ?? null,
 ): Finding[] {
   const findings: Finding[] = [];
   for (const declaration of modules) {
@@ -31,8 +33,10 @@ export function checkStates(
     const concerned = visited.filter((one) => one.modules.has(manifest.module));
     const tableAxes = new Map<string, Range>();
     manifest.tables?.forEach((table, tableIndex) => {
-      for (const [axis, { quantity, unit, range }] of Object.entries(table.axes ?? {})) {
-        if (range === undefined) continue;
+      for (const [axis, declared] of Object.entries(table.axes ?? {})) {
+        const { quantity, unit } = declared;
+        const range = edgesRead(table.file, axis, declared);
+        if (range === null) continue;
         tableAxes.set(quantity, range);
         for (const one of concerned) {
           const says = passed(one, quantity, unit ?? null, range);
@@ -41,7 +45,13 @@ export function checkStates(
             kind: 'table-left',
             gravity: 'stop',
             module: manifest.module,
-            place: declaration.placeOf(['tables', tableIndex, 'axes', axis, 'range']),
+            place: declaration.placeOf([
+              'tables',
+              tableIndex,
+              'axes',
+              axis,
+              ...(declared.range === undefined ? [] : ['range']),
+            ]),
             says: `${capital(one.by)} leaves table ${table.file} of ${manifest.module}: ${says}.`,
             evidence: [],
             next: 'extend the table, plug in a module that is valid there, or keep the run inside.',

@@ -1,6 +1,7 @@
 /** `mortise interface PATH…`: what a reader sees. */
-import type { Declared, FileInterface } from '../model/interface.ts';
+import type { Declared, FileInterface, TableAxisRead } from '../model/interface.ts';
 import { printable } from '../model/printable.ts';
+import { shortNumber } from '../model/short-number.ts';
 import { type Command, EXIT, UsageError } from './command.ts';
 import { readPaths } from './read-paths.ts';
 
@@ -73,11 +74,19 @@ function fileText(path: string, read: FileInterface): string {
   for (const one of read.constants) lines.push(`  ${String(one.line).padStart(5)}  constant ${one.name} = ${one.text}`);
   for (const one of read.datasets)
     lines.push(
-      `         data ${one.name} ${one.type} [${one.shape.join(', ')}]${one.unit === undefined ? '' : ` ${one.unit}`}`,
+      `         data ${one.name} ${one.type} [${one.shape.join(', ')}]${one.unit === undefined ? '' : ` ${one.unit}`}${axisText(one.axis)}`,
     );
   if (read.calls.length > 0) lines.push(`         ${read.calls.length} calls`);
   for (const one of read.incomplete) lines.push(`  ${String(one.line).padStart(5)}  NOT READ: ${one.why}`);
   return `${lines.map(printableLine).join('\n')}\n`;
+}
+
+function axisText(axis: TableAxisRead | undefined): string {
+  if (axis === undefined) return '';
+  const { first, last, points, spacing, logBase } = axis;
+  const stored =
+    logBase === undefined ? '' : `, ${logBase === 'e' ? 'natural logarithms' : `logarithms to base ${logBase}`}`;
+  return `, axis ${shortNumber(first)} to ${shortNumber(last)}, ${points} points, ${spacing}${stored}`;
 }
 
 function printableLine(text: string): string {

@@ -1,6 +1,6 @@
 /** Paths named on a command line, read to interfaces, in the work tree or at a revision. */
 import type { FileInterface } from '../model/interface.ts';
-import { isSource, readSource } from '../readers/read-source.ts';
+import { isSource, languageOf, readSource, readSourceFile } from '../readers/read-source.ts';
 import { openTree } from '../sources/open-tree.edge.ts';
 import type { SourceTree } from '../sources/tree.ts';
 import { type Invocation, type Surroundings, UsageError } from './command.ts';
@@ -26,6 +26,12 @@ export async function readPaths(
   const files: Record<string, FileInterface> = {};
   for (const path of paths) {
     if (surroundings.signal.aborted) break;
+    // A table on disk is opened where it lies: only headers and axes of it are read.
+    const file = languageOf(path) === 'table' ? await tree.onDisk?.(path) : null;
+    if (file != null) {
+      files[path] = await readSourceFile(path, file);
+      continue;
+    }
     const bytes = await tree.read(path);
     if (bytes !== null)
       files[path] = await readSource(path, bytes, { include, ...(define === undefined ? {} : { define }) });

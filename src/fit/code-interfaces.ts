@@ -1,7 +1,7 @@
 /** Reads the modules of a code with the readers that ship: what check and audit see of the source. */
 import type { FileInterface } from '../model/interface.ts';
 import type { ManifestSet } from '../model/manifest.ts';
-import { readSource } from '../readers/read-source.ts';
+import { readSource, readSourceFile } from '../readers/read-source.ts';
 import type { SourceTree } from '../sources/tree.ts';
 import { moduleInterfaces } from './module-interfaces.ts';
 
@@ -10,16 +10,23 @@ import { moduleInterfaces } from './module-interfaces.ts';
  *
  * @param modules  as for `moduleInterfaces`
  */
-export function codeInterfaces(
+export async function codeInterfaces(
   set: ManifestSet,
   tree: SourceTree,
   modules?: Iterable<string>,
 ): Promise<Map<string, FileInterface>> {
   const define = set.assembly?.value.build?.define;
-  return moduleInterfaces(
+  const interfaces = await moduleInterfaces(
     set,
     tree,
     (path, bytes, include) => readSource(path, bytes, { include, ...(define === undefined ? {} : { define }) }),
     modules,
   );
+  // A table that is too long to be read whole is opened where it lies.
+  const tables = [...set.modules.values()].flatMap((one) => (one.value.tables ?? []).map((table) => table.file));
+  for (const path of new Set(tables)) {
+    const file = interfaces.has(path) ? null : await tree.onDisk?.(path);
+    if (file != null) interfaces.set(path, await readSourceFile(path, file));
+  }
+  return interfaces;
 }

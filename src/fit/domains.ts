@@ -32,6 +32,16 @@ export function numberText(value: number): string {
   return exponent.length < plain.length ? exponent.replace('e+', 'e') : plain.replace('e+', 'e');
 }
 
+/** Ends as they are written in a manifest carry fewer digits than those in a table. */
+export function sameEnds(a: Range, b: Range): boolean {
+  return a.every((end, index) => {
+    const other = b[index]!;
+    return end === null || other === null
+      ? end === other
+      : Math.abs(end - other) <= 1e-3 * Math.max(Math.abs(end), Math.abs(other));
+  });
+}
+
 function slack(end: number): number {
   return Math.abs(end) * ROUND_OFF;
 }

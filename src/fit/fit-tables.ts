@@ -1,9 +1,9 @@
 /** What a manifest says of a table against what its offers promise and against the table itself. */
 import { contractReference } from '../manifests/contract-reference.ts';
 import type { Finding } from '../model/finding.ts';
-import type { Dataset } from '../model/interface.ts';
+import type { Dataset, FileInterface } from '../model/interface.ts';
 import type { ManifestSet, Range, TableAxis } from '../model/manifest.ts';
-import { convertRange, outside, rangeText } from './domains.ts';
+import { convertRange, outside, rangeText, sameEnds } from './domains.ts';
 import { findingAt, firstThere, seenIn } from './finding-at.ts';
 import type { LinkedModule } from './linked-module.ts';
 import { relateUnits } from './unit-relation.ts';
@@ -15,24 +15,40 @@ export function checkTables(module: LinkedModule, set: ManifestSet): Finding[] {
       const read = dataset === null ? null : axisRange(dataset, axis);
       return [
         ...(dataset === null ? [] : axisAgainstTable(module, at, name, axis, dataset)),
-        ...offersAgainstAxis(module, set, at, name, axis, read ?? axis.range ?? null),
+        ...offersAgainstAxis(module, set, at, name, axis, edgesOf(axis, read)),
       ];
     }),
   );
 }
 
 function datasetOf(module: LinkedModule, file: string, name: string): Dataset | null {
-  const read = module.tables.find(([path]) => path === file)?.[1];
+  return datasetNamed(module.tables.find(([path]) => path === file)?.[1], name);
+}
+
+/** The data set that a manifest means: a leading `/` may be left out. */
+export function datasetNamed(read: FileInterface | undefined, name: string): Dataset | null {
   return read?.datasets.find((one) => one.name.replace(/^\//, '') === name.replace(/^\//, '')) ?? null;
 }
 
-/** First and last point of an axis as values of its quantity: an evenly spaced axis of logarithms holds the logarithms. */
-function axisRange(dataset: Dataset, axis: TableAxis): Range | null {
+/**
+ * First and last point of an axis as values of its quantity: a table that says so, or an evenly spaced axis that the manifest calls
+ * logarithmic, holds logarithms.
+ */
+export function axisRange(dataset: Dataset, axis: TableAxis): Range | null {
   if (dataset.axis === undefined) return null;
-  const { first, last, spacing } = dataset.axis;
-  const base = axis.spacing === 'log10' ? 10 : axis.spacing === 'ln' ? Math.E : null;
-  const ends = base !== null && spacing === 'linear' ? [base ** first, base ** last] : [first, last];
+  const { first, last, spacing, logBase } = dataset.axis;
+  const declared = axis.spacing === 'log10' ? 10 : axis.spacing === 'ln' ? Math.E : null;
+  const said = logBase === undefined ? null : logBase === 'e' ? Math.E : Number(logBase);
+  const base = said !== null && said > 1 ? said : spacing === 'linear' ? declared : null;
+  const ends = base !== null ? [base ** first, base ** last] : [first, last];
   return ends[0]! <= ends[1]! ? [ends[0]!, ends[1]!] : [ends[1]!, ends[0]!];
+}
+
+/** Where an axis ends: in the table, unless the manifest gives the same ends in fewer digits. */
+export function edgesOf(axis: TableAxis, read: Range | null): Range | null {
+  const { range } = axis;
+  if (range === undefined) return read;
+  return read === null || sameEnds(read, range) ? range : read;
 }
 
 /** The range and unit declared for an axis, against those in the table. */
@@ -46,7 +62,7 @@ function axisAgainstTable(
   const findings: Finding[] = [];
   const path = ['tables', at, 'axes', name];
   const read = axisRange(dataset, axis);
-  if (read !== null && axis.range !== undefined && !nearlyEqual(read, axis.range)) {
+  if (read !== null && axis.range !== undefined && !sameEnds(read, axis.range)) {
     findings.push(
       findingAt(module.declaration, [...path, 'range'], {
         kind: 'table-range',
@@ -112,15 +128,5 @@ function offersAgainstAxis(
         next: `promise ${rangeText(covered, unit)}, or make the table longer; what lies beyond its edge is clamped or extrapolated.`,
       }),
     ];
-  });
-}
-
-/** Ends as they are written in a manifest carry fewer digits than those in a table. */
-function nearlyEqual(a: Range, b: Range): boolean {
-  return a.every((end, index) => {
-    const other = b[index]!;
-    return end === null || other === null
-      ? end === other
-      : Math.abs(end - other) <= 1e-3 * Math.max(Math.abs(end), Math.abs(other));
   });
 }

@@ -99,7 +99,11 @@ function compareDataset(
   };
   const edges = (it: Dataset) =>
     [Math.min(it.axis!.first, it.axis!.last), Math.max(it.axis!.first, it.axis!.last)] as const;
-  if (b.it.axis !== undefined && a.it.axis !== undefined) {
+  const base = (it: Dataset) => it.axis?.logBase;
+  if (b.it.axis !== undefined && a.it.axis !== undefined && base(b.it) !== base(a.it)) {
+    const text = (it: Dataset) => (base(it) === undefined ? 'plain values' : `logarithms to base ${base(it)}`);
+    add('convention-changed', `axis ${a.it.name} holds ${text(a.it)}, held ${text(b.it)}`, text(b.it), text(a.it));
+  } else if (b.it.axis !== undefined && a.it.axis !== undefined) {
     const [was, is] = [edges(b.it), edges(a.it)];
     const text = (pair: readonly [number, number]) => `${pair[0]} to ${pair[1]}`;
     const says = `axis ${a.it.name} runs from ${text(is)}, ran from ${text(was)}`;

@@ -256,13 +256,25 @@ export interface External extends Position {
 
 export interface Dataset {
   readonly name: string;
+  /** `float64`, `int32`, `complex128`, ...; `decimal` for numbers written as text; `text`, `record`, ... for what holds none. */
   readonly type: string;
   readonly bytes: number | null;
   readonly shape: readonly number[];
   readonly unit?: string;
   readonly attributes: Readonly<Record<string, string | number>>;
-  /** For a one-dimensional monotonic data set that serves as an axis. */
-  readonly axis?: { readonly first: number; readonly last: number; readonly spacing: 'linear' | 'log' | 'uneven' };
+  /** For a monotonic data set of one dimension that serves as an axis, or a column of a flattened table that runs over one. */
+  readonly axis?: TableAxisRead;
+}
+
+export interface TableAxisRead {
+  /** As stored: where the values are logarithms these are logarithms. */
+  readonly first: number;
+  readonly last: number;
+  readonly spacing: 'linear' | 'log' | 'uneven';
+  /** Distinct points along the axis. */
+  readonly points: number;
+  /** Base of the logarithms that are stored, where name, unit or attributes say so: `10`, `e`, `2`. */
+  readonly logBase?: string;
 }
 
 export interface Incomplete {

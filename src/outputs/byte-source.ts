@@ -7,6 +7,8 @@ export interface ByteSource {
   /** Copies up to `into.length` bytes from `offset`; returns how many there were. */
   readAt(offset: number, into: Uint8Array): number;
   close(): void;
+  /** All of it, where it lies in memory and in no file. */
+  readonly inMemory?: Uint8Array;
 }
 
 /** The bytes asked for, all of them. @throws {OutputProblem} `truncated` when the file ends before */
@@ -27,6 +29,7 @@ export function bytesInMemory(bytes: Uint8Array, path = 'memory'): ByteSource {
   return {
     path,
     size: bytes.length,
+    inMemory: bytes,
     readAt(offset, into) {
       const part = bytes.subarray(offset, offset + into.length);
       into.set(part);

@@ -1,4 +1,4 @@
-/** HDF5 and NetCDF-4: data sets read lazily from disk, a slab at a time. */
+/** HDF5 and NetCDF-4: data sets read lazily from disk, a slab at a time, or from bytes in memory. */
 import { openSync } from 'node:fs';
 import { devNull } from 'node:os';
 import type { Dataset, Group, Metadata } from 'h5wasm/node';
@@ -9,20 +9,51 @@ const SLAB = 1 << 19;
 /** A layer of chunks is read whole up to this many values, so that no chunk is inflated twice. */
 const LAYER = 1 << 23;
 
+type Library = typeof import('h5wasm/node');
+
 /** @throws {OutputProblem} `truncated` or `damaged` when the library cannot open it */
 export async function openHdf5(path: string, size: number): Promise<OutputFile> {
   const library = await import('h5wasm/node');
-  quieten(await library.ready);
+  const module = await library.ready;
+  quieten(module, (errors) => {
+    if (errors.nfd === 2) errors.nfd = openSync(devNull, 'w');
+  });
+  return openWith(library, path, path, size, () => {});
+}
+
+let copies = 0;
+
+/**
+ * The same for bytes that lie in no file, as a blob of git does. Links to other files lead nowhere.
+ *
+ * @param path  what messages call it
+ */
+export async function openHdf5Bytes(bytes: Uint8Array, path: string): Promise<OutputFile> {
+  const library: Library = await import('h5wasm');
+  const module = await library.ready;
+  quieten(module, (errors) => {
+    errors.stream_ops = { ...errors.stream_ops, write: (_stream, _bytes, _at, length) => length };
+  });
+  const files = module.FS as { writeFile(name: string, bytes: Uint8Array): void; unlink(name: string): void };
+  const name = `/bytes-${++copies}.h5`;
+  files.writeFile(name, bytes);
+  return openWith(library, name, path, bytes.length, () => files.unlink(name));
+}
+
+function openWith(library: Library, name: string, path: string, size: number, after: () => void): OutputFile {
   const found = new Map<string, Entry>();
-  let opened: InstanceType<typeof library.File> | null = null;
+  const others: DatasetInfo[] = [];
+  const about: { name: string; attributes: Attributes }[] = [];
+  let opened: InstanceType<Library['File']> | null = null;
   try {
-    const file = new library.File(path, 'r');
+    const file = new library.File(name, 'r');
     opened = file;
     if (file.file_id < 0n) throw new Error('the library refuses it');
-    gather(file, '', found, library, new Set());
+    gather(file, '', { library, found, others, about, seen: new Set() });
   } catch (error) {
     // A file left open would be taken for the next one of that name.
     if (opened !== null && opened.file_id >= 0n) opened.close();
+    after();
     throw new OutputProblem(
       'damaged',
       path,
@@ -34,20 +65,28 @@ export async function openHdf5(path: string, size: number): Promise<OutputFile> 
     path,
     format: 'hdf5',
     datasets: [...found.values()].map((one) => one.info),
+    others,
+    groups: about,
     open: (info) => slabCursor(found.get(info.name)!, path),
-    close: () => void opened?.close(),
+    close: () => {
+      opened?.close();
+      after();
+    },
   });
 }
 
-let isQuiet = false;
+interface Stream {
+  nfd?: number;
+  stream_ops?: { write(stream: unknown, bytes: unknown, at: number, length: number): number };
+}
+const quiet = new WeakSet<object>();
 
 /** The library prints its own account of every failure to standard error; ours is the message that follows it. */
-function quieten(module: { readonly FS: unknown }): void {
-  if (isQuiet) return;
-  isQuiet = true;
-  const streams = (module.FS as { readonly streams?: readonly ({ nfd?: number } | null)[] }).streams;
-  const errors = streams?.[2];
-  if (errors !== null && errors !== undefined && errors.nfd === 2) errors.nfd = openSync(devNull, 'w');
+function quieten(module: { readonly FS: unknown }, silence: (errors: Stream) => void): void {
+  if (quiet.has(module)) return;
+  quiet.add(module);
+  const errors = (module.FS as { readonly streams?: readonly (Stream | null)[] }).streams?.[2];
+  if (errors !== null && errors !== undefined) silence(errors);
 }
 
 interface Entry {
@@ -61,24 +100,101 @@ interface Entry {
   readonly zero: number;
 }
 
-function gather(
-  group: Group,
-  path: string,
-  found: Map<string, Entry>,
-  library: typeof import('h5wasm/node'),
-  seen: Set<string>,
-): void {
+interface Gathered {
+  readonly library: Library;
+  readonly found: Map<string, Entry>;
+  readonly others: DatasetInfo[];
+  readonly about: { name: string; attributes: Attributes }[];
+  readonly seen: Set<string>;
+}
+
+/** Links that run in circles give any number of names; no table has more than this. */
+const MOST_NAMES = 100_000;
+
+function gather(group: Group, path: string, into: Gathered): void {
+  const said = attributesOf(group);
+  if (Object.keys(said).length > 0) into.about.push({ name: path === '' ? '/' : path, attributes: said });
   for (const key of group.keys()) {
     const name = `${path}/${key}`;
     // Links may run in circles; deeper than this nobody nests.
-    if (seen.has(name) || name.split('/').length > 64) continue;
-    seen.add(name);
+    if (into.seen.has(name) || into.seen.size > MOST_NAMES || name.split('/').length > 64) continue;
+    into.seen.add(name);
     const entity = group.get(key);
-    if (entity instanceof library.Group) gather(entity, name, found, library, seen);
-    else if (entity instanceof library.Dataset) {
-      for (const entry of entriesOf(entity, name)) found.set(entry.info.name, entry);
+    if (entity instanceof into.library.Group) {
+      gather(entity, name, into);
+    } else if (entity instanceof into.library.Dataset) {
+      // A dimension of NetCDF-4 without a variable is kept as a data set that holds nothing.
+      if (isBareDimension(entity)) continue;
+      const entries = entriesOf(entity, name);
+      for (const entry of entries) into.found.set(entry.info.name, entry);
+      if (entries.length === 0) into.others.push(otherInfo(entity, name));
     }
   }
+}
+
+function isBareDimension(dataset: Dataset): boolean {
+  const value = textAttribute(dataset, 'NAME');
+  return value?.startsWith('This is a netCDF dimension but not a netCDF variable') === true;
+}
+
+function otherInfo(dataset: Dataset, name: string): DatasetInfo {
+  const { metadata } = dataset;
+  const type = metadata.type === 3 || metadata.vlen_type?.type === 3 ? 'text' : (CLASSES[metadata.type] ?? 'opaque');
+  return { name, shape: metadata.shape ?? [], type, attributes: attributesOf(dataset) };
+}
+
+/** @source HDF5 File Format Specification, IV.A.2.d: classes of data types */
+const CLASSES: Readonly<Record<number, string>> = {
+  3: 'text',
+  5: 'opaque',
+  6: 'record',
+  7: 'reference',
+  8: 'enumeration',
+  9: 'sequence',
+  10: 'array',
+};
+
+type Attributes = Record<string, string | number>;
+
+/** What libraries write for their own use, about dimensions. */
+const BOOKKEEPING =
+  /^(?:REFERENCE_LIST|DIMENSION_LIST|CLASS|NAME|DIMENSION_LABELS|_Netcdf4\w+|_NCProperties|_nc3_strict)$/;
+/** An attribute longer than this is data, not a remark. */
+const LONGEST_ATTRIBUTE = 2000;
+
+function attributesOf(holder: Pick<Dataset, 'attrs'>): Attributes {
+  const found: Attributes = {};
+  for (const [name, attribute] of Object.entries(holder.attrs)) {
+    if (BOOKKEEPING.test(name)) continue;
+    const value = attributeValue(attribute);
+    if (value !== null) found[name] = value;
+  }
+  return found;
+}
+
+/** A number, or text; several values stand side by side in text. null where the library cannot say. */
+function attributeValue(attribute: { readonly value: unknown }): string | number | null {
+  let value: unknown;
+  try {
+    value = attribute.value;
+  } catch {
+    return null;
+  }
+  if (typeof value === 'string') return value.slice(0, LONGEST_ATTRIBUTE);
+  if (typeof value === 'number') return value;
+  if (typeof value === 'bigint' || typeof value === 'boolean') return Number(value);
+  if (ArrayBuffer.isView(value) || Array.isArray(value)) {
+    const items = [...(value as unknown as Iterable<unknown>)];
+    if (items.length === 1) return attributeValue({ value: items[0] });
+    if (items.every((one) => /^(?:string|number|bigint|boolean)$/.test(typeof one)))
+      return items.join(', ').slice(0, LONGEST_ATTRIBUTE);
+  }
+  return null;
+}
+
+function textAttribute(dataset: Dataset, name: string): string | null {
+  const value = dataset.attrs[name]?.value;
+  return typeof value === 'string' ? value : null;
 }
 
 function entriesOf(dataset: Dataset, name: string): Entry[] {
@@ -98,13 +214,18 @@ function entriesOf(dataset: Dataset, name: string): Entry[] {
   const fill = stored === undefined ? {} : { fill: stored * scale + zero };
   const chunks = metadata.chunks === null || metadata.chunks === undefined ? null : [...metadata.chunks];
   const base = { dataset, shape, chunks, scale, zero };
+  const said = attributesOf(dataset);
+  const about = {
+    ...(Object.keys(said).length > 0 ? { attributes: said } : {}),
+    ...(textAttribute(dataset, 'CLASS') === 'DIMENSION_SCALE' ? { coordinate: true } : {}),
+  };
   const members = metadata.compound_type?.members;
   if (members !== undefined) {
     if (members.length === 2 && members.every((one) => plainType(one) !== null)) {
       const [a, b] = members.map((one) => one.name.toLowerCase());
       if ((a === 'r' && b === 'i') || (a?.startsWith('re') && b?.startsWith('im'))) {
         const type = members[0]!.size === 4 ? 'complex64' : 'complex128';
-        return [{ ...base, complex: true, member: null, info: { name, shape, type, ...unit } }];
+        return [{ ...base, complex: true, member: null, info: { name, shape, type, ...unit, ...about } }];
       }
     }
     return members
@@ -113,12 +234,12 @@ function entriesOf(dataset: Dataset, name: string): Entry[] {
         ...base,
         complex: false,
         member: one.name,
-        info: { name: `${name}.${one.name}`, shape, type: plainType(one)!, ...unit },
+        info: { name: `${name}.${one.name}`, shape, type: plainType(one)!, ...unit, ...about },
       }));
   }
   const type = plainType(metadata);
   if (type === null) return [];
-  return [{ ...base, complex: false, member: null, info: { name, shape, type, ...unit, ...fill } }];
+  return [{ ...base, complex: false, member: null, info: { name, shape, type, ...unit, ...fill, ...about } }];
 }
 
 /** Type class 0 is an integer, 1 a floating-point number. */

@@ -41,11 +41,13 @@ interface Variable {
 }
 
 export function openNetcdfClassic(source: ByteSource): OutputFile {
-  const variables = readHeader(source);
+  const { variables, others, attributes } = readHeader(source);
   return outputFile({
     path: source.path,
     format: 'netcdf-classic',
     datasets: variables.map((one) => one.info),
+    others,
+    groups: attributes.size === 0 ? [] : [{ name: '/', attributes: plainAttributes(attributes) }],
     open: (info) => {
       const { begin, ...rest } = variables.find((one) => one.info.name === info.name)!;
       return stridedCursor(source, { ...rest, offset: begin, littleEndian: false });
@@ -56,7 +58,13 @@ export function openNetcdfClassic(source: ByteSource): OutputFile {
 
 type Attributes = Map<string, string | number[]>;
 
-function readHeader(source: ByteSource): Variable[] {
+interface HeaderRead {
+  readonly variables: Variable[];
+  readonly others: DatasetInfo[];
+  readonly attributes: Attributes;
+}
+
+function readHeader(source: ByteSource): HeaderRead {
   const header = new Header(source);
   const version = header.byte(3);
   header.at = 4;
@@ -90,7 +98,7 @@ function readHeader(source: ByteSource): Variable[] {
     return found <= 1024 ? found : header.damaged(`"${name}" with ${found} dimensions`);
   };
   const dimensions = list(10, () => ({ name: header.text(count()), length: count() }));
-  attributes();
+  const ofTheFile = attributes();
   const declared = list(11, () => {
     const name = header.text(count());
     const dims = Array.from(
@@ -112,7 +120,17 @@ function readHeader(source: ByteSource): Variable[] {
   const first = Math.min(...records.map((one) => one.begin));
   const rows = streaming && records.length > 0 ? Math.floor((source.size - first) / stride) : declaredRecords;
 
-  return declared
+  const shapeOf = (one: (typeof declared)[number]) =>
+    one.dims.map((dimension) => (dimension.length === 0 ? rows : dimension.length));
+  const aboutOf = (one: (typeof declared)[number]) => ({
+    ...(one.attrs.size > 0 ? { attributes: plainAttributes(one.attrs) } : {}),
+    // A variable of one dimension that has its name is the coordinate along it: the NetCDF Users Guide, "Coordinate Variables".
+    ...(one.dims.length === 1 && one.dims[0]!.name === one.name ? { coordinate: true } : {}),
+  });
+  const others = declared
+    .filter((one) => one.type === 'char')
+    .map((one): DatasetInfo => ({ name: one.name, shape: shapeOf(one), type: 'text', ...aboutOf(one) }));
+  const variables = declared
     .filter((one) => one.type !== 'char')
     .map((one): Variable => {
       const type = one.type as StoredType;
@@ -141,13 +159,24 @@ function readHeader(source: ByteSource): Variable[] {
         ...variable,
         info: {
           name: one.name,
-          shape: one.dims.map((dimension) => (dimension.length === 0 ? rows : dimension.length)),
+          shape: shapeOf(one),
           type,
           ...(typeof unit === 'string' ? { unit } : {}),
           ...(fill === undefined ? {} : { fill: fill * scale + zero }),
+          ...aboutOf(one),
         },
       };
     });
+  return { variables, others, attributes: ofTheFile };
+}
+
+function plainAttributes(attrs: Attributes): Record<string, string | number> {
+  return Object.fromEntries(
+    [...attrs].map(([name, value]) => [
+      name,
+      typeof value === 'string' ? value : value.length === 1 ? value[0]! : value.join(', '),
+    ]),
+  );
 }
 
 function packing(attrs: Attributes): { scale?: number; zero?: number } {

@@ -3,10 +3,10 @@ import { existsSync, readdirSync } from 'node:fs';
 import { basename, dirname, join } from 'node:path';
 import type { CaseOutput } from '../model/manifest.ts';
 import { openBytes } from './byte-source.edge.ts';
-import type { ByteSource } from './byte-source.ts';
+import { type ByteSource, bytesInMemory } from './byte-source.ts';
 import { openFits } from './fits.ts';
 import { openFortranRecords } from './fortran-records.ts';
-import { openHdf5 } from './hdf5.edge.ts';
+import { openHdf5, openHdf5Bytes } from './hdf5.edge.ts';
 import { joinOutputs, naturalOrder } from './joined-output.ts';
 import { openJson } from './json-values.ts';
 import { openLog } from './log-values.ts';
@@ -38,6 +38,15 @@ export async function openOutput(path: string, hints: OutputHints = {}): Promise
   }
 }
 
+/**
+ * The same for a file of which only the bytes are there, as a blob of git.
+ *
+ * @param path  what messages call it
+ */
+export function openOutputBytes(bytes: Uint8Array, path: string, hints: OutputHints = {}): Promise<OutputFile> {
+  return openSource(bytesInMemory(bytes, path), hints);
+}
+
 async function openSource(source: ByteSource, hints: OutputHints): Promise<OutputFile> {
   if (source.size === 0) throw new OutputProblem('empty', source.path, 'is empty: not a single byte was written');
   if (hints.patterns !== undefined) return openLog(source, hints.patterns)!;
@@ -47,6 +56,7 @@ async function openSource(source: ByteSource, hints: OutputHints): Promise<Outpu
   if (hints.layout !== undefined && format === 'text') return openRawBinary(source, hints.layout);
   switch (format) {
     case 'hdf5':
+      if (source.inMemory !== undefined) return openHdf5Bytes(source.inMemory, source.path);
       source.close();
       return openHdf5(source.path, source.size);
     case 'netcdf-classic':

@@ -28,6 +28,16 @@ export interface DatasetInfo {
   readonly fill?: number;
   /** True when nothing in the file declares the type and it was judged from the bytes. */
   readonly guessed?: boolean;
+  /** What the file says of the data set, several values as one text; what a library keeps for its own use is left out. */
+  readonly attributes?: Readonly<Record<string, string | number>>;
+  /** True when the format marks it as the coordinate of a dimension. */
+  readonly coordinate?: boolean;
+}
+
+/** What a file says of a group of data sets; `/` is the file itself. */
+export interface GroupInfo {
+  readonly name: string;
+  readonly attributes: Readonly<Record<string, string | number>>;
 }
 
 /** Reads one data set from its start to its end. Complex numbers come as real part, imaginary part, one pair an element. */
@@ -55,6 +65,10 @@ export interface OutputFile {
   readonly path: string;
   readonly format: OutputFormat;
   datasets(): readonly DatasetInfo[];
+  /** Data sets that hold no plain numbers: text, references, records. They have no cursor. */
+  others(): readonly DatasetInfo[];
+  /** Groups that have attributes, the file itself among them. */
+  groups(): readonly GroupInfo[];
   /** The data set of that name, or one that is meant by it (`/x` for `x`, `temperature` for a column headed `temperature [K]`). */
   find(name: string): DatasetInfo | null;
   /** The error that says which data sets there are in place of this one. */
@@ -100,6 +114,8 @@ export interface OutputParts {
   readonly path: string;
   readonly format: OutputFormat;
   readonly datasets: readonly DatasetInfo[];
+  readonly others?: readonly DatasetInfo[];
+  readonly groups?: readonly GroupInfo[];
   open(info: DatasetInfo): ArrayCursor;
   table?(infos: readonly DatasetInfo[]): TableCursor;
   close(): void;
@@ -125,6 +141,8 @@ export function outputFile(parts: OutputParts): OutputFile {
     path: parts.path,
     format: parts.format,
     datasets: () => parts.datasets,
+    others: () => parts.others ?? [],
+    groups: () => parts.groups ?? [],
     find,
     absent,
     cursor,

@@ -119,9 +119,10 @@ function headings(line: string, separator: string | null, columns: number): Head
   const cells = separator === null ? joinUnits(text) : splitRow(text, separator);
   if (cells.length !== columns || cells.some((cell) => readDecimal(cell) !== null)) return null;
   return cells.map((cell, column) => {
-    const match = /^(.*?)\s*[[(]([^\])]*)[\])]$/.exec(cell);
+    // Brackets of another kind may stand inside: `T [log10(K)]`.
+    const match = /^(.*?)\s*(?:\[([^\]]*)\]|\(((?:[^()]|\([^()]*\))*)\))$/.exec(cell);
     const name = (match === null || match[1] === '' ? cell : match[1]!).trim() || `column ${column + 1}`;
-    return match === null || match[1] === '' ? { name } : { name, unit: match[2]!.trim() };
+    return match === null || match[1] === '' ? { name } : { name, unit: (match[2] ?? match[3])!.trim() };
   });
 }
 

@@ -60,6 +60,7 @@ const LANGUAGES: Readonly<Record<string, Language>> = {
   cdf: 'table',
   npy: 'table',
   npz: 'table',
+  fits: 'table',
   csv: 'table',
   tsv: 'table',
   dat: 'table',
@@ -153,6 +154,23 @@ export async function readSource(path: string, bytes: Uint8Array, options: ReadO
     return {
       ...emptyInterface(language ?? 'table'),
       incomplete: [{ line: 1, why: `the reader failed: ${(error as Error).message.slice(0, 160)}` }],
+    };
+  }
+}
+
+/**
+ * Reads a table in the work tree without taking all of it into memory.
+ *
+ * @param path  in the repository
+ * @param file  the same, absolute
+ */
+export async function readSourceFile(path: string, file: string): Promise<FileInterface> {
+  try {
+    return await (await import('./tables/read-table.ts')).readTableFile(file);
+  } catch (error) {
+    return {
+      ...emptyInterface('table'),
+      incomplete: [{ line: 1, why: `the reader failed on ${path}: ${(error as Error).message.slice(0, 160)}` }],
     };
   }
 }

@@ -6,7 +6,7 @@ import { pathFromBytes, staysInside } from './git-path.ts';
 import { Repository } from './repository.edge.ts';
 import { SourceProblem } from './source-problem.ts';
 import type { SourceTree, TreeEntry } from './tree.ts';
-import { listFolder, listWorkTree, readWorkFile } from './work-tree.edge.ts';
+import { listFolder, listWorkTree, plainWorkFile, readWorkFile } from './work-tree.edge.ts';
 
 /**
  * Paths are relative to the root of the repository that `cwd` lies in, or to `cwd` itself where there is none.
@@ -67,11 +67,18 @@ function workTree(place: RepositoryPlace): SourceTree {
     revision: null,
     entries: () => listWorkTree(place),
     read: (path) => readWorkFile(place.root, path),
+    onDisk: (path) => plainWorkFile(place.root, path),
   };
 }
 
 function folderTree(root: string): SourceTree {
-  return { root, revision: null, entries: () => listFolder(root), read: (path) => readWorkFile(root, path) };
+  return {
+    root,
+    revision: null,
+    entries: () => listFolder(root),
+    read: (path) => readWorkFile(root, path),
+    onDisk: (path) => plainWorkFile(root, path),
+  };
 }
 
 /** The git id of a file or folder of a commit: what identifies content wherever it lies. @returns null when there is none */

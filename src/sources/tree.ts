@@ -16,4 +16,9 @@ export interface SourceTree {
   entries(): Promise<readonly TreeEntry[]>;
   /** null when there is no such file, when it is a link or leads outside the root, or when a clone lacks the object. */
   read(path: string): Promise<Uint8Array | null>;
+  /**
+   * Absolute path of a plain file of the work tree, for what is too large to be read whole. Absent where files lie in git's objects;
+   * null where `read` gives null for another reason than length.
+   */
+  onDisk?(path: string): Promise<string | null>;
 }

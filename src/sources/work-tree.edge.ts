@@ -73,6 +73,17 @@ export async function readWorkFile(root: string, path: string): Promise<Uint8Arr
   }
 }
 
+/** Absolute path of a plain file, however long; null where readWorkFile gives null for a link, a device or a way out. */
+export async function plainWorkFile(root: string, path: string): Promise<string | null> {
+  const kind = await kindAt(root, path);
+  if (kind !== 'file') return null;
+  const file = absolute(root, bytesFromPath(path));
+  const folder = await realpath(parentOf(file), { encoding: 'buffer' }).catch(() => null);
+  // A name that is not UTF-8 cannot be handed to libraries that open files by themselves.
+  const text = file.toString('utf8');
+  return folder?.equals(parentOf(file)) === true && Buffer.from(text).equals(file) ? text : null;
+}
+
 async function kindAt(root: string, path: string): Promise<TreeEntry['kind'] | null> {
   if (!staysInside(path)) return null;
   const file = absolute(root, bytesFromPath(path));

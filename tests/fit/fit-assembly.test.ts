@@ -503,7 +503,7 @@ describe('tables', () => {
       bytes: 8,
       shape: [71],
       attributes: {},
-      axis: { first: 1, last: 7, spacing: 'linear' as const },
+      axis: { first: 1, last: 7, spacing: 'linear' as const, points: 61 },
     };
     const changed = table('spacing: log10');
     const [from, to] = changed[EOS]!;
