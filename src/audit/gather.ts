@@ -29,7 +29,11 @@ import { pluggedModules } from './validated.ts';
 
 export const STEPS = ['manifests', 'joints', 'constants', 'history', 'register', 'cases'] as const;
 export type AuditStep = (typeof STEPS)[number];
-export type AuditEvent = { readonly what: 'step'; readonly step: AuditStep } | RunEvent;
+export type AuditEvent =
+  | { readonly what: 'step'; readonly step: AuditStep }
+  /** Commits read so far, of all that must be. */
+  | { readonly what: 'read'; readonly done: number; readonly of: number }
+  | RunEvent;
 
 export interface AuditRequest {
   readonly root: string;
@@ -46,6 +50,8 @@ export interface AuditRequest {
   /** True for a case that is not to be run now: its result is taken only if it is kept from before. */
   readonly onlyKept?: (name: string) => boolean;
   readonly signal: AbortSignal;
+  /** False leaves history alone, for a first look. */
+  readonly history?: boolean;
   readonly onEvent?: (event: AuditEvent) => void;
 }
 
@@ -76,9 +82,13 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
   say({ what: 'step', step: 'constants' });
   findings.push(...constantFindings(manifests, interfaces), ...callerFindings(manifests, interfaces));
 
-  say({ what: 'step', step: 'history' });
-  const history = await historyOf(request, listing.commit);
-  findings.push(...history.findings);
+  let steps: readonly ModuleStep[] = [];
+  if (request.history !== false) {
+    say({ what: 'step', step: 'history' });
+    const history = await historyOf(request, listing.commit);
+    findings.push(...history.findings);
+    steps = history.steps;
+  }
 
   say({ what: 'step', step: 'register' });
   findings.push(...noticeFindings(new Register(root).notices(), manifests));
@@ -123,7 +133,7 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
     now: new Date().toISOString(),
     joints: fit.joints,
     interfaces,
-    steps: history.steps,
+    steps,
   };
 }
 
@@ -155,7 +165,11 @@ async function historyOf(
     const report = await drift(
       repository,
       { from: null, to: commit },
-      { folder: request.manifestFolder, signal: request.signal },
+      {
+        folder: request.manifestFolder,
+        signal: request.signal,
+        onProgress: (done, of) => request.onEvent?.({ what: 'read', done, of }),
+      },
     );
     // What no manifest declares any more is history, not part of this code.
     const isDeclared = (module: string | undefined) =>

@@ -1,7 +1,7 @@
 /** `mortise audit`: the gate before a campaign. */
 import { type Audit, audit } from '../audit/audit.ts';
 import { gateReasons, sealedText, unseal } from '../audit/clearance.ts';
-import { type AuditEvent, type GatheredCode, gather, treeIdOf } from '../audit/gather.ts';
+import { type AuditEvent, type AuditRequest, type GatheredCode, gather, treeIdOf } from '../audit/gather.ts';
 import { manifestsUnreadable } from '../manifests/load-manifests.ts';
 import { auditReport } from '../report/audit-report.ts';
 import { findingsText } from '../report/finding-text.ts';
@@ -78,7 +78,7 @@ export async function auditOpened(
   invocation: Invocation,
   surroundings: Surroundings,
   onEvent: (event: AuditEvent) => void,
-  onlyKept?: (name: string) => boolean,
+  parts: Pick<AuditRequest, 'onlyKept' | 'history'> = {},
 ): Promise<Audited> {
   const jobs = jobsOf(invocation);
   const { executor } = invocation.options;
@@ -92,7 +92,7 @@ export async function auditOpened(
     run: invocation.options['no-run'] !== true,
     signal: surroundings.signal,
     onEvent,
-    ...(onlyKept === undefined ? {} : { onlyKept }),
+    ...parts,
     ...(jobs === undefined ? {} : { jobs }),
     ...(typeof executor === 'string' ? { executor } : {}),
   });

@@ -35,6 +35,8 @@ export class ScreenSession {
   private readonly surroundings: Surroundings;
   private opened: OpenedCode;
   private audited: Audited | null = null;
+  /** Without history; shown until the first audit is whole. */
+  private firstLook: Audited | null = null;
   private swaps: readonly CaseSwap[] = [];
   private job: Known['job'] = null;
   private jobControl: AbortController | null = null;
@@ -83,14 +85,18 @@ export class ScreenSession {
   audit(runs: (name: string) => boolean): Promise<void> {
     return this.work('audit', async (signal) => {
       this.signature = await codeSignature(this.opened);
-      const audited = await auditOpened(
-        this.opened,
-        this.invocation,
-        { ...this.surroundings, signal },
-        (event) => this.follow(event),
-        (name) => !runs(name),
-      );
-      if (!signal.aborted) this.audited = audited;
+      const surroundings = { ...this.surroundings, signal };
+      const follow = (event: AuditEvent) => this.follow(event);
+      // What a moment's reading tells comes first: the history of an old code takes minutes the first time.
+      if (this.audited === null) {
+        const parts = { history: false, onlyKept: () => true };
+        this.firstLook = await auditOpened(this.opened, this.invocation, surroundings, follow, parts);
+        this.settled = null;
+        this.changed();
+      }
+      const parts = { onlyKept: (name: string) => !runs(name) };
+      const whole = await auditOpened(this.opened, this.invocation, surroundings, follow, parts);
+      if (!signal.aborted) this.audited = whole;
     });
   }
 
@@ -148,8 +154,9 @@ export class ScreenSession {
   private known(): Omit<Known, 'register'> & { register: null } {
     return {
       manifests: this.opened.set,
-      gathered: this.audited?.gathered ?? null,
-      audit: this.audited?.audit ?? null,
+      gathered: (this.audited ?? this.firstLook)?.gathered ?? null,
+      audit: (this.audited ?? this.firstLook)?.audit ?? null,
+      whole: this.audited !== null,
       swaps: this.swaps,
       register: null,
       job: this.job,
@@ -196,6 +203,7 @@ export class ScreenSession {
 
   private follow(event: AuditEvent): void {
     if (event.what === 'step') this.job = { says: event.step, done: this.job?.done ?? 0 };
+    if (event.what === 'read') this.job = { says: `commits ${event.done} of ${event.of}`, done: event.done / event.of };
     if (event.what === 'planned') {
       for (const one of event.cases)
         this.running.set(one.case, { state: 'waiting', seconds: null, expectedSeconds: one.expectedSeconds, since: 0 });

@@ -55,14 +55,14 @@ function standing({ assembly: view, cases: all }: Views): Line[] {
   const notRun = all.filter((one) => one.state === 'not run').length;
   return [
     line(`revision ${view.revision}  ${changed}`, span(asOf, 'faint')),
-    line('Can the campaign start?  ', answer(view.outcome, notRun)),
+    line('Can the campaign start?  ', answer(view, notRun)),
     ...view.why.slice(0, 3).map((why) => line(`  - ${why}`)),
     ...(view.why.length > 3 ? [line(`  and ${view.why.length - 3} more, on the findings screen`)] : []),
   ];
 }
 
-function answer(outcome: AssemblyView['outcome'], notRun: number): Span {
-  if (outcome === null) return span('not audited yet', 'warm');
+function answer({ outcome, job }: AssemblyView, notRun: number): Span {
+  if (outcome === null) return span(job === null ? 'not audited yet' : 'being audited', 'warm');
   if (outcome === 'held') return span('No: held', 'alarm');
   if (notRun > 0)
     return span(`not known: ${notRun} ${notRun === 1 ? 'case is' : 'cases are'} not run (C, then A)`, 'warm');

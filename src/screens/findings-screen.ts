@@ -18,7 +18,15 @@ export const findingsScreen: Screen = {
   draw(views, state, size, glyphs) {
     const shown = findings(views, state);
     if (shown.length === 0)
-      return [line(views.findings.length === 0 ? 'Nothing was found.' : 'Nothing found holds these words.')];
+      return [
+        line(
+          views.findings.length > 0
+            ? 'Nothing found holds these words.'
+            : views.assembly.outcome === null
+              ? 'Nothing was found so far.'
+              : 'Nothing was found.',
+        ),
+      ];
     const widths = [8, Math.min(26, Math.floor(size.columns / 4)), 0];
     widths[2] = Math.max(10, size.columns - widths[0]! - widths[1]! - 6);
     return listLines(shown.length, state.chosen, size.rows, glyphs, (index) => {

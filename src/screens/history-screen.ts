@@ -18,7 +18,11 @@ export const historyScreen: Screen = {
     const history = shown[state.chosen];
     if (state.depth > 0 && history !== undefined) return steps(history, state, size, glyphs);
     if (shown.length === 0)
-      return [line('No history was read. Run "mortise audit" or "mortise drift" in a git repository.')];
+      return [
+        line(
+          views.assembly.job === null ? 'No history: this code is in no git repository.' : 'The history is being read.',
+        ),
+      ];
     const cells = shown.map((one) => listCells(one));
     return tableLines(LIST_HEADS, cells, state.chosen, { columns: size.columns, room: size.rows }, [5, 0], glyphs);
   },

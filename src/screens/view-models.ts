@@ -35,6 +35,8 @@ export interface Known {
   /** What was audited; null before the first audit has ended. */
   readonly gathered: GatheredCode | null;
   readonly audit: Audit | null;
+  /** False while only a first look was had, which answers nothing for certain. */
+  readonly whole: boolean;
   /** Swaps made since the screens were opened. */
   readonly swaps: readonly CaseSwap[];
   readonly register: RegisterView | null;
@@ -128,7 +130,7 @@ function assemblyView(known: Known): AssemblyView {
     title: printable(assembly?.title ?? assembly?.assembly ?? 'no assembly'),
     revision: gathered?.revision?.slice(0, 10) ?? 'none',
     changed: gathered?.changed ?? [],
-    outcome: audit?.outcome ?? null,
+    outcome: known.whole ? (audit?.outcome ?? null) : null,
     why: (audit?.open ?? []).filter((one) => one.gravity !== 'note').map((one) => printable(one.says)),
     parts: Object.entries(assembly?.plugged ?? {}).map(([component, module]) => partView(component, module, known)),
     campaign:
