@@ -10,6 +10,7 @@ import type { Finding } from '../model/finding.ts';
 import type { FileInterface } from '../model/interface.ts';
 import type { ManifestSet } from '../model/manifest.ts';
 import { checkCode } from '../readers/callers/check-code.ts';
+import { promotionOf } from '../readers/promotion.ts';
 import { Register } from '../register/register.edge.ts';
 import type { CaseOutcome } from '../runs/case-outcome.ts';
 import { contentId } from '../runs/key.ts';
@@ -80,7 +81,10 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
   const ids = new Map(listing.files.map((file) => [file.path, file.id]));
 
   say({ what: 'step', step: 'constants' });
-  findings.push(...constantFindings(manifests, interfaces), ...callerFindings(manifests, interfaces));
+  const build = manifests.assembly?.value.build;
+  // Without a build in the assembly, the code's own makefiles say what they promote.
+  const promote = build === undefined ? ((await promotionOf(tree))?.bytes ?? {}) : (build.promote ?? {});
+  findings.push(...constantFindings(manifests, interfaces, promote), ...checkCode(interfaces, { promote }));
 
   let steps: readonly ModuleStep[] = [];
   if (request.history !== false) {
@@ -137,21 +141,15 @@ export async function gather(request: AuditRequest): Promise<GatheredCode> {
   };
 }
 
-function constantFindings(manifests: ManifestSet, interfaces: ReadonlyMap<string, FileInterface>): readonly Finding[] {
+function constantFindings(
+  manifests: ManifestSet,
+  interfaces: ReadonlyMap<string, FileInterface>,
+  promote: Readonly<Record<string, number>>,
+): readonly Finding[] {
   const owners = new Map(
     [...manifests.modules].flatMap(([name, { value }]) => value.source.files.map((file) => [file, name] as const)),
   );
-  const promote = manifests.assembly?.value.build?.promote;
-  return census(interfaces, {
-    moduleOf: (file) => owners.get(file) ?? file,
-    ...(promote === undefined ? {} : { promote }),
-  }).findings;
-}
-
-/** Between the modules that manifests declare; "mortise callers" looks at all of the code. */
-function callerFindings(manifests: ManifestSet, interfaces: ReadonlyMap<string, FileInterface>): readonly Finding[] {
-  const promote = manifests.assembly?.value.build?.promote;
-  return checkCode(interfaces, promote === undefined ? {} : { promote });
+  return census(interfaces, { moduleOf: (file) => owners.get(file) ?? file, promote }).findings;
 }
 
 async function historyOf(

@@ -1,10 +1,10 @@
 /** `mortise callers [PATH…]`: does every call fit what it calls. */
-import { findAssembly } from '../manifests/manifest-files.edge.ts';
 import { hasStop } from '../model/finding.ts';
 import { checkCode } from '../readers/callers/check-code.ts';
 import { findingsText } from '../report/finding-text.ts';
-import { type Command, EXIT, UsageError } from './command.ts';
-import { openCode } from './open-code.ts';
+import { openTree } from '../sources/open-tree.edge.ts';
+import { type Command, EXIT } from './command.ts';
+import { promotedIn, REAL_BYTES } from './promotion.ts';
 import { readPaths } from './read-paths.ts';
 import { textOptions } from './text-options.ts';
 
@@ -19,11 +19,7 @@ export const command: Command = {
       value: 'NAME=VALUE',
       says: 'a preprocessor name; branches it rules out are not read',
     },
-    'real-bytes': {
-      type: 'string',
-      value: 'N',
-      says: 'bytes that the build gives default reals; the assembly says it where there is one',
-    },
+    'real-bytes': REAL_BYTES,
   },
   help: `
 Reads every source file, or those under the paths, and holds each call against the definition: number of arguments, keywords,
@@ -33,23 +29,17 @@ is only wrong when it fits none. What old codes do on purpose is told once a cal
 
 Exit status: 0 nothing of gravity stop, 1 at least one stop, 2 wrong usage.`,
   async run(invocation, surroundings) {
-    const bytes = invocation.options['real-bytes'];
-    if (bytes !== undefined && bytes !== '4' && bytes !== '8') throw new UsageError('--real-bytes takes 4 or 8');
     const words = invocation.words.length === 0 ? ['.'] : invocation.words;
     const { files, revision } = await readPaths(words, invocation, surroundings);
     if (surroundings.signal.aborted) return EXIT.interrupted;
-    const declared = findAssembly(surroundings.cwd) === null ? null : await openCode(invocation, surroundings);
-    const promote =
-      bytes !== undefined
-        ? { real: Number(bytes) }
-        : declared?.place == null
-          ? undefined
-          : declared.set.assembly?.value.build?.promote;
-    const findings = checkCode(new Map(Object.entries(files)), promote === undefined ? {} : { promote });
+    const { at } = invocation.options;
+    const tree = await openTree(surroundings.cwd, typeof at === 'string' ? at : undefined);
+    const { promote, says } = await promotedIn(tree, invocation, surroundings);
+    const findings = checkCode(new Map(Object.entries(files)), { promote });
     surroundings.out(
       invocation.options.json === true
-        ? `${JSON.stringify({ document: 'mortise callers', revision, files: Object.keys(files).length, findings }, null, 2)}\n`
-        : `${Object.keys(files).length} files read\n\n${findingsText(findings, textOptions(invocation, surroundings))}`,
+        ? `${JSON.stringify({ document: 'mortise callers', revision, files: Object.keys(files).length, promote, findings }, null, 2)}\n`
+        : `${Object.keys(files).length} files read\n${says === '' ? '' : `${says}\n`}\n${findingsText(findings, textOptions(invocation, surroundings))}`,
     );
     return hasStop(findings) ? EXIT.stop : EXIT.ok;
   },

@@ -8,6 +8,7 @@ import { findingsText } from '../report/finding-text.ts';
 import { openTree } from '../sources/open-tree.edge.ts';
 import type { SourceTree } from '../sources/tree.ts';
 import { type Command, EXIT, type ExitStatus, UsageError } from './command.ts';
+import { promotedIn, REAL_BYTES } from './promotion.ts';
 import { textOptions } from './text-options.ts';
 
 export const command: Command = {
@@ -15,11 +16,7 @@ export const command: Command = {
   answers: 'which physical constants, of which edition, where they disagree',
   usage: 'mortise constants [PATH…] [--at REV]',
   options: {
-    'real-bytes': {
-      type: 'string',
-      value: 'N',
-      says: 'bytes that the build gives default reals: 4, or 8 when it promotes them',
-    },
+    'real-bytes': REAL_BYTES,
   },
   help: [
     'Reads every source file under the paths (all of the code when none is named) and lists physical constants with the CODATA edition or IAU',
@@ -29,23 +26,23 @@ export const command: Command = {
   ].join('\n'),
   async run(invocation, surroundings): Promise<ExitStatus> {
     const { at, json } = invocation.options;
-    const bytes = invocation.options['real-bytes'];
-    if (bytes !== undefined && bytes !== '4' && bytes !== '8') throw new UsageError('--real-bytes takes 4 or 8');
     const tree = await openTree(surroundings.cwd, typeof at === 'string' ? at : undefined);
     const { files, unread } = await readAll(tree, invocation.words, surroundings.signal);
     if (surroundings.signal.aborted) return EXIT.interrupted;
     if (files.size === 0 && invocation.words.length > 0)
       throw new UsageError(`no source file lies under ${invocation.words.map(printable).join(', ')}`);
+    const { promote, says } = await promotedIn(tree, invocation, surroundings);
     const result = census(files, {
-      ...(bytes === undefined ? {} : { promote: { real: Number(bytes) } }),
+      promote,
       ...(tree.revision === null ? {} : { revision: tree.revision }),
     });
     if (json === true) {
       const { constants, findings } = result;
       surroundings.out(
-        `${JSON.stringify({ revision: tree.revision, files: files.size, unread, constants, findings })}\n`,
+        `${JSON.stringify({ revision: tree.revision, files: files.size, unread, promote, constants, findings })}\n`,
       );
     } else {
+      if (says !== '') surroundings.out(`${says}\n\n`);
       surroundings.out(table(result.constants));
       surroundings.out(findingsText(result.findings, textOptions(invocation, surroundings)));
       if (unread.length > 0)

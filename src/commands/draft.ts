@@ -4,6 +4,7 @@ import { isVersionFile, versionIn, versionOfTag } from '../history/version-text.
 import { printable } from '../model/printable.ts';
 import { draftModules } from '../readers/draft/draft-modules.ts';
 import { assemblyDraftText, type DraftVersion, moduleDraftText } from '../readers/draft/draft-text.ts';
+import { promotionOf } from '../readers/promotion.ts';
 import { decodeText } from '../readers/read-source.ts';
 import { findRepository } from '../sources/find-repository.edge.ts';
 import { openRepository, openTree } from '../sources/open-tree.edge.ts';
@@ -48,7 +49,7 @@ Exit status: 0, also when everything was there already; 2 wrong usage.`,
         file: `manifests/modules/${module.module}.yaml`,
         text: moduleDraftText(module, version),
       })),
-      { file: 'manifests/assembly.yaml', text: assemblyDraftText(nameOf(tree.root), modules) },
+      { file: 'manifests/assembly.yaml', text: assemblyDraftText(nameOf(tree.root), modules, await promotionOf(tree)) },
     ];
     const results = [];
     for (const { file, text } of drafts) {

@@ -1,5 +1,7 @@
 /** A drafted module as the text of a manifest, with what was read and where in comments. Pure. */
+
 import { printable } from '../../model/printable.ts';
+import type { Promotion } from '../promotion.ts';
 import type { DraftedArgument, DraftedModule } from './draft-modules.ts';
 
 export interface DraftVersion {
@@ -40,7 +42,11 @@ function unitText(arg: DraftedArgument): string {
 }
 
 /** Text of `manifests/assembly.yaml`: the first module of each component is plugged in, the others stand in a comment. */
-export function assemblyDraftText(name: string, modules: readonly DraftedModule[]): string {
+export function assemblyDraftText(
+  name: string,
+  modules: readonly DraftedModule[],
+  promotion: Promotion | null = null,
+): string {
   const byComponent = new Map<string, DraftedModule[]>();
   for (const module of modules) {
     if (module.component === 'unknown') continue;
@@ -60,8 +66,22 @@ export function assemblyDraftText(name: string, modules: readonly DraftedModule[
               .join(', ')}${others.length > 8 ? ', …' : ''}`;
       return `  ${component}: ${first!.module}${rest}`;
     }),
+    ...buildLines(promotion),
   ];
   return `${lines.map(oneLine).join('\n')}\n`;
+}
+
+/** A build can't be guessed; the switches of the makefiles can be read. Both wait as comments for someone who knows. */
+function buildLines(promotion: Promotion | null): string[] {
+  if (promotion === null) return [];
+  const bytes = Object.entries(promotion.bytes).map(([type, size]) => `${type}: ${size}`);
+  const said = promotion.said.map(({ place, text }) => `${text} in ${place.file}:${place.line}`);
+  return [
+    '# build:',
+    '#   run: make     # unknown: the command that builds it',
+    '#   makes: [bin]  # unknown: what it makes',
+    `#   promote: {${bytes.join(', ')}}  # ${said.join(', ')}; holds already while no build is stated`,
+  ];
 }
 
 /** Nothing from the source may end a comment or a line. */
