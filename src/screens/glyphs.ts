@@ -11,6 +11,8 @@ export interface Glyphs {
   readonly full: string;
   readonly empty: string;
   readonly point: string;
+  /** A step on a time line that stays inside its module. */
+  readonly slight: string;
   /** A step on a time line whose change was not declared. */
   readonly undeclared: string;
   /** Below the chosen step of a time line. */
@@ -34,6 +36,7 @@ export const UNICODE: Glyphs = {
   full: '▰',
   empty: '▱',
   point: '●',
+  slight: '┼',
   undeclared: '╳',
   here: '┴',
   steps: ['▁', '▂', '▃', '▄', '▅', '▆', '▇', '█'],
@@ -55,6 +58,7 @@ export const ASCII: Glyphs = {
   full: '#',
   empty: '.',
   point: 'o',
+  slight: '+',
   undeclared: 'X',
   here: '^',
   steps: ['.', '.', ':', ':', '|', '|', '#', '#'],

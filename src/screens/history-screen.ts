@@ -6,13 +6,15 @@ import type { Glyphs } from './glyphs.ts';
 import { matching } from './list.ts';
 import { type Screen, type ScreenState, still, withState } from './screen.ts';
 import { tableLines } from './table-lines.ts';
-import { timeLines } from './time-lines.ts';
+import { CROSSES_THE_JOINT, timeLines } from './time-lines.ts';
 import type { HistoryView, StepView, Views } from './views.ts';
 
 export const historyScreen: Screen = {
   letter: 'h',
   count: (views, state) =>
-    state.depth === 0 ? histories(views, state).length : (histories(views, state)[state.chosen]?.steps.length ?? 0),
+    state.depth === 0
+      ? histories(views, state).length
+      : stepsShown(histories(views, state)[state.chosen], state).length,
   draw(views, state, size, glyphs) {
     const shown = histories(views, state);
     const history = shown[state.chosen];
@@ -34,7 +36,7 @@ export const historyScreen: Screen = {
     const shown = histories(views, state);
     const history = shown[state.chosen];
     return state.depth > 0 && history !== undefined
-      ? [STEP_HEADS, ...history.steps.map((one) => stepCells(one).map(cellText))]
+      ? [STEP_HEADS, ...stepsShown(history, state).map((one) => stepCells(one).map(cellText))]
       : [LIST_HEADS, ...shown.map((one) => listCells(one).map(cellText))];
   },
   drawing(views, state) {
@@ -49,10 +51,13 @@ export const historyScreen: Screen = {
       : state.depth === 1
         ? [
             ['Enter', 'open the step'],
+            ['I', state.narrow ? 'all steps' : 'interface steps only'],
             ['Esc', 'all modules'],
           ]
         : [['Esc', 'all steps']],
   press(app, state, key) {
+    if ('character' in key && key.character.toLowerCase() === 'i' && state.depth === 1)
+      return still(withState(app, { narrow: !state.narrow, inner: 0 }));
     if ('named' in key && (key.named === 'enter' || key.named === 'right') && state.depth === 1)
       return still(withState(app, { depth: 2, scroll: 0 }));
     return undefined;
@@ -92,13 +97,20 @@ function stepCells(one: StepView): (string | Span)[] {
   ];
 }
 
+/** All steps, or those that whoever is plugged to the module can notice. */
+function stepsShown(history: HistoryView | undefined, state: ScreenState): readonly StepView[] {
+  const all = history?.steps ?? [];
+  return state.narrow ? all.filter((one) => one.undeclared || CROSSES_THE_JOINT.has(one.asked)) : all;
+}
+
 function steps(history: HistoryView, state: ScreenState, size: Size, glyphs: Glyphs): Line[] {
   const lineage = history.lineage.slice(0, 3).map((text) => line(span(text, 'faint')));
-  const through = timeLines(history.steps, state.inner, size.columns, glyphs);
+  const all = stepsShown(history, state);
+  const through = timeLines(all, state.inner, size.columns, glyphs);
   const room = Math.max(4, size.rows - 2 - through.length - lineage.length);
-  const cells = history.steps.map(stepCells);
+  const cells = all.map(stepCells);
   return [
-    line(span(history.module, 'strong'), `  ${history.steps.length} steps`),
+    line(span(history.module, 'strong'), `  ${all.length} of ${history.steps.length} steps`),
     ...through,
     line(''),
     ...tableLines(STEP_HEADS, cells, state.inner, { columns: size.columns, room }, [3], glyphs),
@@ -107,7 +119,7 @@ function steps(history: HistoryView, state: ScreenState, size: Size, glyphs: Gly
 }
 
 function step(history: HistoryView, state: ScreenState): Line[] {
-  const one: StepView | undefined = history.steps[state.inner];
+  const one: StepView | undefined = stepsShown(history, state)[state.inner];
   if (one === undefined) return [line('No such step.')];
   return [
     line(span(`${history.module}  ${one.version ?? ''}`, 'strong'), `  ${one.date}  ${one.author}`),

@@ -34,6 +34,8 @@ export interface ScreenState {
   readonly from: number;
   readonly to: number;
   readonly logValue: boolean;
+  /** Leave out the rows that matter to nobody outside. */
+  readonly narrow: boolean;
   /** Names of rows taken together. */
   readonly taken: readonly string[];
 }
@@ -48,6 +50,7 @@ export const FRESH: ScreenState = {
   from: 0,
   to: 1,
   logValue: false,
+  narrow: false,
   taken: [],
 };
 

@@ -3,6 +3,13 @@ import { type Line, line, span } from './frame.ts';
 import type { Glyphs } from './glyphs.ts';
 import type { StepView } from './views.ts';
 
+/** Bumps asked by a change that whoever is plugged to the module can notice. */
+export const CROSSES_THE_JOINT: ReadonlySet<string> = new Set(['minor', 'major']);
+
+function weight(sign: string, glyphs: Glyphs): number {
+  return [glyphs.slight, glyphs.point, glyphs.undeclared].indexOf(sign);
+}
+
 /** @returns three lines, or none when there is nothing to set on a line */
 export function timeLines(steps: readonly StepView[], chosen: number, columns: number, glyphs: Glyphs): Line[] {
   const times = steps.map((one) => Date.parse(one.date)).filter(Number.isFinite);
@@ -16,8 +23,9 @@ export function timeLines(steps: readonly StepView[], chosen: number, columns: n
   let free = 0;
   steps.forEach((one, index) => {
     const column = at(times[index]!);
-    // A step that was not declared is never hidden by one that was.
-    if (rail[column] !== glyphs.undeclared) rail[column] = one.undeclared ? glyphs.undeclared : glyphs.point;
+    // Of the steps that fall on one place the gravest is seen.
+    const sign = one.undeclared ? glyphs.undeclared : CROSSES_THE_JOINT.has(one.asked) ? glyphs.point : glyphs.slight;
+    if (weight(sign, glyphs) > weight(rail[column]!, glyphs)) rail[column] = sign;
     const version = index === 0 || one.version !== steps[index - 1]!.version ? one.version : null;
     if (version === null || column < free || column + version.length > width) return;
     versions.splice(column, version.length, ...version);

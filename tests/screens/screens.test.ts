@@ -150,6 +150,11 @@ describe('a module through time', () => {
     const rows = shown(type(['h', { named: 'enter' }], startApp(views)).app).split('\n');
     const rail = rows.find((one) => one.startsWith('2021 '));
     expect(rail).toMatch(/^2021 ╳─+● 2024$/);
+    const inside = { ...born!, date: '2022-05-01', undeclared: false, asked: 'patch' };
+    const three = { ...sampleViews, histories: [{ ...history!, steps: [born!, inside, steps[1]!] }] };
+    const opened = type(['h', { named: 'enter' }], startApp(three));
+    expect(shown(opened.app)).toMatch(/2021 ╳─+┼─+● 2024/);
+    expect(shown(type(['i'], opened.app).app)).toMatch(/2 of 3 steps[\s\S]*2021 ╳─+● 2024/);
   });
 });
 
