@@ -202,7 +202,7 @@ export class ScreenSession {
   }
 
   private follow(event: AuditEvent): void {
-    if (event.what === 'step') this.job = { says: event.step, done: this.job?.done ?? 0 };
+    if (event.what === 'step') this.job = { says: event.step, done: 0 };
     if (event.what === 'read') this.job = { says: `commits ${event.done} of ${event.of}`, done: event.done / event.of };
     if (event.what === 'planned') {
       for (const one of event.cases)

@@ -236,7 +236,9 @@ function header(app: App, size: Size, glyphs: Glyphs): Line {
   const right =
     job === null
       ? line(span(outcome ?? 'not audited', style), ' ')
-      : line(`${job.says} `, span(progressBar(job.done, 10, glyphs), 'strong'), ` ${Math.round(job.done * 100)} % `);
+      : job.done === 0
+        ? line(`${job.says} ${glyphs.ellipsis} `)
+        : line(`${job.says} `, span(progressBar(job.done, 10, glyphs), 'strong'), ` ${Math.round(job.done * 100)} % `);
   return spread(line(' ', span(title, 'strong'), `  ${app.screen}`), right, size.columns);
 }
 

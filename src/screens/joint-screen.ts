@@ -13,7 +13,7 @@ import { fitLine, type Line, line, lineText, type Size, span } from './frame.ts'
 import type { Glyphs } from './glyphs.ts';
 import { listLines, matching } from './list.ts';
 
-import { type Screen, type ScreenState, still } from './screen.ts';
+import { type Screen, type ScreenState, still, withState } from './screen.ts';
 import type { HalfRow, JointRow, JointView, Seam, Views } from './views.ts';
 
 const SEAM_WORDS: Readonly<Record<Seam, string>> = { fits: 'fits', adapter: 'adapter', unfit: 'does not fit' };
@@ -66,6 +66,15 @@ export const jointScreen: Screen = {
         ],
   press(app, state, key) {
     const joint = joints(app.views, state)[state.chosen];
+    if (
+      state.depth === 0 &&
+      joint !== undefined &&
+      'named' in key &&
+      (key.named === 'enter' || key.named === 'right')
+    ) {
+      const first = joint.rows.findIndex((one) => one.seam !== 'fits');
+      return still(withState(app, { depth: 1, inner: Math.max(0, first) }));
+    }
     if (state.depth === 0 || joint === undefined || !('character' in key) || key.character.toLowerCase() !== 'w')
       return undefined;
     if (joint.adapter === null)
