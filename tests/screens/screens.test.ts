@@ -87,7 +87,8 @@ describe('joint', () => {
   });
 
   it('draws both domains and the footprint on one axis', () => {
-    const text = shown(type(['j', { named: 'enter' }]).app);
+    expect(shown(type(['j', { named: 'enter' }]).app)).toMatch(/▶ internal-energy/);
+    const text = shown(type(['j', { named: 'enter' }, { named: 'home' }]).app);
     expect(text).toMatch(/expects +▄+ +1e-26 to 1e-18/);
     expect(text).toMatch(/offers +▀+ +1e-28 to 1e-10/);
     expect(text).toMatch(/visited +━+ +1e-24 to 1e-20/);
