@@ -5,7 +5,7 @@ import { findingsText } from '../report/finding-text.ts';
 import { openTree } from '../sources/open-tree.edge.ts';
 import { type Command, EXIT } from './command.ts';
 import { promotedIn, REAL_BYTES } from './promotion.ts';
-import { readPaths } from './read-paths.ts';
+import { DEFINE, readPaths } from './read-paths.ts';
 import { textOptions } from './text-options.ts';
 
 export const command: Command = {
@@ -13,12 +13,7 @@ export const command: Command = {
   answers: 'does every call fit what it calls, in all of the code',
   usage: 'mortise callers [PATH…] [--at REV]',
   options: {
-    define: {
-      type: 'string',
-      multiple: true,
-      value: 'NAME=VALUE',
-      says: 'a preprocessor name; branches it rules out are not read',
-    },
+    define: DEFINE,
     'real-bytes': REAL_BYTES,
   },
   help: `

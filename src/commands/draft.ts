@@ -11,19 +11,14 @@ import { openRepository, openTree } from '../sources/open-tree.edge.ts';
 import type { SourceTree } from '../sources/tree.ts';
 import { type Command, EXIT } from './command.ts';
 import { readIfThere, writeNew } from './files.edge.ts';
-import { readPaths } from './read-paths.ts';
+import { DEFINE, readPaths } from './read-paths.ts';
 
 export const command: Command = {
   name: 'draft',
   answers: 'writes manifests for code that has none',
   usage: 'mortise draft [PATH…]',
   options: {
-    define: {
-      type: 'string',
-      multiple: true,
-      value: 'NAME=VALUE',
-      says: 'a preprocessor name; branches it rules out are not read',
-    },
+    define: DEFINE,
   },
   help: `
 Reads the sources below the paths, or all of the code, and writes manifests/modules/NAME.yaml for each file that offers

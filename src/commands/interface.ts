@@ -3,19 +3,14 @@ import type { Declared, FileInterface, TableAxisRead } from '../model/interface.
 import { printable } from '../model/printable.ts';
 import { shortNumber } from '../model/short-number.ts';
 import { type Command, EXIT, UsageError } from './command.ts';
-import { readPaths } from './read-paths.ts';
+import { DEFINE, readPaths } from './read-paths.ts';
 
 export const command: Command = {
   name: 'interface',
   answers: 'what a reader sees in source files and tables',
   usage: 'mortise interface PATH… [--at REV]',
   options: {
-    define: {
-      type: 'string',
-      multiple: true,
-      value: 'NAME=VALUE',
-      says: 'a preprocessor name; branches it rules out are not read',
-    },
+    define: DEFINE,
   },
   help: `
 Reads files, or every source file and table below folders, in the work tree or straight from git at a revision. Nothing is

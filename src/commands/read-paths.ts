@@ -3,8 +3,15 @@ import type { FileInterface } from '../model/interface.ts';
 import { isSource, languageOf, readSource, readSourceFile } from '../readers/read-source.ts';
 import { openTree } from '../sources/open-tree.edge.ts';
 import type { SourceTree } from '../sources/tree.ts';
-import { type Invocation, type Surroundings, UsageError } from './command.ts';
+import { type Invocation, type OptionSpec, type Surroundings, UsageError } from './command.ts';
 import { insideTree } from './paths.edge.ts';
+
+export const DEFINE: OptionSpec = {
+  type: 'string',
+  multiple: true,
+  value: 'NAME=VALUE',
+  says: 'a preprocessor name; branches it rules out are not read',
+};
 
 export interface ReadPaths {
   /** Path in the repository to interface, in the order of the paths. */

@@ -1,25 +1,7 @@
-import { Readable } from 'node:stream';
 import { describe, expect, it } from 'vitest';
-import { dispatch } from '../../src/commands/run-command-line.ts';
+import { mortiseIn } from '../support/run-mortise.ts';
 
-async function unit(words: readonly string[], input = ''): Promise<{ status: number; out: string; err: string }> {
-  let [out, err] = ['', ''];
-  const status = await dispatch(['unit', ...words], {
-    cwd: '/',
-    env: {},
-    stdin: Readable.from(input === '' ? [] : [Buffer.from(input)]),
-    stdoutIsTerminal: false,
-    columns: 80,
-    out: (text) => {
-      out += text;
-    },
-    err: (text) => {
-      err += text;
-    },
-    signal: new AbortController().signal,
-  });
-  return { status, out, err };
-}
+const unit = (words: readonly string[], input = '') => mortiseIn({ cwd: '/', env: {}, input }, ['unit', ...words]);
 
 describe('mortise unit', () => {
   it('answers factor and dimension', async () => {

@@ -1,7 +1,7 @@
 import { existsSync, readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
-import { dispatch } from '../../src/commands/run-command-line.ts';
+import { mortiseIn } from '../support/run-mortise.ts';
 import { CALLER, TinyCode } from './tiny-code.ts';
 
 let code: TinyCode;
@@ -10,25 +10,7 @@ beforeEach(() => {
 });
 afterEach(() => code.remove());
 
-async function mortise(...words: string[]) {
-  let out = '';
-  let err = '';
-  const status = await dispatch(words, {
-    cwd: code.root,
-    env: CALLER,
-    stdin: process.stdin,
-    stdoutIsTerminal: false,
-    columns: 100,
-    out: (text) => {
-      out += text;
-    },
-    err: (text) => {
-      err += text;
-    },
-    signal: new AbortController().signal,
-  });
-  return { status, out, err };
-}
+const mortise = (...words: string[]) => mortiseIn({ cwd: code.root, env: CALLER }, words);
 const record = () => mortise('rerun', 'shock', '--record', '--reason', 'agrees with the exact solution');
 
 describe('mortise rerun', () => {

@@ -14,12 +14,26 @@ export interface Ran {
   readonly err: string;
 }
 
-export async function mortise(cwd: string, ...words: readonly string[]): Promise<Ran> {
+export interface Setting {
+  readonly cwd: string;
+  readonly env?: Readonly<Record<string, string | undefined>>;
+  /** What stands on standard input. */
+  readonly input?: string;
+}
+
+export function mortise(cwd: string, ...words: readonly string[]): Promise<Ran> {
+  return mortiseIn({ cwd }, words);
+}
+
+export async function mortiseIn(
+  { cwd, env = process.env, input = '' }: Setting,
+  words: readonly string[],
+): Promise<Ran> {
   let [out, err] = ['', ''];
   const status = await dispatch(words, {
     cwd,
-    env: process.env,
-    stdin: Readable.from([]),
+    env,
+    stdin: Readable.from(input === '' ? [] : [Buffer.from(input)]),
     stdoutIsTerminal: false,
     columns: 100,
     out: (text) => {
