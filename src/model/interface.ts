@@ -46,6 +46,7 @@ export interface Declared extends Position {
   readonly kind?: string;
   /** True when no declaration gives the type, only the implicit rule. */
   readonly implicit?: boolean;
+  /** Number of dimensions; -1 for assumed rank (`..`), which takes every one. */
   readonly rank: number;
   /** Bounds as written, an entry a dimension: `n`, `0:nz`, `:`, `*`, `..`. */
   readonly bounds: readonly string[];

@@ -42,24 +42,54 @@ export function claimsFromComment(
   options: CommentOptions = {},
 ): Claim[] {
   if (candidates.length === 0 || !WORTH_READING.test(text)) return [];
-  const from = options.from ?? 'comment';
-  const claims: Claim[] = [];
-  const seen = new Set<string>();
-  let subject: readonly string[] = [];
+  const reader = new CommentClaims(candidates, parent, options);
   const lines = (text.length > LONGEST ? text.slice(0, LONGEST) : text).split('\n');
-  for (let index = 0; index < lines.length; index++) {
-    const line = lines[index]!;
-    const heads = namesAtStart(line, candidates, options.caseSensitive === true);
-    if (heads.length > 0) subject = heads;
-    else if (options.block === true && /^[\s*!/#-]*$/.test(line)) subject = [];
-    if (!WORTH_READING.test(line)) continue;
-    const units = unitsInComment(line, candidates);
+  for (let index = 0; index < lines.length; index++)
+    reader.line(lines[index]!, position.line + index, index === 0 ? position.column : 1);
+  return reader.claims;
+}
+
+/** The claims of one comment, line by line; a block hands its subject on from line to line. */
+export class CommentClaims {
+  readonly claims: Claim[] = [];
+  private readonly candidates: Candidates;
+  private readonly parent: string | null;
+  private readonly options: CommentOptions;
+  private readonly seen = new Set<string>();
+  private subject: readonly string[] = [];
+
+  constructor(candidates: readonly string[], parent: string | null, options: CommentOptions = {}) {
+    this.candidates = new Candidates(candidates, options.caseSensitive === true);
+    this.parent = parent;
+    this.options = options;
+  }
+
+  /** A line of nothing but marks: what comes behind it speaks of something else. */
+  endSubject(): void {
+    this.subject = [];
+  }
+
+  /** A line that says nothing itself may name what the next lines speak of. */
+  subjectOf(line: string): void {
+    const heads = namesAtStart(line, this.candidates);
+    if (heads.length > 0) this.subject = heads;
+  }
+
+  /**
+   * @param line    the text without comment marks
+   * @param number  its line
+   * @param column  column of its first character
+   */
+  line(line: string, number: number, column: number): void {
+    const { candidates, options, seen, claims, parent } = this;
+    const from = options.from ?? 'comment';
+    const heads = namesAtStart(line, candidates);
+    if (heads.length > 0) this.subject = heads;
+    else if (options.block === true && /^[\s*!/#-]*$/.test(line)) this.subject = [];
+    if (!WORTH_READING.test(line)) return;
+    const units = unitsInComment(line, candidates.names);
     const conventions = conventionsIn(line);
-    if (units.length === 0 && conventions.length === 0) continue;
-    const at = (offset: number) => ({
-      line: position.line + index,
-      column: (index === 0 ? position.column : 1) + offset,
-    });
+    if (units.length === 0 && conventions.length === 0) return;
     const say = (name: string, what: Claim['what'], value: string, offset: number, place?: SaidUnit['place']) => {
       const key = `${name}\0${what}`;
       // The first word counts; several lines of one comment may repeat it in other units.
@@ -73,10 +103,11 @@ export function claimsFromComment(
         value,
         text: line.trim().slice(0, 200),
         from: bracket ? 'bracket' : from,
-        ...at(offset),
+        line: number,
+        column: column + offset,
       });
     };
-    for (const [name, unit] of assignUnits(line, units, candidates, heads, subject, options)) {
+    for (const [name, unit] of assignUnits(line, units, candidates, heads, this.subject, options)) {
       say(name, 'unit', unit.unit, unit.start, unit.place);
       const angle = /^(?:deg|degs|degrees?)$/i.test(unit.unit)
         ? 'degrees'
@@ -85,18 +116,41 @@ export function claimsFromComment(
           : null;
       if (angle !== null) say(name, 'angle', angle, unit.start, unit.place);
     }
-    const about =
-      heads.length > 0 ? heads : options.block === true ? subject : candidates.length <= 12 ? candidates : [];
+    const { names } = candidates;
+    const about = heads.length > 0 ? heads : options.block === true ? this.subject : names.length <= 12 ? names : [];
     for (const said of conventions) for (const name of about) say(name, said.what, said.value, said.at);
   }
-  return claims;
+}
+
+/** The names that a comment may be about, quick to ask when they are many. */
+class Candidates {
+  readonly names: readonly string[];
+  private readonly caseSensitive: boolean;
+  private readonly folded: ReadonlyMap<string, string> | null;
+
+  constructor(names: readonly string[], caseSensitive: boolean) {
+    this.names = names;
+    this.caseSensitive = caseSensitive;
+    this.folded =
+      names.length <= 8 ? null : new Map(names.map((name) => [caseSensitive ? name : name.toLowerCase(), name]));
+  }
+
+  /** The candidate that a word spells; null when it is none. */
+  lookUp(word: string): string | null {
+    if (this.folded !== null) return this.folded.get(this.caseSensitive ? word : word.toLowerCase()) ?? null;
+    if (this.names.includes(word)) return word;
+    if (this.caseSensitive) return null;
+    for (const name of this.names)
+      if (name.length === word.length && name.toLowerCase() === word.toLowerCase()) return name;
+    return null;
+  }
 }
 
 /** Which units belong to which names. */
 function assignUnits(
   line: string,
   units: readonly SaidUnit[],
-  candidates: readonly string[],
+  candidates: Candidates,
   heads: readonly string[],
   subject: readonly string[],
   options: CommentOptions,
@@ -105,12 +159,12 @@ function assignUnits(
   const named: [string, SaidUnit][] = [];
   const rest: SaidUnit[] = [];
   for (const unit of units) {
-    const name = nameBefore(line, unit.start, candidates, options.caseSensitive === true);
+    const name = nameBefore(line, unit.start, candidates);
     if (name === null) rest.push(unit);
     else named.push([name, unit]);
   }
   const free = (names: readonly string[]) => names.filter((name) => !named.some(([taken]) => taken === name));
-  const about = free(heads.length > 0 ? heads : options.block === true ? subject : candidates);
+  const about = free(heads.length > 0 ? heads : options.block === true ? subject : candidates.names);
   // Beside one that is named directly, an unnamed unit says something else ("at 273 K").
   if (rest.length === 0 || about.length === 0 || (named.length > 0 && heads.length === 0)) return named;
   if (rest.length === about.length && rest.length > 1)
@@ -138,7 +192,7 @@ const HEAD =
 const NAME = /[A-Za-z_][\w%]*/y;
 
 /** The names that a line begins with and goes on to describe: `rho, T (n) = ...`, `x : float`, `:param x: ...`. */
-function namesAtStart(line: string, candidates: readonly string[], caseSensitive: boolean): string[] {
+function namesAtStart(line: string, candidates: Candidates): string[] {
   const head = HEAD.exec(line);
   let at = head === null ? 0 : head[0]!.length;
   const marked = head !== null && /[@\\:](?:param|var|arg)/.test(head[0]!);
@@ -147,7 +201,7 @@ function namesAtStart(line: string, candidates: readonly string[], caseSensitive
     NAME.lastIndex = at;
     const match = NAME.exec(line);
     if (match === null) break;
-    const name = lookUp(match[0]!, candidates, caseSensitive);
+    const name = candidates.lookUp(match[0]!);
     if (name === null) {
       // `double rho`, `float T`: a type may stand before the name.
       if (names.length === 0 && marked && /^\s+/.test(line.slice(NAME.lastIndex))) {
@@ -182,7 +236,7 @@ function namesAtStart(line: string, candidates: readonly string[], caseSensitive
 }
 
 /** The candidate that stands right before a unit: `rho [g/cm3]`, `T in K`, `p(:) (Pa)`. */
-function nameBefore(line: string, end: number, candidates: readonly string[], caseSensitive: boolean): string | null {
+function nameBefore(line: string, end: number, candidates: Candidates): string | null {
   let at = end;
   while (at > 0 && /[\s:=`"'*,]/.test(line[at - 1]!)) at--;
   if (line[at - 1] === ')') {
@@ -194,7 +248,7 @@ function nameBefore(line: string, end: number, candidates: readonly string[], ca
   while (start > 0 && at - start < 64 && /[\w%]/.test(line[start - 1]!)) start--;
   if (start === at) return null;
   const word = line.slice(start, at);
-  const name = lookUp(word, candidates, caseSensitive);
+  const name = candidates.lookUp(word);
   // "temperature (K)" in `real :: temperature, pressure ! temperature (K)` is about it; the article "a" is not.
   return name === null ||
     (name.length === 1 &&
@@ -205,12 +259,4 @@ function nameBefore(line: string, end: number, candidates: readonly string[], ca
       !/^[\s]*[[(]/.test(line.slice(at)))
     ? null
     : name;
-}
-
-function lookUp(word: string, candidates: readonly string[], caseSensitive: boolean): string | null {
-  if (candidates.includes(word)) return word;
-  if (caseSensitive) return null;
-  const folded = word.toLowerCase();
-  for (const name of candidates) if (name.length === word.length && name.toLowerCase() === folded) return name;
-  return null;
 }

@@ -63,6 +63,9 @@ const KNOWN = new Set([
 const FOLDED = new Set([...KNOWN].filter((name) => name.length > 1).map((name) => name.toLowerCase()));
 for (const name of 'k w j n v g s m c'.split(' ')) FOLDED.add(name);
 
+/** Every word that may be a unit or a part of one, in the spelling known. */
+export const UNIT_WORDS: ReadonlySet<string> = new Set([...KNOWN, ...FOLDED]);
+
 const NONE = new Set(words('nondim nondimensional non-dimensional unitless dimensionless adimensional'));
 /** Single letters that carry a compound: `m/s` is a unit, `a/b` is not. */
 const GOOD_LETTERS = new Set(words('m s g K J W N V k w'));

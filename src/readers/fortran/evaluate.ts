@@ -2,9 +2,21 @@
 
 /** null where the expression rests on something unknown or is none. */
 export function evaluate(text: string, known: (name: string) => number | null): number | null {
-  const parser = new Expression(text.toLowerCase(), known);
+  // Most bounds and many values are a number or a name and nothing else.
+  const first = text.charCodeAt(0);
+  if (first >= 48 && first <= 57 && text.length < 16 && DIGITS.test(text)) return Number(text);
+  if (((first >= 97 && first <= 122) || first === 95) && NAME.test(text)) {
+    const value = known(text);
+    return value !== null && Number.isFinite(value) ? value : null;
+  }
+  const parser = new Expression(text.length > LONGEST ? '' : text.toLowerCase(), known);
   return parser.whole();
 }
+
+const DIGITS = /^\d+$/;
+const NAME = /^[a-z_]\w*$/;
+/** A longer expression is a table, not a value. */
+const LONGEST = 2000;
 
 class Expression {
   private readonly text: string;

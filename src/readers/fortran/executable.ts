@@ -1,189 +1,432 @@
-/** Calls and literals in executable statements. Pure. */
+/** Executable statements: calls with their arguments, literals given to reals, files and environment variables. */
 import type { ActualArgument, CallSite } from '../../model/interface.ts';
-import { closing, splitTop } from './kinds.ts';
-import { positionIn, type Statement } from './statements.ts';
+import { NOT_CALLED } from './intrinsics.ts';
+import { literalsOf } from './literals.ts';
+import { WORD } from './names.ts';
+import type { Reading } from './reading.ts';
+import { declaredFrom, draftIn, implicitType, rankOf, type Scope } from './scope.ts';
+import type { Statement } from './statement.ts';
 
-/** Names before a parenthesis that are no call of anyone's procedure: keywords, and intrinsics of Fortran 77 to 2018 that old and new codes use. */
-const NOT_CALLED = new Set(
-  `if else elseif where forall while do select case call write read print open close inquire rewind backspace return stop allocate deallocate nullify associate
-  abs acos acosh adjustl adjustr aimag aint alog alog10 all allocated amax0 amax1 amin0 amin1 amod anint any asin asinh associated atan atan2 atanh bessel_j0 bessel_j1 bit_size btest
-  cabs ccos ceiling cexp char clog cmplx command_argument_count conjg cos cosh count cpu_time cshift csin csqrt dabs dacos dasin datan datan2 dble dconjg dcmplx dcos dcosh ddim dexp
-  digits dim dimag dint dlog dlog10 dmax1 dmin1 dmod dnint dot_product dprod dreal dsign dsin dsinh dsqrt dtan dtanh eoshift epsilon erf erfc exp exponent float floor fraction gamma
-  huge iabs iachar iand ibclr ibits ibset ichar idim idint idnint ieor ifix index int ior ishft ishftc isign isnan kind lbound len len_trim lge lgt lle llt log log10 log_gamma logical loc
-  matmul max max0 max1 maxexponent maxloc maxval merge min min0 min1 minexponent minloc minval mod modulo move_alloc nearest nint not null pack precision present product radix random_number
-  range real repeat reshape rrspacing scale scan selected_int_kind selected_real_kind set_exponent shape sign sin sinh size sngl spacing spread sqrt sum tan tanh tiny transfer transpose trim
-  ubound unpack verify zabs zexp zsqrt iargc getarg c_loc c_f_pointer c_funloc c_associated storage_size same_type_as extends_type_of is_contiguous findloc norm2 hypot
-  integer character complex type class intent dimension format entry assign`.split(/\s+/),
-);
+type OpenArgument = { -readonly [key in keyof ActualArgument]: ActualArgument[key] };
+
+/** Takes what is no declaration. */
+export function executes(reading: Reading, statement: Statement): void {
+  const { scope } = reading;
+  const { kind } = scope;
+  if (
+    reading.inside > 0 ||
+    kind === 'module' ||
+    kind === 'submodule' ||
+    kind === 'type' ||
+    kind === 'interface' ||
+    kind === 'enum'
+  )
+    return;
+  // FORMAT is the one labelled statement in which names before parentheses are edit descriptors.
+  if (statement.label !== '' && statement.keyword('format', 0) >= 0 && statement.code[6] === 40) return;
+  // A main program needs no PROGRAM statement; an include file has no unit at all.
+  if (kind === 'file' && !begins(statement)) return;
+  scope.executing = true;
+  const { code } = statement;
+  let from = 0;
+  // Behind `if (...)`, `where (...)`, `forall (...)` a whole statement follows.
+  for (let depth = 0; depth < 4; depth++) {
+    const next = behindCondition(statement, from);
+    if (next < 0) break;
+    if (code[next] !== 44 && !(code[next]! >= 48 && code[next]! <= 57)) from = next;
+    else break;
+  }
+  const assigned = assignmentAt(statement, from);
+  const call = assigned >= 0 ? -1 : callAt(reading, statement, from);
+  if (statement.openCount > 0) functionCalls(reading, statement, from, assigned, call);
+  if (assigned >= 0) {
+    const nameEnd = statement.nameEnd(from);
+    if (code[nameEnd] !== 37) assignedLiterals(reading, statement, from, nameEnd, assigned);
+  }
+  if (statement.openCount > 0 && (code[from] === 111 || hasQuote(statement))) externals(reading, statement, from);
+}
+
+function begins(statement: Statement): boolean {
+  if (assignmentAt(statement, 0) >= 0) return true;
+  for (const word of HEADS) if (statement.keyword(word, 0) >= 0) return true;
+  return false;
+}
+const HEADS = ['call', 'if', 'do', 'write', 'print', 'read', 'open', 'stop'];
+
+/** Where the statement behind a condition begins; -1 when there is none. */
+function behindCondition(statement: Statement, from: number): number {
+  const { code, length } = statement;
+  const first = code[from];
+  let open = -1;
+  if (first === 105) open = statement.keyword('if', from);
+  else if (first === 119) open = statement.keyword('where', from);
+  else if (first === 102) open = statement.keyword('forall', from);
+  else if (first === 101) open = statement.keywords('else', 'if', from);
+  if (open < 0 || open >= length || code[open] !== 40) return -1;
+  const close = statement.match[open]!;
+  if (close < 0 || close + 1 >= length) return -1;
+  const next = code[close + 1]!;
+  return WORD[next] === 1 ? close + 1 : -1;
+}
 
 /**
- * Calls in a statement: CALL, and names before a parenthesis that are no array, no keyword and no intrinsic.
- *
- * @param isArray  whether a name is declared as something that is indexed
+ * The `=` of an assignment that begins at `from`: a name, indexed or a component or not, before it. -1 when it is none.
  */
-export function callsIn(
-  statement: Statement,
-  isArray: (name: string) => boolean,
-  typeOf: (name: string) => KnownType | null = () => null,
-): Omit<CallSite, 'caller'>[] {
-  const { code } = statement;
-  const calls: Omit<CallSite, 'caller'>[] = [];
-  let nameOfCall = -1;
-  const call = /(^|\))\s*call\s+([a-z_]\w*(?:\s*%\s*\w+)*)\s*(\(|$)/.exec(code);
-  if (call !== null && (call[1] === '' || /^(if|where|else)/.test(code))) {
-    const name = call[2]!.replace(/\s+/g, '');
-    const nameAt = code.indexOf(call[2]!, call.index + (call[1]?.length ?? 0) + 4);
-    const open = call[3] === '(' ? code.indexOf('(', nameAt + call[2]!.length) : -1;
-    calls.push({
-      callee: name.slice(name.lastIndexOf('%') + 1),
-      how: name.includes('%') ? 'method' : 'subroutine',
-      args: open < 0 ? [] : actualArguments(statement, open, isArray, typeOf),
-      ...positionIn(statement, code.indexOf('call', call.index + (call[1]?.length ?? 0))),
-    });
-    nameOfCall = nameAt;
-    if (open < 0) return calls;
+export function assignmentAt(statement: Statement, from: number): number {
+  const { equal, code, match } = statement;
+  if (equal < from + 1) return -1;
+  let at = statement.nameEnd(from);
+  if (at === from) return -1;
+  while (at < equal) {
+    const byte = code[at]!;
+    if (byte === 40 || byte === 91) {
+      if (match[at]! < 0) return -1;
+      at = match[at]! + 1;
+    } else if (byte === 37) {
+      const end = statement.nameEnd(at + 1);
+      if (end === at + 1) return -1;
+      at = end;
+    } else return -1;
   }
-  const called = calls[0];
-  // An assignment's left side is indexed, not called; a format has no calls.
-  const assigned = /^([a-z_]\w*)\s*\(/.exec(code)?.[1];
-  if (/^format\s*\(/.test(code) && statement.label !== null) return calls;
-  const pattern = /(^|[^a-z0-9_%.'"])([a-z_]\w*)\s*\(/g;
-  for (let match = pattern.exec(code); match !== null; match = pattern.exec(code)) {
-    const name = match[2]!;
-    const at = match.index + match[1]!.length;
-    pattern.lastIndex = at + name.length;
-    if (NOT_CALLED.has(name) || isArray(name) || (at === 0 && name === assigned)) continue;
-    if (called !== undefined && at === nameOfCall) continue;
-    const open = code.indexOf('(', at + name.length);
-    const close = closing(code, open);
-    if (close < 0) continue;
-    calls.push({
-      callee: name,
-      how: 'function',
-      args: actualArguments(statement, open, isArray, typeOf),
-      ...positionIn(statement, at),
-    });
-  }
-  return calls;
+  if (at !== equal) return -1;
+  // `do 10 i = 1, 10` without its blanks.
+  if (statement.fixed && statement.commaBehind && code[from] === 100 && code[from + 1] === 111) return -1;
+  return equal;
 }
 
-function actualArguments(
+/** A CALL at `from`; the index of its callee's name, or -1. */
+function callAt(reading: Reading, statement: Statement, from: number): number {
+  const { code, match, length } = statement;
+  let at = statement.keyword('call', from);
+  if (at < 0) return -1;
+  let isMethod = false;
+  let nameAt = at;
+  let nameEnd = statement.nameEnd(at);
+  if (nameEnd === at) return -1;
+  for (;;) {
+    at = nameEnd;
+    if (code[at] === 40 && at < length && match[at]! > at && code[match[at]! + 1] === 37 && match[at]! + 1 < length)
+      at = match[at]! + 1;
+    if (code[at] !== 37 || at >= length) break;
+    isMethod = true;
+    nameAt = at + 1;
+    nameEnd = statement.nameEnd(nameAt);
+    if (nameEnd === nameAt) return -1;
+  }
+  const open = nameEnd < length && code[nameEnd] === 40 ? nameEnd : -1;
+  push(reading, statement, statement.name(nameAt, nameEnd), isMethod ? 'method' : 'subroutine', from, open);
+  return nameAt;
+}
+
+function push(
+  reading: Reading,
   statement: Statement,
+  callee: string,
+  how: CallSite['how'],
+  at: number,
   open: number,
-  isArray: (name: string) => boolean,
-  typeOf: (name: string) => KnownType | null,
-): ActualArgument[] {
-  const close = closing(statement.code, open);
-  const inside = statement.code.slice(open + 1, close < 0 ? undefined : close);
-  if (inside.trim() === '') return [];
-  return splitTop(inside).map(({ text, offset }): ActualArgument => {
-    const lead = text.search(/\S/);
-    const begin = open + 1 + offset + Math.max(0, lead);
-    const shown = statement.text
-      .slice(begin, begin + text.trim().length)
-      .replace(/\s+/g, ' ')
-      .slice(0, 200);
-    const keyword = /^\s*([a-z_]\w*)\s*=(?!=)\s*(.*)$/s.exec(text);
-    const value = (keyword?.[2] ?? text).trim();
-    return {
-      text: shown,
-      ...typedForm(formOf(value), isArray, typeOf),
-      ...(keyword === null ? {} : { keyword: keyword[1]! }),
-      ...positionIn(statement, begin),
-    };
-  });
+): void {
+  const piece = statement.pieceAt(at);
+  const call: { -readonly [key in keyof CallSite]: CallSite[key] } = {
+    callee,
+    how,
+    caller: reading.scope.own,
+    args: open < 0 ? [] : actualArguments(reading, statement, open),
+    line: piece.line,
+    column: statement.text.column(piece.lineStart, statement.source[at]!),
+  };
+  const { branch } = statement;
+  if (branch !== null) call.condition = branch.whole;
+  reading.found.calls.push(call);
 }
 
-/** What a declaration in sight says of a name. */
-export interface KnownType {
-  readonly type: string;
-  readonly bytes: number | null;
-  readonly rank: number;
-  /** Its size is the build's default, which switches may promote. */
-  readonly declaredDefault?: boolean;
-}
-
-function typedForm(
-  form: ReturnType<typeof formOf>,
-  isArray: (name: string) => boolean,
-  typeOf: (name: string) => KnownType | null,
-): ReturnType<typeof formOf> {
-  if (form.name === undefined) return form;
-  // What is indexed like an array and declared as none is the result of a function.
-  if (form.form !== 'name' && !isArray(form.name)) return { form: 'expression' };
-  const known = typeOf(form.name);
-  if (known === null) return form;
-  return { ...form, ...known, rank: form.form === 'element' ? 0 : known.rank };
-}
-
-function formOf(value: string): Pick<ActualArgument, 'form' | 'name' | 'type' | 'bytes' | 'rank' | 'declaredDefault'> {
-  if (/^\*\s*\d+$/.test(value)) return { form: 'alternate-return' };
-  if (/^[a-z_]\w*$/.test(value)) return { form: 'name', name: value };
-  const element = /^([a-z_]\w*)\s*\(/.exec(value);
-  if (element !== null && closing(value, value.indexOf('(')) === value.length - 1) {
-    return { form: /:/.test(value) ? 'section' : 'element', name: element[1]! };
+/** Names before a parenthesis that are no array, no keyword and no intrinsic. */
+function functionCalls(reading: Reading, statement: Statement, from: number, assigned: number, called: number): void {
+  const { code, opens, openCount, names } = statement;
+  const { flags } = names;
+  // ALLOCATE and its kin speak of objects.
+  const objects = assigned < 0 && called < 0 ? objectList(statement, from) : -1;
+  for (let index = 0; index < openCount; index++) {
+    const open = opens[index]!;
+    let begin = open;
+    while (begin > 0 && WORD[code[begin - 1]!] === 1) begin--;
+    if (begin === open || begin === called) continue;
+    const first = code[begin]!;
+    if (first >= 48 && first <= 57) continue;
+    const before = begin > 0 ? code[begin - 1]! : 0;
+    if (before === 37 || before === 39) continue;
+    // `.and.f(x)` is a call, `1.e(` is nothing.
+    if (before === 46 && !(begin > 1 && code[begin - 2]! >= 97 && code[begin - 2]! <= 122)) continue;
+    // What begins a statement is the name that is assigned to, or a keyword.
+    if (begin === from || (begin < from && isHead(statement, begin))) continue;
+    if (assigned < 0 && called < 0 && begin > from && isHeadWords(statement, from, begin)) continue;
+    if (
+      objects >= 0 &&
+      open < statement.match[objects]! &&
+      (begin === objects + 1 || before === 44) &&
+      directlyIn(statement, objects, begin)
+    )
+      continue;
+    const close = statement.match[open]!;
+    if (close < 0) continue;
+    const id = names.idOf(code, begin, open);
+    if (id >= 0 && (flags[id]! & NOT_CALLED) !== 0) continue;
+    const name = id >= 0 ? names.text(id) : statement.name(begin, open);
+    if (isIndexed(reading.scope, name)) continue;
+    push(reading, statement, name, 'function', begin, open);
   }
-  if (/^[+-]?\d+(_\w+)?$/.test(value))
-    return { form: 'literal', type: 'integer', ...(value.includes('_') ? {} : { bytes: 4 }), rank: 0 };
-  const real = /^[+-]?(?:\d+\.?\d*|\.\d+)(?:([ed])[+-]?\d+)?(_\w+)?$/.exec(value);
-  if (real !== null)
-    return {
-      form: 'literal',
-      type: 'real',
-      ...(real[1] === 'd' ? { bytes: 8 } : real[2] === undefined ? { bytes: 4, declaredDefault: true } : {}),
-      rank: 0,
-    };
-  if (/^\.(true|false)\.$/.test(value)) return { form: 'literal', type: 'logical', bytes: 4, rank: 0 };
-  if (/^['"]/.test(value)) return { form: 'literal', type: 'character', rank: 0 };
-  return { form: 'expression' };
 }
 
-export interface FoundLiteral {
-  readonly text: string;
-  readonly value: number;
-  /** `d`, a kind name, or empty for a plain one. */
-  readonly kind: string;
-  readonly offset: number;
-  /** Nothing else stands in the expression. */
-  readonly alone: boolean;
-  readonly role?: 'exponent' | 'integer-division';
+/** A keyword with its condition, before the statement that follows it. */
+function isHead(statement: Statement, begin: number): boolean {
+  return begin === 0 || isHeadWords(statement, 0, begin);
 }
 
-/** Real literals of an expression, and integer divisions such as `2/3`. */
-export function literalsIn(text: string): FoundLiteral[] {
-  const found: FoundLiteral[] = [];
-  const pattern =
-    /(^|[^\w.])((?:\d+\.\d*|\.\d+|\d+(?=[edED][+-]?\d))(?:([edED])([+-]?\d+))?(?:_([A-Za-z_]\w*|\d+))?)(?![\w])/g;
-  const alone = /^\s*[+-]?\s*[\d.]+(?:[edED][+-]?\d+)?(?:_\w+)?\s*$/.test(text);
-  for (let match = pattern.exec(text); match !== null; match = pattern.exec(text)) {
-    // `1.eq.` is an integer before an operator.
-    if (/\.$/.test(match[2]!) && /^[a-z]+\./i.test(text.slice(match.index + match[0].length))) continue;
-    const [, lead = '', whole = '', letter, , kind] = match;
-    const mantissa = whole.replace(/_\w+$/, '').replace(/[dD]/, 'e');
-    const offset = match.index + lead.length;
-    const exponent = /\*\*\s*\(?\s*[+-]?\s*$/.test(text.slice(0, offset));
-    found.push({
-      text: whole,
-      value: Number(mantissa),
-      kind: kind !== undefined ? kind.toLowerCase() : letter !== undefined && /d/i.test(letter) ? 'd' : '',
-      offset,
-      alone,
-      ...(exponent ? { role: 'exponent' as const } : {}),
-    });
-    pattern.lastIndex = offset + whole.length;
+/** Only words and blanks between two places: `do while (`, `else if (`, `select case (`. */
+function isHeadWords(statement: Statement, from: number, begin: number): boolean {
+  const { code } = statement;
+  for (let at = from; at < begin; at++) if (WORD[code[at]!] !== 1 && code[at] !== 32) return false;
+  return true;
+}
+
+function objectList(statement: Statement, from: number): number {
+  for (const word of OBJECTS) {
+    const open = statement.keyword(word, from);
+    if (open >= 0)
+      return open < statement.length && statement.code[open] === 40 && statement.match[open]! > 0 ? open : -1;
   }
-  const division = /(^|[^\w.])(\d+)\s*\/\s*(\d+)(?![\w.])/g;
-  for (let match = division.exec(text); match !== null; match = division.exec(text)) {
-    const [, lead = '', above = '', below = ''] = match;
-    if (Number(below) !== 0 && Number(above) % Number(below) === 0) continue;
-    found.push({
-      text: `${above}/${below}`,
-      value: Math.trunc(Number(above) / Number(below)),
-      kind: '',
-      offset: match.index + lead.length,
-      alone: false,
-      role: 'integer-division',
-    });
+  return -1;
+}
+const OBJECTS = ['allocate', 'deallocate', 'nullify'];
+
+/** No parenthesis is open between the list's own and a place in it. */
+function directlyIn(statement: Statement, open: number, place: number): boolean {
+  const { code, match } = statement;
+  for (let at = open + 1; at < place; at++)
+    if (code[at] === 40 || code[at] === 91) {
+      if (match[at]! < 0 || match[at]! > place) return false;
+      at = match[at]!;
+    }
+  return true;
+}
+
+/** Whether a name followed by a parenthesis is an element and no call. */
+export function isIndexed(scope: Scope, name: string): boolean {
+  const found = draftIn(scope, name);
+  if (found === null) return false;
+  const { bounds, type } = found.draft;
+  return bounds !== null || type === 'character' || (type?.endsWith(')') ?? false);
+}
+
+function actualArguments(reading: Reading, statement: Statement, open: number): ActualArgument[] {
+  const { length } = statement;
+  const close = statement.match[open]! < 0 ? length : statement.match[open]!;
+  const args: ActualArgument[] = [];
+  if (close === open + 1) return args;
+  for (let at = open + 1; at <= close; ) {
+    const end = statement.comma(at, close);
+    args.push(actualArgument(reading, statement, at, end));
+    at = end + 1;
   }
-  return found;
+  return args;
+}
+
+function actualArgument(reading: Reading, statement: Statement, from: number, to: number): ActualArgument {
+  const { code } = statement;
+  const place = Math.min(from, statement.length - 1);
+  const piece = statement.pieceAt(place);
+  const argument: OpenArgument = {
+    text: to > from ? statement.folded(from, to, 200) : '',
+    form: 'expression',
+    line: piece.line,
+    column: statement.text.column(piece.lineStart, statement.source[place]!),
+  };
+  let begin = from;
+  const nameEnd = statement.nameEnd(from);
+  if (nameEnd > from && nameEnd < to && code[nameEnd] === 61 && code[nameEnd + 1] !== 61) {
+    argument.keyword = statement.name(from, nameEnd);
+    begin = nameEnd + 1;
+  }
+  if (begin < to) form(reading, statement, begin, to, argument);
+  return argument;
+}
+
+function form(reading: Reading, statement: Statement, from: number, to: number, argument: OpenArgument): void {
+  const { code, match } = statement;
+  const first = code[from]!;
+  if (first === 42 || first === 38) {
+    if (to > from + 1 && digitsTo(code, from + 1, to)) argument.form = 'alternate-return';
+    return;
+  }
+  const nameEnd = statement.nameEnd(from);
+  if (nameEnd > from) {
+    if (nameEnd === to) {
+      argument.form = 'name';
+      argument.name = statement.name(from, to);
+      typeOf(reading, argument, argument.name, -1);
+      return;
+    }
+    if (code[nameEnd] !== 40 || match[nameEnd]! !== to - 1) return;
+    const name = statement.name(from, nameEnd);
+    // What is indexed like an array and declared as none is the result of a function.
+    if (!isIndexed(reading.scope, name)) return;
+    const sections = sectionsIn(statement, nameEnd + 1, to - 1);
+    argument.form = sections === 0 ? 'element' : 'section';
+    argument.name = name;
+    typeOf(reading, argument, name, sections);
+    return;
+  }
+  if (first === 39) {
+    if (to === from + 2) {
+      argument.form = 'literal';
+      argument.type = 'character';
+      argument.rank = 0;
+    } else if (code[from + 1] === 39) argument.type = 'character';
+    return;
+  }
+  if (first === 46 && !(code[from + 1]! >= 48 && code[from + 1]! <= 57)) {
+    const word = statement.codeText(from, to);
+    if (word.startsWith('.true.') || word.startsWith('.false.')) {
+      argument.form = 'literal';
+      argument.type = 'logical';
+      argument.bytes = 4;
+      argument.rank = 0;
+    }
+    return;
+  }
+  number(statement, from, to, argument);
+}
+
+/** How many dimensions an index list leaves: subscripts with a colon. */
+function sectionsIn(statement: Statement, from: number, to: number): number {
+  const { code, match } = statement;
+  let sections = 0;
+  let inThis = false;
+  for (let at = from; at < to; at++) {
+    const byte = code[at]!;
+    if (byte === 58 && !inThis) {
+      sections++;
+      inThis = true;
+    } else if (byte === 44) inThis = false;
+    else if ((byte === 40 || byte === 91) && match[at]! > at) at = match[at]!;
+  }
+  return sections;
+}
+
+function number(statement: Statement, from: number, to: number, argument: OpenArgument): void {
+  const { code } = statement;
+  let at = from;
+  if (code[at] === 43 || code[at] === 45) at++;
+  const digits = at;
+  while (at < to && code[at]! >= 48 && code[at]! <= 57) at++;
+  let isReal = false;
+  let exponent = 0;
+  if (at < to && code[at] === 46) {
+    isReal = true;
+    at++;
+    while (at < to && code[at]! >= 48 && code[at]! <= 57) at++;
+    if (at === digits + 1) return;
+  } else if (at === digits) return;
+  if (at < to && (code[at] === 101 || code[at] === 100)) {
+    let next = at + 1;
+    if (code[next] === 43 || code[next] === 45) next++;
+    const start = next;
+    while (next < to && code[next]! >= 48 && code[next]! <= 57) next++;
+    if (next === start) return;
+    exponent = code[at]!;
+    isReal = true;
+    at = next;
+  }
+  let kind = false;
+  if (at < to && code[at] === 95) {
+    kind = true;
+    at = statement.wordEnd(at);
+  }
+  if (at !== to) return;
+  argument.form = 'literal';
+  argument.type = isReal ? 'real' : 'integer';
+  if (!isReal && !kind) argument.bytes = 4;
+  else if (isReal && exponent === 100) argument.bytes = 8;
+  else if (isReal && !kind) {
+    argument.bytes = 4;
+    argument.declaredDefault = true;
+  }
+  argument.rank = 0;
+}
+
+function digitsTo(code: Uint8Array, from: number, to: number): boolean {
+  for (let at = from; at < to; at++) if (code[at]! < 48 || code[at]! > 57) return false;
+  return true;
+}
+
+/** What declarations in sight say of a name; nothing is added for what is known from elsewhere. */
+function typeOf(reading: Reading, argument: OpenArgument, name: string, sections: number): void {
+  const found = draftIn(reading.scope, name);
+  if (found === null) return;
+  const { scope, draft } = found;
+  if (draft.type !== null) {
+    argument.type = draft.type;
+    argument.bytes = draft.bytes;
+    if (draft.kind === undefined) argument.declaredDefault = true;
+  } else if (draft.external) {
+    argument.type = 'procedure';
+    argument.bytes = null;
+    argument.declaredDefault = true;
+  } else {
+    const { type, bytes, kind } = implicitType(scope, name);
+    argument.type = type;
+    argument.bytes = bytes;
+    if (kind === undefined) argument.declaredDefault = true;
+  }
+  argument.rank = sections >= 0 ? sections : rankOf(draft.bounds);
+}
+
+function assignedLiterals(
+  reading: Reading,
+  statement: Statement,
+  from: number,
+  nameEnd: number,
+  assigned: number,
+): void {
+  const name = statement.name(from, nameEnd);
+  const { scope } = reading;
+  const found = draftIn(scope, name);
+  let type: string;
+  let bytes: number | null;
+  if (found !== null) ({ type, bytes } = declaredFrom(found.scope, found.draft, () => null));
+  else if (scope.implicit?.[name.charCodeAt(0) - 97] !== undefined) ({ type, bytes } = implicitType(scope, name));
+  else return;
+  if (type !== 'real' && type !== 'complex') return;
+  literalsOf(reading, statement, assigned + 1, statement.length, name, bytes, type, 'assigned');
+}
+
+function hasQuote(statement: Statement): boolean {
+  const { code, length } = statement;
+  for (let at = 0; at < length; at++) if (code[at] === 39) return true;
+  return false;
+}
+
+/** Files that OPEN names and environment variables that are asked for, where a literal says which. */
+function externals(reading: Reading, statement: Statement, from: number): void {
+  const { code, length, match } = statement;
+  const open = statement.keyword('open', from);
+  if (open >= 0 && open < length && code[open] === 40 && match[open]! > open) {
+    for (let at = open + 1; at < match[open]!; ) {
+      const end = statement.comma(at, match[open]!);
+      if (code[at + 4] === 61 && code[at + 5] === 39 && end === at + 7 && statement.codeText(at, at + 4) === 'file')
+        reading.found.externals.push({ kind: 'file', name: statement.constant(at + 5), ...statement.position(0) });
+      at = end + 1;
+    }
+    return;
+  }
+  for (let index = 0; index < statement.openCount; index++) {
+    const at = statement.opens[index]!;
+    if (code[at + 1] !== 39 || at + 1 >= length) continue;
+    let begin = at;
+    while (begin > 0 && WORD[code[begin - 1]!] === 1) begin--;
+    if (code[begin] !== 103 && code[begin] !== 99) continue;
+    if (!/get_?env\w*$/.test(statement.codeText(begin, at))) continue;
+    const name = statement.constant(at + 1);
+    if (/^\w+$/.test(name)) reading.found.externals.push({ kind: 'environment', name, ...statement.position(0) });
+  }
 }

@@ -1,25 +1,17 @@
 /** Types and kinds as Fortran writes them, to a type and bytes. Pure. */
+import type { Statement } from './statement.ts';
 
 export interface TypeSpec {
   readonly type: string;
   /** null where only something outside this file knows. */
   readonly bytes: number | null;
-  readonly kind?: string;
-  readonly length?: string;
-  /** Where the specification ends in the text. */
+  readonly kind: string | undefined;
+  readonly length: string | undefined;
+  /** Where the specification ends in the code, the blank behind it included. */
   readonly end: number;
 }
 
-const DEFAULT_BYTES: Readonly<Record<string, number>> = {
-  real: 4,
-  integer: 4,
-  logical: 4,
-  complex: 8,
-  character: 1,
-  byte: 1,
-};
-
-/** Kind names that the language itself or common modules define, as bytes of one real or integer. */
+/** Kind names that the language itself defines (Fortran 2018, 16.10.2 and 18.2), as bytes of one real or integer. */
 const KNOWN_KINDS: Readonly<Record<string, number>> = {
   real32: 4,
   real64: 8,
@@ -47,79 +39,171 @@ const KNOWN_KINDS: Readonly<Record<string, number>> = {
   c_double_complex: 8,
 };
 
-const START =
-  /^(double\s*precision|double\s*complex|real|integer|logical|complex|character|byte|type|class|procedure|_r[48ls]|_rs|_i)(?![a-z0-9_])/;
+type KindOf = (name: string) => number | null;
 
 /**
- * The type at the beginning of a statement; null when it begins with none.
+ * The type that a statement says at `from`; null when it says none there.
  *
- * @param code  lower case, character constants blanked
  * @param kindOf  bytes that a kind name stands for, as far as the file knows
  */
-export function typeSpecAt(code: string, kindOf: (name: string) => number | null): TypeSpec | null {
-  const match = START.exec(code);
-  if (match === null) return null;
-  const word = match[1]!.replace(/\s+/g, '');
-  let end = match[0].length;
-  if (word === 'doubleprecision') return { type: 'real', bytes: 8, kind: 'double precision', end };
-  if (word === 'doublecomplex') return { type: 'complex', bytes: 16, kind: 'double complex', end };
-  if (word.startsWith('_')) return { type: word === '_i' ? 'integer' : 'real', bytes: null, kind: word, end };
-  const rest = /^\s*/.exec(code.slice(end))![0].length;
-  const next = code[end + rest];
-  if (word === 'type' || word === 'class' || word === 'procedure') {
-    if (next !== '(') return null;
-    const close = closing(code, end + rest);
-    if (close < 0) return null;
-    const inside = code.slice(end + rest + 1, close).trim();
-    return {
-      type: word === 'procedure' ? 'procedure' : `${word}(${inside})`,
-      bytes: null,
-      end: close + 1,
-      ...(word === 'procedure' ? { kind: inside } : {}),
-    };
+export function typeSpecAt(statement: Statement, from: number, kindOf: KindOf): TypeSpec | null {
+  let end: number;
+  switch (statement.code[from]) {
+    case 114: // r
+      end = statement.keyword('real', from);
+      return end < 0 ? null : numeric(statement, 'real', 4, end, kindOf);
+    case 105: // i
+      end = statement.keyword('integer', from);
+      return end < 0 ? null : numeric(statement, 'integer', 4, end, kindOf);
+    case 108: // l
+      end = statement.keyword('logical', from);
+      return end < 0 ? null : numeric(statement, 'logical', 4, end, kindOf);
+    case 100: // d
+      end = statement.keywords('double', 'precision', from);
+      if (end >= 0) return specOf('real', 8, 'double precision', undefined, end);
+      end = statement.keywords('double', 'complex', from);
+      return end < 0 ? null : specOf('complex', 16, 'double complex', undefined, end);
+    case 99: // c
+      end = statement.keyword('character', from);
+      if (end >= 0) return character(statement, end);
+      end = statement.keyword('complex', from);
+      if (end >= 0) return numeric(statement, 'complex', 8, end, kindOf);
+      return named(statement, 'class', from);
+    case 98: // b
+      end = statement.keyword('byte', from);
+      return end < 0 ? null : specOf('byte', 1, undefined, undefined, end);
+    case 116: // t
+      return named(statement, 'type', from);
+    case 112: // p
+      return named(statement, 'procedure', from);
+    case 95: // _
+      return macro(statement, from);
+    default:
+      return null;
   }
-  const plain = DEFAULT_BYTES[word]!;
-  if (next === '*') {
-    const star = /^\s*\*\s*(\d+|\()/.exec(code.slice(end))!;
-    if (star === null) return null;
-    if (star[1] === '(') {
-      const open = end + star[0].length - 1;
-      const close = closing(code, open);
-      if (close < 0) return null;
-      return { type: word, bytes: plain, length: code.slice(open + 1, close).trim(), end: close + 1 };
-    }
-    end += star[0].length;
-    if (word === 'character') return { type: word, bytes: 1, length: star[1]!, end };
-    return { type: word, bytes: Number(star[1]), kind: star[1]!, end };
+}
+
+function specOf(
+  type: string,
+  bytes: number | null,
+  kind: string | undefined,
+  length: string | undefined,
+  end: number,
+): TypeSpec {
+  return { type, bytes, kind, length, end };
+}
+
+/** Types behind macros that large codes use (`_RL`, `_RS`): their bytes are found when the file is linked with the macro. */
+function macro(statement: Statement, from: number): TypeSpec | null {
+  const end = statement.wordEnd(from);
+  const { code } = statement;
+  const second = code[from + 1];
+  const third = code[from + 2];
+  const real = end - from === 3 && second === 114 && (third === 52 || third === 56 || third === 108 || third === 115);
+  if (!real && !(end - from === 2 && second === 105)) return null;
+  return specOf(
+    real ? 'real' : 'integer',
+    null,
+    statement.name(from, end),
+    undefined,
+    code[end] === 32 ? end + 1 : end,
+  );
+}
+
+function numeric(statement: Statement, type: string, plain: number, from: number, kindOf: KindOf): TypeSpec | null {
+  const { code, length } = statement;
+  if (from < length && code[from] === 42) {
+    const end = digitsEnd(statement, from + 1);
+    if (end === from + 1) return null;
+    const kind = statement.name(from + 1, end);
+    return specOf(type, Number(kind), kind, undefined, behindBlank(statement, end));
   }
-  if (next === '(') {
-    const close = closing(code, end + rest);
+  if (from < length && code[from] === 40) {
+    const close = statement.match[from]!;
     if (close < 0) return null;
-    const inside = code.slice(end + rest + 1, close);
-    if (word === 'character') return { type: word, bytes: 1, ...lengthOf(inside), end: close + 1 };
-    const kind = inside.replace(/^\s*kind\s*=\s*/, '').trim();
+    let begin = from + 1;
+    if (statement.keyword('kind', begin) === begin + 4 && code[begin + 4] === 61) begin += 5;
+    const kind = statement.codeText(begin, close);
     const unit = kindBytes(kind, kindOf);
-    return { type: word, bytes: unit === null ? null : word === 'complex' ? 2 * unit : unit, kind, end: close + 1 };
+    return specOf(
+      type,
+      unit === null ? null : type === 'complex' ? 2 * unit : unit,
+      kind,
+      undefined,
+      behindBlank(statement, close + 1),
+    );
   }
-  return { type: word, bytes: plain, end, ...(word === 'character' ? { length: '1' } : {}) };
+  return specOf(type, plain, undefined, undefined, from);
 }
 
-function lengthOf(inside: string): { length?: string } {
-  const parts = splitTop(inside);
-  const named = parts.find((part) => /^\s*len\s*=/.test(part.text));
-  const first = named ?? parts.find((part) => !/^\s*kind\s*=/.test(part.text));
-  return first === undefined ? { length: '1' } : { length: first.text.replace(/^\s*len\s*=\s*/, '').trim() };
+function character(statement: Statement, from: number): TypeSpec | null {
+  const { code } = statement;
+  if (from < statement.length && code[from] === 42) {
+    if (code[from + 1] === 40) {
+      const close = statement.match[from + 1]!;
+      if (close < 0) return null;
+      return specOf('character', 1, undefined, statement.codeText(from + 2, close), behindBlank(statement, close + 1));
+    }
+    const end = digitsEnd(statement, from + 1);
+    if (end === from + 1) return null;
+    return specOf('character', 1, undefined, statement.name(from + 1, end), behindBlank(statement, end));
+  }
+  if (from < statement.length && code[from] === 40) {
+    const close = statement.match[from]!;
+    if (close < 0) return null;
+    return specOf('character', 1, undefined, lengthIn(statement, from + 1, close), behindBlank(statement, close + 1));
+  }
+  return specOf('character', 1, undefined, '1', from);
 }
 
-export function kindBytes(kind: string, kindOf: (name: string) => number | null): number | null {
-  if (/^\d+$/.test(kind)) return Number(kind);
-  return kindOf(kind) ?? KNOWN_KINDS[kind] ?? kindExpression(kind);
+function lengthIn(statement: Statement, from: number, to: number): string {
+  let first: string | null = null;
+  for (let at = from; at < to; ) {
+    const end = statement.comma(at, to);
+    const text = statement.codeText(at, end);
+    if (text.startsWith('len=')) return text.slice(4);
+    if (first === null && !text.startsWith('kind=')) first = text;
+    at = end + 1;
+  }
+  return first ?? '1';
+}
+
+function named(statement: Statement, word: string, from: number): TypeSpec | null {
+  const end = statement.keyword(word, from);
+  if (end < 0 || statement.code[end] !== 40 || end >= statement.length) return null;
+  const close = statement.match[end]!;
+  if (close < 0) return null;
+  const inside = statement.codeText(end + 1, close);
+  const behind = behindBlank(statement, close + 1);
+  return word === 'procedure'
+    ? specOf('procedure', null, inside, undefined, behind)
+    : specOf(`${word}(${inside})`, null, undefined, undefined, behind);
+}
+
+function digitsEnd(statement: Statement, from: number): number {
+  let at = from;
+  while (at < statement.length && statement.code[at]! >= 48 && statement.code[at]! <= 57) at++;
+  return at;
+}
+
+function behindBlank(statement: Statement, at: number): number {
+  return at < statement.length && statement.code[at] === 32 ? at + 1 : at;
+}
+
+export function kindBytes(kind: string, kindOf: KindOf): number | null {
+  const first = kind.charCodeAt(0);
+  if (first >= 48 && first <= 57) return /^\d+$/.test(kind) ? Number(kind) : null;
+  const known = kindOf(kind);
+  if (known !== null) return known;
+  if (Object.hasOwn(KNOWN_KINDS, kind)) return KNOWN_KINDS[kind]!;
+  return kind.includes('(') ? kindExpression(kind) : null;
 }
 
 /** `selected_real_kind(15, 307)`, `kind(1.d0)`, `selected_int_kind(9)`. */
 export function kindExpression(text: string): number | null {
+  if (!text.includes('(')) return null;
   const code = text.replace(/\s+/g, '').toLowerCase();
-  const real = /^selected_real_kind\((?:p=)?(\d+)?(?:,(?:r=)?(\d+))?\)$/.exec(code);
+  const real = /^selected_real_kind\((?:p=)?(\d+)?(?:,?(?:r=)?(\d+))?\)$/.exec(code);
   if (real !== null) {
     const [digits, range] = [Number(real[1] ?? 0), Number(real[2] ?? 0)];
     return digits <= 6 && range <= 37 ? 4 : digits <= 15 && range <= 307 ? 8 : 16;
@@ -127,48 +211,13 @@ export function kindExpression(text: string): number | null {
   const integer = /^selected_int_kind\((?:r=)?(\d+)\)$/.exec(code);
   if (integer !== null) {
     const range = Number(integer[1]);
-    return range <= 2 ? 1 : range <= 4 ? 2 : range <= 9 ? 4 : 8;
+    return range <= 2 ? 1 : range <= 4 ? 2 : range <= 9 ? 4 : range <= 18 ? 8 : 16;
   }
   const of = /^kind\((.*)\)$/.exec(code)?.[1];
   if (of === undefined) return null;
   if (/^[\d.]+d[+-]?\d+$/.test(of)) return 8;
-  if (/^[\d.]+(e[+-]?\d+)?$/.test(of)) return 4;
+  if (/^\d+$/.test(of) || /^[\d.]+(e[+-]?\d+)?$/.test(of)) return 4;
   if (/^\.(true|false)\.$/.test(of)) return 4;
+  if (/^(?:''|".?"|'.?')$/.test(of)) return 1;
   return null;
-}
-
-/** The index of the parenthesis that closes the one at `open`; -1 when none does. */
-export function closing(code: string, open: number): number {
-  let depth = 0;
-  for (let at = open; at < code.length; at++) {
-    const one = code.charCodeAt(at);
-    if (one === 40 || one === 91) depth++;
-    else if (one === 41 || one === 93) {
-      depth--;
-      if (depth === 0) return at;
-    }
-  }
-  return -1;
-}
-
-/** Parts between commas that stand in no parentheses, with where each begins. */
-export function splitTop(text: string): { text: string; offset: number }[] {
-  const parts: { text: string; offset: number }[] = [];
-  let depth = 0;
-  let quote = '';
-  let begin = 0;
-  for (let at = 0; at < text.length; at++) {
-    const one = text[at]!;
-    if (quote !== '') {
-      if (one === quote) quote = '';
-    } else if (one === "'" || one === '"') quote = one;
-    else if (one === '(' || one === '[') depth++;
-    else if (one === ')' || one === ']') depth--;
-    else if (one === ',' && depth <= 0) {
-      parts.push({ text: text.slice(begin, at), offset: begin });
-      begin = at + 1;
-    }
-  }
-  if (begin < text.length || parts.length > 0) parts.push({ text: text.slice(begin), offset: begin });
-  return parts;
 }
