@@ -13,7 +13,7 @@ import type { ReferenceRecord } from '../runs/reference-record.ts';
 import { runFindings } from '../runs/run-findings.ts';
 import { type AcceptedFinding, siftFindings } from './acceptance.ts';
 import { type CampaignSize, campaignDemands, campaignFindings, campaignSize, type Demand } from './campaign-size.ts';
-import { caseFindings } from './case-findings.ts';
+import { caseFindings, notRunFindings } from './case-findings.ts';
 import { type Clearance, type Outcome, outcomeOf } from './clearance.ts';
 import { checkStates, type Visited } from './states.ts';
 import { platformFindings, pluggedModules, type Validation, validationFindings, validations } from './validated.ts';
@@ -58,6 +58,7 @@ export function audit(gathered: Gathered): Audit {
     ...treeFindings(gathered),
     ...tableFindings(gathered),
     ...caseFindings(outcomes, manifests),
+    ...notRunFindings(outcomes, manifests),
     ...runFindings(outcomes, manifests),
     ...statesFindings(gathered),
     ...validationFindings(manifests, validated, outcomes),

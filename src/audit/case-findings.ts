@@ -30,6 +30,25 @@ export function caseFindings(outcomes: readonly CaseOutcome[], manifests: Manife
   });
 }
 
+/** Every declared case that has no result: left out, or ended before it was done. What was not looked at can't be cleared. */
+export function notRunFindings(outcomes: readonly CaseOutcome[], manifests: ManifestSet): Finding[] {
+  return [...manifests.cases.values()].flatMap((declaration): Finding[] => {
+    const name = declaration.value.case;
+    const outcome = outcomes.find((one) => one.case === name);
+    if (outcome !== undefined && outcome.state !== 'interrupted') return [];
+    return [
+      {
+        kind: 'case-not-run',
+        gravity: 'stop',
+        place: declaration.placeOf(['case']),
+        says: `Case ${name} was not run${outcome === undefined ? '' : ' to its end'}.`,
+        evidence: [],
+        next: 'run "mortise audit" without --no-run, and let it end.',
+      },
+    ];
+  });
+}
+
 const STATE_MEANINGS: Readonly<Record<CaseState, { kind: FindingKind; gravity: Gravity; next: string } | null>> = {
   compared: null,
   interrupted: null,

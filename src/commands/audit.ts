@@ -22,7 +22,10 @@ export const command: Command = {
   answers: 'may this code start a campaign',
   usage: 'mortise audit [--no-run] [--clearance FILE] | --verify FILE | --gate FILE',
   options: {
-    'no-run': { type: 'boolean', says: 'leave the cases alone; the outcome can then not be a clearance' },
+    'no-run': {
+      type: 'boolean',
+      says: 'leave the cases alone; the code is held then, since nobody looked at their results',
+    },
     clearance: { type: 'string', value: 'FILE', says: 'write the sealed outcome to this file' },
     verify: { type: 'string', value: 'FILE', says: 'test whether a clearance file is as it was sealed' },
     gate: {

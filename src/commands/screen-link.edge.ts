@@ -35,6 +35,7 @@ const NOTHING_YET: Views = {
     revision: '',
     changed: [],
     outcome: null,
+    open: 0,
     why: [],
     parts: [],
     campaign: null,

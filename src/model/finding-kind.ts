@@ -97,6 +97,7 @@ export type AuditKind =
   | 'notice-touches'
   | 'case-not-runnable'
   | 'case-failed'
+  | 'case-not-run'
   | 'result-beyond-tolerance'
   | 'result-not-comparable';
 export type ReviewKind = 'commands-differ' | 'link-leaves' | 'submodule-moved' | 'text-hides';

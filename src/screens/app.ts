@@ -231,11 +231,11 @@ function bodyOf(app: App, size: Size, glyphs: Glyphs): readonly Line[] {
 }
 
 function header(app: App, size: Size, glyphs: Glyphs): Line {
-  const { outcome, title, job } = app.views.assembly;
-  const style = outcome === 'held' ? 'alarm' : outcome === 'cleared' ? 'good' : 'warm';
+  const { outcome, open, title, job } = app.views.assembly;
+  const style = open > 0 ? 'warm' : outcome === 'held' ? 'alarm' : outcome === 'cleared' ? 'good' : 'warm';
   const right =
     job === null
-      ? line(span(outcome ?? 'not audited', style), ' ')
+      ? line(span(open > 0 ? 'cases not run' : (outcome ?? 'not audited'), style), ' ')
       : job.done === 0
         ? line(`${job.says} ${glyphs.ellipsis} `)
         : line(`${job.says} `, span(progressBar(job.done, 10, glyphs), 'strong'), ` ${Math.round(job.done * 100)} % `);

@@ -49,23 +49,21 @@ function parts(views: Views, state: ScreenState): readonly PartView[] {
   return matching(views.assembly.parts, state.typed, (part) => `${part.component} ${part.module}`);
 }
 
-function standing({ assembly: view, cases: all }: Views): Line[] {
+function standing({ assembly: view }: Views): Line[] {
   const changed = view.changed.length === 0 ? 'work tree clean' : `${view.changed.length} files changed since`;
   const asOf = view.asOf === null ? '' : `  as of ${view.asOf}, being read again`;
-  const notRun = all.filter((one) => one.state === 'not run').length;
   return [
     line(`revision ${view.revision}  ${changed}`, span(asOf, 'faint')),
-    line('Can the campaign start?  ', answer(view, notRun)),
+    line('Can the campaign start?  ', answer(view)),
     ...view.why.slice(0, 3).map((why) => line(`  - ${why}`)),
     ...(view.why.length > 3 ? [line(`  and ${view.why.length - 3} more, on the findings screen`)] : []),
   ];
 }
 
-function answer({ outcome, job }: AssemblyView, notRun: number): Span {
+function answer({ outcome, open, job }: AssemblyView): Span {
   if (outcome === null) return span(job === null ? 'not audited yet' : 'being audited', 'warm');
+  if (open > 0) return span(`not known: ${open} ${open === 1 ? 'case is' : 'cases are'} not run (C, then A)`, 'warm');
   if (outcome === 'held') return span('No: held', 'alarm');
-  if (notRun > 0)
-    return span(`not known: ${notRun} ${notRun === 1 ? 'case is' : 'cases are'} not run (C, then A)`, 'warm');
   return outcome === 'cleared' ? span('Yes: cleared', 'good') : span('Yes, with cautions', 'warm');
 }
 

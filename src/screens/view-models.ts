@@ -131,6 +131,7 @@ function assemblyView(known: Known): AssemblyView {
     revision: gathered?.revision?.slice(0, 10) ?? 'none',
     changed: gathered?.changed ?? [],
     outcome: known.whole ? (audit?.outcome ?? null) : null,
+    open: openCases(audit),
     why: (audit?.open ?? []).filter((one) => one.gravity !== 'note').map((one) => printable(one.says)),
     parts: Object.entries(assembly?.plugged ?? {}).map(([component, module]) => partView(component, module, known)),
     campaign:
@@ -149,6 +150,11 @@ function assemblyView(known: Known): AssemblyView {
     asOf: null,
     job: known.job,
   };
+}
+
+function openCases(audit: Audit | null): number {
+  const stops = audit?.open.filter((one) => one.gravity === 'stop') ?? [];
+  return stops.every((one) => one.kind === 'case-not-run') ? stops.length : 0;
 }
 
 function partView(component: string, module: string, { manifests, gathered, audit }: Known): PartView {

@@ -22,6 +22,8 @@ export interface AssemblyView {
   readonly changed: readonly string[];
   /** null while nothing was audited yet. */
   readonly outcome: Outcome | null;
+  /** Cases without a result, where nothing else holds it: the answer is open then. */
+  readonly open: number;
   /** Why it is held, or what to know, gravest first. */
   readonly why: readonly string[];
   readonly parts: readonly PartView[];

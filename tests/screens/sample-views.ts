@@ -45,6 +45,7 @@ export const sampleViews: Views = {
     changed: ['src/eos/ionising.ts'],
     outcome: 'held',
     asOf: null,
+    open: 0,
     why: [
       'eos-ionising offers energy-zero ionised where hydro expects neutral-atom',
       'temperature of cloud-shock is 37 tolerances from its reference',

@@ -124,6 +124,13 @@ export const auditExplanations = {
     accept: 'Hardly ever: take the case out, with a reason, if it has no use any more.',
     example: 'cloud-shock ended with exit status 1 after "negative internal energy in zone 212".',
   },
+  'case-not-run': {
+    means: 'A declared case has no result at this state of the code, so nobody looked at what it guards.',
+    arises: 'The audit was told to leave the cases alone, or was ended before they were done.',
+    mend: 'Run the audit to its end; results that are kept from before are taken and not run again.',
+    accept: 'Not for a campaign; a look at joints and history alone is "mortise check" and "mortise drift".',
+    example: 'Case cloud-shock was not run.',
+  },
   'result-beyond-tolerance': {
     means:
       'A physical result moved by more than it may. Either the code is wrong now, or it was wrong before, or the tolerance is.',
