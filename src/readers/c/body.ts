@@ -4,7 +4,7 @@ import type { CFile } from './c-file.ts';
 import { numberOf } from './evaluate.ts';
 import { closeAngle } from './parameters.ts';
 import { T } from './tokens.ts';
-import { BEFORE_CALL, bytesOfType, isMarker, NO_CALL } from './words.ts';
+import { BEFORE_CALL, BUILTIN, bytesOfType, isMarker, NO_CALL } from './words.ts';
 
 /**
  * Gathers calls and literals between two tokens.
@@ -24,10 +24,12 @@ export function scanBody(
     const kind = tokens.kind[at];
     if (kind === T.name) {
       const next = file.word(at + 1);
-      if (next === '(') call(file, at, at + 1, caller, types);
+      // `(max)(a, b)`, `(std::max)(a, b)`: brackets that keep a macro away.
+      if (next === ')' && file.word(at + 2) === '(' && inBrackets(file, at)) call(file, at, at + 2, to, caller, types);
+      else if (next === '(') call(file, at, at + 1, to, caller, types);
       else if (next === '<' && at + 3 < to) {
         const close = templated(file, at, to);
-        if (close > 0) call(file, at, close + 1, caller, types);
+        if (close > 0) call(file, at, close + 1, to, caller, types);
       } else if (
         caller !== null &&
         tokens.kind[at - 1] === T.name &&
@@ -41,13 +43,31 @@ export function scanBody(
   }
 }
 
+function inBrackets(file: CFile, name: number): boolean {
+  let at = name;
+  while (file.word(at - 1) === '::' && file.kind(at - 2) === T.name) at -= 2;
+  // `(double)(x)` is a cast.
+  return (
+    file.word(at - 1) === '(' &&
+    file.kind(at - 2) !== T.name &&
+    !BUILTIN.has(file.word(name)) &&
+    !/_t$/.test(file.word(name))
+  );
+}
+
 /** `max<double>(a, b)`: names, types and commas only between the angles, and a round bracket behind. */
 function templated(file: CFile, at: number, to: number): number {
+  const close = typeArguments(file, at, to);
+  return close > 0 && file.word(close + 1) === '(' ? close : -1;
+}
+
+/** The `>` of what can only be template arguments: names, types and commas between the angles, and behind them no operand. */
+function typeArguments(file: CFile, at: number, to: number): number {
   const close = closeAngle(file, at + 1, Math.min(to, at + 60));
-  if (close < 0 || file.word(close + 1) !== '(') return -1;
+  if (close < 0 || !/^(?:\(|::|\{|\)|,|>|\.|;)$/.test(file.word(close + 1))) return -1;
   for (let inside = at + 2; inside < close; inside++) {
     const kind = file.kind(inside);
-    if (kind === T.punctuation && !/^(?:::|,|\*|&|<|>)$/.test(file.word(inside))) return -1;
+    if (kind === T.punctuation && !/^(?:::|,|\*|&|<|>|\.|\(|\)|\+|-)$/.test(file.word(inside))) return -1;
     if (kind === T.string) return -1;
   }
   return close;
@@ -57,6 +77,7 @@ function call(
   file: CFile,
   name: number,
   open: number,
+  to: number,
   caller: string | null,
   types: ReadonlyMap<string, string>,
 ): void {
@@ -64,21 +85,41 @@ function call(
   if (NO_CALL.has(written)) return;
   const close = file.match(open);
   if (close < 0) return;
+  // A name with a block behind its brackets is the header of a local function, or a macro that loops.
+  if (close + 1 < to && file.word(close + 1) === '{') return;
   let begin = name;
-  while (file.word(begin - 1) === '::' && (file.kind(begin - 2) === T.name || file.word(begin - 2) === '>')) {
-    if (file.kind(begin - 2) !== T.name) break;
-    begin -= 2;
+  while (file.word(begin - 1) === '::') {
+    if (file.kind(begin - 2) === T.name && !BEFORE_CALL.has(file.word(begin - 2))) begin -= 2;
+    else if (file.word(begin - 2) === '>') {
+      // `A<T>::f(x)`
+      const angle = openAngle(file, begin - 2);
+      if (angle < 0 || file.kind(angle - 1) !== T.name) break;
+      begin = angle - 1;
+    } else break;
   }
   if (file.word(begin - 1) === '::') begin--;
+  // `p->~T()`
+  const destroys = file.word(begin - 1) === '~' && (file.word(begin - 2) === '.' || file.word(begin - 2) === '->');
+  if (destroys) begin--;
   const before = file.word(begin - 1);
   const method = before === '.' || before === '->';
-  const created = before === 'new';
+  // `new T(x)`, `new (place) T(x)`
+  const created =
+    before === 'new' || (before === ')' && file.language === 'c++' && file.word(file.match(begin - 1) - 1) === 'new');
   // Two names in a row declare: `Foo x(1);` makes an object of the type before.
   let declared: string | null = null;
   if (!method && !created && file.kind(begin - 1) === T.name && !BEFORE_CALL.has(before) && !isMarker(before))
     declared = before;
   if (before === '>' && file.kind(begin - 2) === T.name && file.language === 'c++' && looksTemplated(file, begin - 1))
     declared = '';
+  // `T *p(x);` at the beginning of a statement makes a variable; anywhere else it multiplies.
+  if (
+    (before === '*' || before === '&') &&
+    file.language === 'c++' &&
+    file.kind(begin - 2) === T.name &&
+    /^[;{}]$/.test(file.word(begin - 3))
+  )
+    return;
   if (declared !== null) {
     if (caller === null || declared === '' || /^(?:struct|class|union|enum|typename|const|static)$/.test(declared))
       return;
@@ -97,6 +138,23 @@ function call(
     ...file.at(begin),
   });
   external(file, callee, open, close);
+}
+
+/** The `<` that a `>` closes, looked for backwards; -1 when it is greater-than. */
+function openAngle(file: CFile, close: number): number {
+  let depth = 0;
+  for (let at = close; at > close - 60 && at > 0; at--) {
+    const word = file.word(at);
+    if (word === '>') depth++;
+    else if (word === '<') {
+      if (--depth === 0) return at;
+    } else if (word === ')' || word === ']') {
+      const open = file.match(at);
+      if (open < 0) return -1;
+      at = open;
+    } else if (word === ';' || word === '{' || word === '}' || word === '(') return -1;
+  }
+  return -1;
 }
 
 function looksTemplated(file: CFile, close: number): boolean {
@@ -145,7 +203,7 @@ function actuals(file: CFile, open: number, close: number, types: ReadonlyMap<st
       const word = file.word(at);
       if (word === '(' || word === '[' || word === '{') at = Math.max(at, Math.min(file.match(at), close));
       else if (word === '<' && file.kind(at - 1) === T.name) {
-        const angle = templated(file, at - 1, close);
+        const angle = typeArguments(file, at - 1, close);
         if (angle > 0) at = angle;
       }
       at++;

@@ -417,7 +417,7 @@ export class CFile {
       if (macro.params !== null || macro.body === '' || macro.body.length > 400) continue;
       const { body } = macro;
       const number = /^[([\s+-]*(?:\d|\.\d)/.test(body);
-      if (!number && !/^[("\w\s.+\-*/]+$/.test(body) && !body.startsWith('"')) continue;
+      if (!number && !/^[()"\w\s.+\-*/]+$/.test(body) && !body.startsWith('"')) continue;
       // `#define name other` renames; it is a constant only if it comes to a value.
       const condition = this.tokens.conditions[macro.condition] ?? '';
       const at = this.placeOf(macro.offset);
@@ -485,7 +485,7 @@ export class CFile {
         raw === null || typeof raw.value !== 'number'
           ? raw
           : /^float$/.test(type)
-            ? { value: Math.fround(raw.value), integer: false }
+            ? { value: Math.fround(raw.value), integer: false, single: true }
             : /double|Real|real/.test(type)
               ? { value: raw.value, integer: false }
               : raw;
@@ -502,7 +502,11 @@ export class CFile {
     }
     // A macro that names something else and comes to no value is no constant.
     const kept = this.constants.filter(
-      (one) => one.value !== null || !/^[A-Za-z_]\w*$/.test(one.text) || one.type !== 'int' || one.parent !== null,
+      (one) =>
+        one.value !== null ||
+        !(/^[A-Za-z_]\w*$/.test(one.text) || (this.macroNames.has(one.name) && /\w\s*\(/.test(one.text))) ||
+        one.type !== 'int' ||
+        one.parent !== null,
     );
     this.constants.length = 0;
     this.constants.push(...kept);

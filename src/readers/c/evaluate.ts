@@ -1,7 +1,8 @@
 /** Evaluates constant expressions of C and C++ over literals and names that are known. */
 
 export type ConstantValue =
-  | { readonly value: number; readonly integer: boolean }
+  /** `single`: of single precision, and reckoned in it as long as it meets nothing wider. */
+  | { readonly value: number; readonly integer: boolean; readonly single?: boolean }
   | { readonly value: string; readonly integer: false };
 
 /** `1.5`, `0x1F`, `1'000`, `2.0f`, `1.0_rt`; null for what is no number. */
@@ -113,7 +114,7 @@ export function evaluate(text: string, known: (name: string) => ConstantValue | 
       const right = binary(level + 1);
       if (left === null || right === null || typeof left.value !== 'number' || typeof right.value !== 'number')
         left = null;
-      else left = apply(operator, left.value, right.value, left.integer && right.integer);
+      else left = combine(operator, left as NumberValue, right as NumberValue);
     }
     return left;
   }
@@ -126,7 +127,7 @@ export function evaluate(text: string, known: (name: string) => ConstantValue | 
       const value = unary();
       depth--;
       if (value === null || typeof value.value !== 'number') return null;
-      if (word === '-') return { value: -value.value, integer: value.integer };
+      if (word === '-') return { ...value, value: -value.value } as NumberValue;
       if (word === '+') return value;
       return { value: word === '~' ? ~value.value : value.value === 0 ? 1 : 0, integer: true };
     }
@@ -158,7 +159,10 @@ export function evaluate(text: string, known: (name: string) => ConstantValue | 
       return { value, integer: false };
     }
     const number = /^[\d.]/.test(word) ? numberOf(word) : null;
-    if (number !== null) return { value: number.value, integer: number.integer };
+    if (number !== null)
+      return !number.integer && number.bytes === 4
+        ? { value: Math.fround(number.value), integer: false, single: true }
+        : { value: number.value, integer: number.integer };
     if (!/^[A-Za-z_]/.test(word)) return null;
     const name = word.replace(/\s+/g, '').replace(/^(?:std|amrex|Math)::/, '');
     if (name === 'true' || name === 'false') return { value: name === 'true' ? 1 : 0, integer: true };
@@ -198,7 +202,22 @@ function cast(type: string, value: ConstantValue | null): ConstantValue | null {
   if (value === null || typeof value.value !== 'number') return null;
   const integer = !/float|double|Real/i.test(type);
   const single = /^(?:const )?float$/.test(type.trim());
-  return { value: integer ? Math.trunc(value.value) : single ? Math.fround(value.value) : value.value, integer };
+  return {
+    value: integer ? Math.trunc(value.value) : single ? Math.fround(value.value) : value.value,
+    integer,
+    ...(single ? { single } : {}),
+  };
+}
+
+type NumberValue = Extract<ConstantValue, { readonly value: number }>;
+
+/** The usual arithmetic conversions: whole numbers stay whole, single precision stays single beside them. @source ISO/IEC 9899:2018, 6.3.1.8 */
+function combine(operator: string, left: NumberValue, right: NumberValue): ConstantValue | null {
+  const result = apply(operator, left.value, right.value, left.integer && right.integer);
+  const single =
+    (left.single === true && (right.single === true || right.integer)) || (right.single === true && left.integer);
+  if (!single || result === null || typeof result.value !== 'number') return result;
+  return { value: Math.fround(result.value), integer: false, single };
 }
 
 function apply(operator: string, a: number, b: number, integer: boolean): ConstantValue | null {

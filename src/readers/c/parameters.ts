@@ -99,8 +99,9 @@ function normal(type: string): string {
   if (!words.every((word) => BUILTIN.has(word))) return type;
   const longs = words.filter((word) => word === 'long').length;
   const unsigned = words.includes('unsigned');
-  const base = words.find((word) => !/^(?:long|unsigned|signed|int|short)$/.test(word));
-  if (base === 'double') return longs > 0 ? 'long double' : words.includes('_Complex') ? 'double _Complex' : 'double';
+  const base = words.find((word) => !/^(?:long|unsigned|signed|int|short|_Complex|__complex__)$/.test(word));
+  const complex = words.includes('_Complex') || words.includes('__complex__') ? ' _Complex' : '';
+  if (base === 'double' || base === 'float') return `${longs > 0 ? 'long ' : ''}${base}${complex}`;
   if (base === 'char') return unsigned ? 'unsigned char' : words.includes('signed') ? 'signed char' : 'char';
   if (base !== undefined) return type;
   const size = longs > 1 ? 'long long' : longs === 1 ? 'long' : words.includes('short') ? 'short' : 'int';
@@ -285,7 +286,8 @@ function parameter(
         if (file.word(at + 1) !== '::') typed++;
         continue;
       }
-      names.push(at);
+      // `const pair<A, B> &`: the name of a template is that of a type.
+      if (file.word(at + 1) !== '<') names.push(at);
     }
   }
   let candidates = names;

@@ -47,6 +47,8 @@ const LONGEST = 20_000;
 
 class Declarations {
   private readonly file: CFile;
+  /** What each class of this file extends, as written. */
+  private readonly bases = new Map<string, string>();
 
   constructor(file: CFile) {
     this.file = file;
@@ -80,6 +82,8 @@ class Declarations {
         const close = file.match(at);
         return close > at ? close + 1 : at + 1;
       }
+      case '__extension__':
+        return at + 1;
       case 'namespace':
         return this.namespace(at, to, scope);
       case 'inline':
@@ -96,7 +100,11 @@ class Declarations {
         }
         break;
       case 'static_assert':
-      case '_Static_assert':
+      case '_Static_assert': {
+        const end = this.toSemicolon(at, to);
+        scanBody(file, at, end, null, new Map());
+        return end;
+      }
       case 'asm':
       case '__asm__':
         return this.toSemicolon(at, to);
@@ -150,6 +158,7 @@ class Declarations {
         next = Math.max(next, file.match(next));
         continue;
       }
+      if (/^__attribute__$|^__declspec$/.test(word)) continue;
       if ((file.kind(next) === T.name && !isMarker(word)) || word === '::') name += word === 'inline' ? '' : word;
       else if (file.kind(next) !== T.name) return next;
       else if (name === '' || name.endsWith('::')) name += word;
@@ -230,7 +239,7 @@ class Declarations {
         const before = file.word(at - 1);
         if (
           word === '(' &&
-          !/^(?:__attribute__|alignas|__declspec|_Alignas|CCTK_\w+)$/.test(before) &&
+          !/^(?:__attribute__|__attribute|alignas|__declspec|_Alignas|CCTK_\w+)$/.test(before) &&
           !isMarker(before)
         )
           return null;
@@ -247,7 +256,7 @@ class Declarations {
         continue;
       }
       if (file.kind(at) === T.name) {
-        if (word === 'final' || /^(?:__attribute__|alignas|__declspec|_Alignas)$/.test(word)) continue;
+        if (word === 'final' || /^(?:__attribute__|__attribute|alignas|__declspec|_Alignas)$/.test(word)) continue;
         if (name.endsWith('::')) name += word;
         else if (name === '' || isMarker(name) || file.word(at - 1) === ')') {
           name = word;
@@ -307,6 +316,7 @@ class Declarations {
       // An unnamed union or struct inside another: its members are reached as members of the outer one.
       const inner = name === '' ? scope.parent : scope.parent === null ? name : `${scope.parent}::${name}`;
       const fields = file.openFields();
+      if (extended !== undefined) this.bases.set(lastName(name), extended);
       this.scope(at + 1, inside, {
         parent: inner,
         className: name === '' ? (scope.className ?? '') : name,
@@ -482,7 +492,7 @@ class Declarations {
         }
         // A marker with arguments in front of the declaration: `EXPORT(int) f(...)`, `DEPRECATED("...") int f(...)`.
         const behind = close + 1;
-        if (!typed && scope.className !== name && !name.includes('::')) {
+        if (!typed && lastName(scope.className ?? '') !== name && !name.includes('::') && !name.startsWith('~')) {
           const verdict = this.loneMacro(at, close, to, scope, name);
           if (verdict === 'marker') {
             at = close;
@@ -547,6 +557,24 @@ class Declarations {
       }
     }
     return Math.max(at, from);
+  }
+
+  /** The token of the name itself in `A<T>::f<int>(`, with its `~`. */
+  private lastNamePart(nameAt: number, open: number): number {
+    const { file } = this;
+    let at = open - 1;
+    if (file.word(at) === '>') {
+      let depth = 0;
+      for (let back = at; back > nameAt; back--) {
+        if (file.word(back) === '>') depth++;
+        else if (file.word(back) === '<' && --depth === 0) {
+          at = back - 1;
+          break;
+        }
+      }
+    }
+    if (at <= nameAt || file.kind(at) !== T.name) return nameAt;
+    return file.word(at - 1) === '~' ? at - 1 : at;
   }
 
   private operatorName(at: number, limit: number): { name: string; open: number } | null {
@@ -754,6 +782,7 @@ class Declarations {
     if (file.language === 'c' && file.kind(at) === T.name) old = this.oldStyle(open, close, to);
     if (old > 0) at = old;
     let trailing: [number, number] | null = null;
+    let initialisers: [number, number] | null = null;
     let body = -1;
     let end = -1;
     for (; at < to; at++) {
@@ -784,7 +813,9 @@ class Declarations {
         continue;
       }
       if (word === ':') {
-        at = this.memberInitialisers(at + 1, to) - 1;
+        const begins = at + 1;
+        at = this.memberInitialisers(begins, to) - 1;
+        initialisers = [begins, at + 1];
         continue;
       }
       if (word === '(' || word === '[') {
@@ -832,6 +863,8 @@ class Declarations {
       owner = parent === null ? qualified : `${parent}::${qualified}`;
       typeTo = start;
     }
+    // `pair(A, B) -> pair<A, B>;` guides the deduction of a class; it is no function.
+    if (trailing !== null && body < 0 && nameAt <= from && owner === scope.parent) return end;
     const className = scope.className ?? (written.includes('::') ? lastName(owner ?? '') : null);
     const constructs = className !== null && (name === lastName(className) || name === `~${lastName(className)}`);
     while (typeFrom < typeTo && QUALIFIERS.has(file.word(typeFrom)) && file.word(typeFrom) !== 'const') typeFrom++;
@@ -865,7 +898,7 @@ class Declarations {
       ...(linkName === undefined ? {} : { linkName }),
       ...(condition === '' ? {} : { condition }),
       ...(template === undefined ? {} : { template: template.slice(0, 300) }),
-      ...file.at(nameAt),
+      ...file.at(operator ? nameAt : this.lastNamePart(nameAt, open)),
     };
     file.procedures.push(procedure);
     this.procedureClaims(procedure, begin, nameAt, open, close);
@@ -874,9 +907,49 @@ class Declarations {
     for (const one of args) types.set(one.name, one.type);
     const qualified = owner === null ? name : `${owner}::${name}`;
     if (bodyEnd < 0) return body + 1;
-    // Initialisers of members call too.
-    scanBody(file, close + 1, bodyEnd, qualified, types);
+    if (initialisers !== null) this.scanInitialisers(initialisers, className, qualified, types);
+    scanBody(file, body, bodyEnd, qualified, types);
     return bodyEnd + 1;
+  }
+
+  /** `: Base(x), member(f(y))`: a base or the class itself is called, a member is given a value. */
+  private scanInitialisers(
+    [from, to]: readonly [number, number],
+    className: string | null,
+    caller: string,
+    types: Map<string, string>,
+  ): void {
+    const { file } = this;
+    const bases = this.basesOf(className);
+    for (let at = from; at < to; at++) {
+      const word = file.word(at);
+      if (word === '<') at = Math.max(at, closeAngle(file, at, to));
+      if (word !== '(' && word !== '{') continue;
+      const close = file.match(at);
+      if (close < 0) return;
+      let name = at - 1;
+      if (file.word(name) === '>') name = this.nameStart(name, from);
+      const called = file.word(name);
+      if (word === '(' && (called === lastName(className ?? '') || bases.has(called)))
+        this.scanBase(file.word(at - 1) === '>' ? name : at - 1, close + 1, caller, types);
+      else scanBody(file, at + 1, close, caller, types);
+      at = close;
+    }
+  }
+
+  private scanBase(from: number, to: number, caller: string, types: Map<string, string>): void {
+    const { calls } = this.file;
+    const first = calls.length;
+    scanBody(this.file, from, to, caller, types);
+    const call = calls[first];
+    if (call !== undefined) calls[first] = { ...call, how: 'constructor' };
+  }
+
+  /** Names of the classes that a class is made from, as far as this file says. */
+  private basesOf(className: string | null): ReadonlySet<string> {
+    if (className === null) return new Set();
+    const bare = lastName(className);
+    return new Set((this.bases.get(bare) ?? '').match(/[A-Za-z_]\w*/g) ?? []);
   }
 
   private procedureClaims(procedure: Procedure, begin: number, nameAt: number, open: number, close: number): void {

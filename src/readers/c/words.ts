@@ -4,7 +4,7 @@ const set = (text: string) => new Set(text.split(/\s+/));
 
 /** Words that a type may be made of. */
 export const BUILTIN = set(
-  'void bool char short int long float double signed unsigned wchar_t char8_t char16_t char32_t auto _Bool _Complex __int128 __float128 size_t',
+  'void bool __complex__ char short int long float double signed unsigned wchar_t char8_t char16_t char32_t auto _Bool _Complex __int128 __float128 size_t',
 );
 /** Qualifiers that are no part of the type that is compared. */
 export const QUALIFIERS = set(
@@ -14,7 +14,7 @@ export const QUALIFIERS = set(
 export const TAGS = set('struct class union enum');
 /** Words before a bracket that are no call. */
 export const NO_CALL = set(
-  'if while for switch return sizeof alignof alignas _Alignof decltype catch defined __attribute__ __attribute __declspec static_assert _Static_assert noexcept throw new delete typeid co_await co_return co_yield requires asm __asm__ __asm typeof __typeof__ else do case goto operator template typename and or not static_cast dynamic_cast const_cast reinterpret_cast _Pragma __pragma int double float char long short unsigned signed void bool auto const constexpr explicit',
+  '__int128 __float128 __typeof __alignof__ __alignof __decltype wchar_t char8_t char16_t char32_t __extension__ __real__ __imag__ __vector_size__ __aligned__ __builtin_offsetof __builtin_va_arg if while for switch return sizeof alignof alignas _Alignof decltype catch defined __attribute__ __attribute __declspec static_assert _Static_assert noexcept throw new delete typeid co_await co_return co_yield requires asm __asm__ __asm typeof __typeof__ else do case goto operator template typename and or not static_cast dynamic_cast const_cast reinterpret_cast _Pragma __pragma int double float char long short unsigned signed void bool auto const constexpr explicit',
 );
 /** Words after which a name before a bracket is still called. */
 export const BEFORE_CALL = set('return else case do throw co_return co_await co_yield and or not in goto new delete');
@@ -66,6 +66,7 @@ const BYTES: Readonly<Record<string, number>> = {
   __int128: 16,
   'double _Complex': 16,
   'float _Complex': 8,
+  'long double _Complex': 32,
   'std::complex<double>': 16,
   'std::complex<float>': 8,
 };
