@@ -34,7 +34,15 @@ export class Conditions {
   branch: Branch | null = null;
   /** The names given rule the present line out. */
   off = false;
-  private readonly stack: { group: BranchGroup; outer: Branch | null; outerOff: boolean; taken: boolean }[] = [];
+  private readonly stack: {
+    group: BranchGroup;
+    outer: Branch | null;
+    outerOff: boolean;
+    /** A branch of the group is the one that is compiled. */
+    taken: boolean;
+    /** Whether an earlier branch is compiled can not be told. */
+    doubtful: boolean;
+  }[] = [];
   private readonly define: Readonly<Record<string, string>> | undefined;
   readonly macros: Map<string, string>;
 
@@ -102,7 +110,7 @@ export class Conditions {
 
   private open(condition: string): void {
     const group: BranchGroup = { branches: [], written: [condition], hasElse: false };
-    const entry = { group, outer: this.branch, outerOff: this.off, taken: false };
+    const entry = { group, outer: this.branch, outerOff: this.off, taken: false, doubtful: false };
     this.stack.push(entry);
     this.enter(entry, condition, condition);
   }
@@ -123,12 +131,16 @@ export class Conditions {
     group.branches.push(branch);
     this.branch = branch;
     if (this.define === undefined) return;
-    const holds = condition === null ? !entry.taken : conditionHolds(condition, (name) => this.valueOf(name));
-    this.off = entry.outerOff || entry.taken || holds === false;
-    if (holds === true) entry.taken = true;
+    const said = condition === null ? true : conditionHolds(condition, (name) => this.macroValue(name));
+    this.off = entry.outerOff || entry.taken || said === false;
+    if (said === null) entry.doubtful = true;
+    if (said !== true || entry.taken) return;
+    // What is certain to be compiled stands under no condition any more.
+    if (!entry.doubtful) this.branch = outer;
+    entry.taken = true;
   }
 
-  private valueOf(name: string): string | null {
+  private macroValue(name: string): string | null {
     const { define } = this;
     if (define !== undefined && Object.hasOwn(define, name)) return define[name]!;
     return this.macros.get(name) ?? null;

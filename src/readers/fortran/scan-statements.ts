@@ -462,7 +462,7 @@ export class StatementScanner {
           if (count > 0) {
             while (n > 0 && code[n - 1]! >= 48 && code[n - 1]! <= 57) n--;
             code[n] = 39;
-            source[n++] = at;
+            n++;
             const taken = Math.min(count, end - at - 1);
             this.hollerith = count - taken;
             at += taken;

@@ -231,10 +231,11 @@ export class Statement {
     return text.length > longest ? text.slice(0, longest) : text;
   }
 
-  /** The inside of the character constant whose first quote is at `index`; doubled quotes single. */
+  /** The inside of the character constant whose first quote is at `index`, doubled quotes single; of a Hollerith constant what follows the `h`. */
   constant(index: number): string {
     const quote = String.fromCharCode(this.text.bytes[this.source[index]!]!);
     const whole = this.original(index, index + 2);
+    if (quote >= '0' && quote <= '9') return whole.replace(/^[\d\s]*h/i, '');
     return whole.slice(1, -1).replaceAll(quote + quote, quote);
   }
 
