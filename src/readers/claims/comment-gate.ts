@@ -35,7 +35,8 @@ export const CLAIM_WORDS: readonly (readonly [string, number])[] = [
 
 /** A table of names: the number of a spelling that is known, flags and stamps by number. */
 export interface WordTable {
-  known(bytes: Uint8Array, from: number, to: number): number;
+  /** `hash`: 31 times the hash so far plus the byte in lower case. */
+  knownHashed(bytes: Uint8Array, from: number, to: number, hash: number): number;
   readonly flags: Uint8Array;
   readonly stamps: Int32Array;
 }
@@ -79,24 +80,34 @@ export function lookAtComment(table: WordTable, bytes: Uint8Array, from: number,
       let end = at + 1;
       let letters = 0;
       let underscore = byte === 95;
+      let hash = underscore ? 95 : byte | 32;
+      let letterHash = 0;
       for (; end < to; end++) {
-        const next = CLASS[bytes[end]!]!;
+        const one = bytes[end]!;
+        const next = CLASS[one]!;
         if (next === LETTER) {
-          if (bytes[end] === 95) underscore = true;
+          if (one === 95) {
+            underscore = true;
+            hash = (Math.imul(hash, 31) + 95) | 0;
+          } else hash = (Math.imul(hash, 31) + (one | 32)) | 0;
         } else if (next === DIGIT) {
-          if (letters === 0) letters = end - at;
-          if (underscore && bytes[end - 1] === 95 && bytes[end] === 49) found |= SAYS;
+          if (letters === 0) {
+            letters = end - at;
+            letterHash = hash;
+          }
+          if (underscore && bytes[end - 1] === 95 && one === 49) found |= SAYS;
+          hash = (Math.imul(hash, 31) + one) | 0;
         } else break;
       }
       words++;
-      const id = table.known(bytes, at, end);
+      const id = table.knownHashed(bytes, at, end, hash);
       let flag = 0;
       if (id >= 0) {
         if (stamps[id] === stamp) found |= MENTIONS;
         flag = flags[id]!;
       }
       if (letters > 0 && (flag & UNIT_WORD) === 0) {
-        const plain = table.known(bytes, at, at + letters);
+        const plain = table.knownHashed(bytes, at, at + letters, letterHash);
         if (plain >= 0) flag |= flags[plain]! & UNIT_WORD;
       }
       if ((flag & SAYING_WORD) !== 0) found |= SAYS;

@@ -101,6 +101,21 @@ const TOKEN =
  * @param text what stands between the brackets, or behind "in", without them
  */
 export function unitGrade(text: string): UnitGrade {
+  const known = GRADES.get(text);
+  if (known !== undefined) return known;
+  const found = judge(text);
+  if (text.length <= LONGEST) {
+    if (GRADES.size >= MOST_GRADES) GRADES.clear();
+    GRADES.set(text, found);
+  }
+  return found;
+}
+
+/** Comments of one code put the same few things into brackets again and again. */
+const GRADES = new Map<string, UnitGrade>();
+const MOST_GRADES = 20_000;
+
+function judge(text: string): UnitGrade {
   const trimmed = text.trim();
   if (trimmed.length === 0 || trimmed.length > LONGEST) return 'none';
   const first = trimmed.charCodeAt(0);

@@ -13,8 +13,8 @@ export function claimDeclared(reading: Reading, statement: Statement, names: rea
   if (reading.inside > 0) return;
   reading.lastNames = names;
   reading.lastLine = statement.endLine;
-  const { comments } = statement;
-  for (let at = 0; at < comments.length; at += 3) {
+  const { comments, commentCount } = statement;
+  for (let at = 0; at < commentCount; at += 3) {
     const [from, to, line] = [comments[at]!, comments[at + 1]!, comments[at + 2]!];
     if ((lookAtComment(reading.names, reading.text.bytes, from, to, -1) & SAYS) === 0) continue;
     // A comment on a continued line is about what stands on that line.

@@ -8,10 +8,12 @@ import type { Reading } from './reading.ts';
 import { type Draft, declaredFrom, type ImplicitType, kindIn, type Scope, valueIn } from './scope.ts';
 import type { Statement } from './statement.ts';
 
-/** Takes a statement that declares something; false when it is none. */
-export function declares(reading: Reading, statement: Statement): boolean {
-  const { scope } = reading;
-  const spec = typeSpecAt(statement, 0, (name) => kindIn(scope, name));
+/**
+ * Takes a statement that declares something; false when it is none.
+ *
+ * @param spec  the type that it begins with
+ */
+export function declares(reading: Reading, statement: Statement, spec: TypeSpec | null): boolean {
   if (spec !== null) return typed(reading, statement, spec);
   switch (statement.code[0]) {
     case 97: // a
@@ -404,7 +406,7 @@ function common(reading: Reading, statement: Statement): boolean {
           condition,
           own: reading.inside === 0,
         });
-      if (statement.comments.length > 0)
+      if (statement.commentCount > 0)
         claimDeclared(
           reading,
           statement,

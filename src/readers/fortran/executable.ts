@@ -43,7 +43,7 @@ export function executes(reading: Reading, statement: Statement): void {
     const nameEnd = statement.nameEnd(from);
     if (code[nameEnd] !== 37) assignedLiterals(reading, statement, from, nameEnd, assigned);
   }
-  if (statement.openCount > 0 && (code[from] === 111 || hasQuote(statement))) externals(reading, statement, from);
+  if (statement.quoted && statement.openCount > 0) externals(reading, statement, from);
 }
 
 function begins(statement: Statement): boolean {
@@ -398,12 +398,6 @@ function assignedLiterals(
   else return;
   if (type !== 'real' && type !== 'complex') return;
   literalsOf(reading, statement, assigned + 1, statement.length, name, bytes, type, 'assigned');
-}
-
-function hasQuote(statement: Statement): boolean {
-  const { code, length } = statement;
-  for (let at = 0; at < length; at++) if (code[at] === 39) return true;
-  return false;
 }
 
 /** Files that OPEN names and environment variables that are asked for, where a literal says which. */

@@ -21,8 +21,6 @@ const MOST = 1 << 18;
 /** Longer stretches are seldom written twice: they are made into strings without a place in the table. */
 const LONGEST = 64;
 
-const SCRATCH = Buffer.alloc(LONGEST);
-
 /**
  * A table of spellings. Open addressing over a hash of the bytes; looking a known name up makes no string.
  * Names are folded to lower case, as Fortran compares them. `flags` hold what a caller marks a name with.
@@ -34,6 +32,7 @@ export class Names {
   private pool = new Uint8Array(1 << 16);
   private count = 0;
   private texts: string[] = [];
+  private readonly ids = new Map<string, number>();
   flags = new Uint8Array(1 << 12);
   /** For callers who mark a set of names: a name is in the set when its stamp is the set's number. */
   stamps = new Int32Array(1 << 12);
@@ -59,6 +58,7 @@ export class Names {
     this.slots.fill(-1);
     this.count = 0;
     this.texts = [];
+    this.ids.clear();
     this.flags.fill(0);
     this.stamps.fill(0);
     this.offsets[0] = 0;
@@ -76,11 +76,20 @@ export class Names {
   }
 
   private find(bytes: Uint8Array, from: number, to: number, enter: boolean): number {
-    const length = to - from;
-    if (length > LONGEST) return -1;
-    let hash = length;
+    if (to - from > LONGEST) return -1;
+    let hash = 0;
     for (let at = from; at < to; at++) hash = (Math.imul(hash, 31) + LOWER[bytes[at]!]!) | 0;
-    hash ^= hash >>> 15;
+    return this.findHashed(bytes, from, to, hash, enter);
+  }
+
+  /** The same for who has made the hash on the way: 31 times the hash so far plus the byte in lower case. */
+  knownHashed(bytes: Uint8Array, from: number, to: number, hash: number): number {
+    return to - from > LONGEST ? -1 : this.findHashed(bytes, from, to, hash, false);
+  }
+
+  private findHashed(bytes: Uint8Array, from: number, to: number, raw: number, enter: boolean): number {
+    const length = to - from;
+    const hash = raw ^ (raw >>> 15);
     const mask = this.slots.length - 1;
     let slot = hash & mask;
     for (let id = this.slots[slot]!; id >= 0; id = this.slots[slot]!) {
@@ -109,7 +118,9 @@ export class Names {
     this.flags[id] = 0;
     this.stamps[id] = 0;
     this.slots[slot] = id;
-    this.texts.push(Buffer.from(this.pool.buffer, this.pool.byteOffset, this.pool.length).latin1Slice(start, end));
+    const text = Buffer.from(this.pool.buffer, this.pool.byteOffset, this.pool.length).latin1Slice(start, end);
+    this.texts.push(text);
+    this.ids.set(text, id);
     if (id + 2 >= this.hashes.length) {
       this.hashes = grown(this.hashes);
       this.offsets = grown(this.offsets);
@@ -130,12 +141,10 @@ export class Names {
     }
   }
 
-  /** Marks a name, given in lower case, as one of set number `stamp`. */
+  /** Marks a name that was made here as one of set number `stamp`. */
   stamp(name: string, stamp: number): void {
-    if (name.length > LONGEST) return;
-    const length = SCRATCH.latin1Write(name);
-    const id = this.find(SCRATCH, 0, length, true);
-    this.stamps[id] = stamp;
+    const id = this.ids.get(name);
+    if (id !== undefined) this.stamps[id] = stamp;
   }
 
   text(id: number): string {

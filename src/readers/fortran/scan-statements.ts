@@ -25,6 +25,11 @@ const SPECIAL = 2;
 const CLASS = new Uint8Array(256).fill(PLAIN);
 for (const byte of [32, 9, 13, 12, 11]) CLASS[byte] = BLANK;
 for (const mark of '!&;\'"()[]=,') CLASS[mark.charCodeAt(0)] = SPECIAL;
+/** Statements whose scanner has done: their buffers serve the next. */
+const POOL: Statement[] = [];
+/** A statement grown beyond that is left to the collector. */
+const LARGE_STATEMENT = 1 << 20;
+
 /** In fixed form also the `h` of a Hollerith constant, and the underscore of an exponent behind a macro. */
 const FIXED_CLASS = Uint8Array.from(CLASS);
 for (const mark of 'hH_') FIXED_CLASS[mark.charCodeAt(0)] = SPECIAL;
@@ -45,6 +50,7 @@ export class StatementScanner {
   /** A blank was seen before the next character. */
   private gap = false;
   private depth = 0;
+  /** Indices of the parentheses that are open, `depth` of them. */
   private readonly stack: number[] = [];
   /** Comments and directives behind an open statement of fixed form, which may still be continued. */
   private readonly waitingComments: number[] = [];
@@ -63,10 +69,13 @@ export class StatementScanner {
     this.handler = handler;
     this.columns = columns;
     this.fixed = form === 'fixed';
-    this.statement = new Statement(text, names, this.fixed);
+    this.statement = POOL.pop() ?? new Statement(text, names, this.fixed);
+    this.statement.text = text;
+    this.statement.names = names;
+    this.statement.fixed = this.fixed;
   }
 
-  /** Scans bytes `from` to `to`, which begin a line, numbered `firstLine`. */
+  /** Scans bytes `from` to `to`, which begin a line, numbered `firstLine`, to their end; a scanner is used once. */
   scan(from: number, to: number, firstLine: number): void {
     const { bytes } = this;
     let line = firstLine;
@@ -86,6 +95,7 @@ export class StatementScanner {
       start = end + 1;
     }
     this.close();
+    if (this.statement.code.length < LARGE_STATEMENT) POOL.push(this.statement);
   }
 
   /** One line that chooses no branch. */
@@ -120,7 +130,7 @@ export class StatementScanner {
     if (from === end) return;
     const joining = this.continues && this.isOpen;
     if (bytes[from] === 33 && this.quote === 0) {
-      if (joining) statement.comments.push(from, end, line);
+      if (joining) statement.addComment(from, end, line);
       else this.handler.comment(from, end, line);
       return;
     }
@@ -158,7 +168,6 @@ export class StatementScanner {
     this.hollerith = 0;
     this.gap = false;
     this.depth = 0;
-    this.stack.length = 0;
   }
 
   private takeFree(from: number, end: number, lineStart: number, line: number): void {
@@ -198,7 +207,7 @@ export class StatementScanner {
       }
       switch (byte) {
         case 33: // !
-          statement.comments.push(at, end, line);
+          statement.addComment(at, end, line);
           statement.pieces[statement.pieceCount - 1]!.to = at;
           statement.length = n;
           return;
@@ -210,7 +219,7 @@ export class StatementScanner {
             source[n++] = at++;
             continue;
           }
-          if (next < end) statement.comments.push(next, end, line);
+          if (next < end) statement.addComment(next, end, line);
           statement.pieces[statement.pieceCount - 1]!.to = at;
           this.continues = n < LONGEST_STATEMENT;
           this.gap = bytes[at - 1] === 32 || bytes[at - 1] === 9;
@@ -279,6 +288,7 @@ export class StatementScanner {
     const { statement } = this;
     statement.code[statement.length] = 39;
     statement.source[statement.length++] = at;
+    statement.quoted = true;
     this.quote = 0;
   }
 
@@ -290,17 +300,12 @@ export class StatementScanner {
       case 40:
       case 91:
         statement.match[index] = -1;
-        this.stack.push(index);
+        this.stack[this.depth++] = index;
         statement.addOpen(index);
-        this.depth++;
         break;
       case 41:
       case 93: {
-        const open = this.stack.pop();
-        if (open !== undefined) {
-          statement.match[open] = index;
-          this.depth--;
-        }
+        if (this.depth > 0) statement.match[this.stack[--this.depth]!] = index;
         break;
       }
       case 61:
@@ -382,8 +387,9 @@ export class StatementScanner {
     if (continuing && this.isOpen) {
       // Comments between the lines of a statement are comments on it.
       if (this.waitingComments.length > 0) {
-        for (const one of this.waitingComments) this.statement.comments.push(one);
-        this.waitingComments.length = 0;
+        const waiting = this.waitingComments.splice(0);
+        for (let one = 0; one < waiting.length; one += 3)
+          this.statement.addComment(waiting[one]!, waiting[one + 1]!, waiting[one + 2]!);
       }
     } else {
       this.close();
@@ -429,7 +435,7 @@ export class StatementScanner {
       }
       switch (byte) {
         case 33:
-          statement.comments.push(at, lineEnd, line);
+          statement.addComment(at, lineEnd, line);
           statement.pieces[statement.pieceCount - 1]!.to = at;
           statement.length = n;
           return;
@@ -468,6 +474,7 @@ export class StatementScanner {
             at += taken;
             code[n] = 39;
             source[n++] = at++;
+            statement.quoted = true;
             continue;
           }
           code[n] = 104;

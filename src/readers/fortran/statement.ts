@@ -42,21 +42,30 @@ export class Statement {
   endLine = 0;
   readonly pieces: Piece[] = [];
   pieceCount = 0;
-  /** Comments on its own lines: begin, end, line of each. */
+  /** Comments on its own lines: begin, end, line of each, `commentCount` numbers in all. */
   readonly comments: number[] = [];
+  commentCount = 0;
+  /** It holds a character constant. */
+  quoted = false;
   /** The branch that it begins in. */
   branch: Branch | null = null;
   /** Lines of it stand in other branches than its first. */
   divided = false;
   /** Blanks do not separate words. */
-  readonly fixed: boolean;
-  readonly text: SourceText;
-  readonly names: Names;
+  fixed: boolean;
+  text: SourceText;
+  names: Names;
 
   constructor(text: SourceText, names: Names, fixed: boolean) {
     this.text = text;
     this.names = names;
     this.fixed = fixed;
+  }
+
+  addComment(from: number, to: number, line: number): void {
+    this.comments[this.commentCount++] = from;
+    this.comments[this.commentCount++] = to;
+    this.comments[this.commentCount++] = line;
   }
 
   clear(): void {
@@ -66,7 +75,8 @@ export class Statement {
     this.commaBehind = false;
     this.label = '';
     this.pieceCount = 0;
-    this.comments.length = 0;
+    this.commentCount = 0;
+    this.quoted = false;
     this.divided = false;
   }
 

@@ -6,7 +6,7 @@ import { alternativesOf, type Branch, Conditions, exclude, isWithin } from './co
 import { declares } from './declarations.ts';
 import { evaluate } from './evaluate.ts';
 import { assignmentAt, executes } from './executable.ts';
-import { typeSpecAt } from './kinds.ts';
+import { type TypeSpec, typeSpecAt } from './kinds.ts';
 import type { Names } from './names.ts';
 import { type Found, Reading } from './reading.ts';
 import { type ScanHandler, StatementScanner } from './scan-statements.ts';
@@ -41,6 +41,8 @@ export class UnitReader implements ScanHandler {
   private scanForm: 'fixed' | 'free';
   private readonly columns: number;
   private readonly includedNow: string[] = [];
+  /** The type that the present statement begins with, found while it was held for a function. */
+  private spec: TypeSpec | null = null;
 
   constructor(
     path: string,
@@ -59,6 +61,8 @@ export class UnitReader implements ScanHandler {
     this.scanForm = form;
     this.columns = columns;
   }
+
+  private readonly kindOf = (name: string) => kindIn(this.reading.scope, name);
 
   read(from: number, to: number, firstLine: number): void {
     const { names } = this.reading;
@@ -180,13 +184,14 @@ export class UnitReader implements ScanHandler {
       return;
     }
     if (first === 101 && this.ends(statement)) return;
+    this.spec = null;
     if (this.begins(statement)) return;
     const { kind } = reading.scope;
     if (kind === 'type' && this.inType(statement)) return;
     if (kind === 'interface' && this.inInterface(statement)) return;
     if (first === 105 && this.includes(statement)) return;
     if (first === 101 && this.entry(statement)) return;
-    if (declares(reading, statement)) return;
+    if (declares(reading, statement, this.spec)) return;
     executes(reading, statement);
   }
 
@@ -409,7 +414,7 @@ export class UnitReader implements ScanHandler {
     const { reading } = this;
     const { code, length } = statement;
     const attributes: string[] = [];
-    let prefix: ReturnType<typeof typeSpecAt> = null;
+    let prefix: TypeSpec | null = null;
     let at = 0;
     for (;;) {
       const next = this.prefixEnd(statement, at, attributes);
@@ -418,7 +423,8 @@ export class UnitReader implements ScanHandler {
         continue;
       }
       if (prefix !== null) break;
-      prefix = typeSpecAt(statement, at, (name) => kindIn(reading.scope, name));
+      prefix = typeSpecAt(statement, at, this.kindOf);
+      if (at === 0) this.spec = prefix;
       if (prefix === null || prefix.end >= length) break;
       at = prefix.end;
     }
@@ -1047,6 +1053,7 @@ function mergeAlike<T extends { line: number; column: number; condition?: string
   ways: number,
   base: string | undefined,
 ): void {
+  if (list.length <= first) return;
   const added = list.splice(first);
   const groups = new Map<string, T[]>();
   for (const one of added) {
