@@ -14,6 +14,8 @@ export interface CommentOptions {
   readonly block?: boolean;
   /** Names differ by case (C, Python); the default compares them without (Fortran). */
   readonly caseSensitive?: boolean;
+  /** Lines were looked at before (`lookAtComment`): those that come may say something. */
+  readonly looked?: boolean;
 }
 
 /** Longest comment looked at, in characters; a licence or a table in a comment is not read to its end. */
@@ -86,7 +88,7 @@ export class CommentClaims {
     const heads = namesAtStart(line, candidates);
     if (heads.length > 0) this.subject = heads;
     else if (options.block === true && /^[\s*!/#-]*$/.test(line)) this.subject = [];
-    if (!WORTH_READING.test(line)) return;
+    if (options.looked !== true && !WORTH_READING.test(line)) return;
     const units = unitsInComment(line, candidates.names);
     const conventions = conventionsIn(line);
     if (units.length === 0 && conventions.length === 0) return;

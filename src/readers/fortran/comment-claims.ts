@@ -31,7 +31,7 @@ export function claimFollowing(reading: Reading, from: number, to: number, line:
 
 function claimComment(reading: Reading, names: readonly string[], from: number, to: number, line: number): void {
   if (names.length === 0) return;
-  const claims = new CommentClaims(names, reading.scope.own);
+  const claims = new CommentClaims(names, reading.scope.own, { looked: true });
   takeLine(reading, claims, from, to, line);
   for (const claim of claims.claims) reading.found.claims.push(claim);
 }
@@ -128,7 +128,7 @@ export function claimBlocks(reading: Reading, scope: Scope, first: number): void
     }
     if (claims === null) {
       list ??= [...candidates];
-      claims = new CommentClaims(list, scope.own, { block: true });
+      claims = new CommentClaims(list, scope.own, { block: true, looked: true });
     }
     for (const one of waiting) claims.subjectOf(lineText(reading, comments[one]!, comments[one + 1]!));
     waiting = [];
