@@ -33,6 +33,8 @@ interface TypeSaid {
   readonly attributes: readonly string[];
 }
 
+const SIGNS: readonly string[] = Array.from({ length: 128 }, (_, code) => String.fromCharCode(code));
+
 /** Messages of one kind beyond this many say nothing new. */
 const MOST_MISSED = 50;
 
@@ -71,7 +73,14 @@ export class CFile {
   word(at: number): string {
     const { tokens } = this;
     if (at < 0 || at >= tokens.count) return '';
-    return this.text.slice(tokens.start[at], tokens.end[at]);
+    const start = tokens.start[at]!;
+    const end = tokens.end[at]!;
+    // Most tokens looked at are single signs: no string is made for them.
+    if (end - start === 1) {
+      const code = this.text.charCodeAt(start);
+      if (code < 128) return SIGNS[code]!;
+    }
+    return this.text.slice(start, end);
   }
 
   kind(at: number): number {

@@ -31,6 +31,10 @@ export function plainParameters(file: TokenView, open: number, close: number): b
   return close === open + 1 || !name;
 }
 
+const ATTRIBUTES = new Set(['__attribute__', '__attribute', '__declspec', 'alignas', '_Alignas']);
+/** Qualifiers that are kept as attributes; the others say nothing about a value. */
+const SAID = new Set('const constexpr static extern volatile mutable thread_local virtual inline'.split(' '));
+
 export interface TypeWords {
   readonly type: string;
   readonly attributes: string[];
@@ -74,12 +78,11 @@ export function typeWords(file: TokenView, from: number, to: number): TypeWords 
     }
     if (file.kind(at) !== T.name) continue;
     if (QUALIFIERS.has(word)) {
-      if (/^(?:const|constexpr|static|extern|volatile|mutable|thread_local|virtual|inline)$/.test(word))
-        attributes.push(word);
+      if (SAID.has(word)) attributes.push(word);
       continue;
     }
     if (TAGS.has(word)) continue;
-    if (/^(?:__attribute__|__declspec|alignas|_Alignas)$/.test(word)) continue;
+    if (ATTRIBUTES.has(word)) continue;
     if (isMarker(word) && !type.endsWith('::') && file.word(at + 1) !== '::' && file.word(at + 1) !== '<') {
       marks.push(word);
       continue;
@@ -277,7 +280,7 @@ function parameter(
     else if (word === '*' || word === '&') pointer = true;
     else if (word === '.') variadic = true;
     else if (file.kind(at) === T.name) {
-      if (QUALIFIERS.has(word) || TAGS.has(word) || /^(?:__attribute__|alignas)$/.test(word)) continue;
+      if (QUALIFIERS.has(word) || TAGS.has(word) || ATTRIBUTES.has(word)) continue;
       if (BUILTIN.has(word) && file.word(at + 1) !== '::') {
         typed++;
         continue;

@@ -40,6 +40,14 @@ interface Scope {
   readonly depth: number;
 }
 
+const SPECIFIERS = new Set(
+  'static inline virtual extern constexpr explicit friend __device__ __host__ __global__'.split(' '),
+);
+/** Words of a declaration whose brackets are their own. */
+const WITH_BRACKETS = new Set(
+  '__attribute__ __attribute __declspec alignas _Alignas decltype __typeof__ typeof noexcept explicit'.split(' '),
+);
+
 /** Deeper nesting than any code has; the rest is skipped and said so. */
 const DEEPEST = 120;
 /** Tokens of one declaration before its body; more is a table or no declaration at all. */
@@ -433,12 +441,7 @@ class Declarations {
           return this.procedure(begin, from, at, nameOfOperator.name, nameOfOperator.open, to, scope, template);
         }
         // `__attribute__((...)) void f()`
-        if (
-          /^(?:__attribute__|__attribute|__declspec|alignas|_Alignas|decltype|__typeof__|typeof|noexcept|explicit)$/.test(
-            word,
-          ) &&
-          file.word(at + 1) === '('
-        ) {
+        if (file.word(at + 1) === '(' && WITH_BRACKETS.has(word)) {
           const close = file.match(at + 1);
           if (close < 0) return at + 2;
           at = close;
@@ -772,9 +775,8 @@ class Declarations {
     if (attribute !== undefined) typeTo = nameAt - 2;
     for (let index = from; index < typeTo; index++) {
       const word = file.word(index);
-      if (/^(?:static|inline|virtual|extern|constexpr|explicit|friend)$/.test(word)) attributes.push(word);
-      if (/^(?:__device__|__host__|__global__)$/.test(word) || (isMarker(word) && index + 1 < typeTo))
-        attributes.push(word);
+      if (SPECIFIERS.has(word)) attributes.push(word);
+      else if (isMarker(word) && index + 1 < typeTo) attributes.push(word);
     }
     // Behind the arguments: qualifiers, a trailing type, initialisers of members, the body.
     let at = after;

@@ -76,7 +76,14 @@ export function bytesOfType(type: string): number | null {
   return Object.hasOwn(BYTES, type) ? BYTES[type]! : null;
 }
 
-/** A name that stands for a vendor's marker: capitals and underscores only. */
+/** A name that stands for a vendor's marker: capitals, digits and underscores only, a capital among them. */
 export function isMarker(name: string): boolean {
-  return name.length > 2 && /^[A-Z_][A-Z0-9_]*$/.test(name) && /[A-Z]/.test(name);
+  if (name.length <= 2) return false;
+  let capital = false;
+  for (let at = 0; at < name.length; at++) {
+    const code = name.charCodeAt(at);
+    if (code >= 65 && code <= 90) capital = true;
+    else if (code !== 95 && (at === 0 || code < 48 || code > 57)) return false;
+  }
+  return capital;
 }
