@@ -665,11 +665,17 @@ class PythonReader {
     let start = open + 1;
     while (start < close) {
       let at = start;
-      while (at < close && !(this.kind(at) === P.operator && this.text(at) === ',')) {
-        const inner = this.text(at);
-        if (this.kind(at) === P.operator && (inner === '(' || inner === '[' || inner === '{'))
-          at = Math.max(at, Math.min(this.match(at), close));
-        else if (inner === 'lambda') while (at < close && this.text(at) !== ':') at++;
+      while (at < close && !(this.kind(at) === P.operator && this.isComma(at))) {
+        const kind = this.kind(at);
+        if (kind === P.operator) {
+          const match = this.match(at);
+          if (match > at) at = Math.min(match, close);
+        } else if (kind === P.name) {
+          const inner = this.text(at);
+          if (inner === 'lambda') while (at < close && this.text(at) !== ':') at++;
+          // `sum(a * b for a, b in pairs)`: what is drawn is the only argument, and its commas are its own.
+          else if (inner === 'for' && start === open + 1) at = close - 1;
+        }
         at++;
       }
       if (at > start) args.push(this.actual(start, at));
@@ -729,26 +735,41 @@ class PythonReader {
       start = from + 2;
     }
     const text = this.span(start, to).slice(0, 200);
-    const base = { text, ...(keyword === undefined ? {} : { keyword }), ...at };
+    // Written out field by field: this is the busiest place of the reader, and copies of objects are dear.
+    const give = (form: ActualArgument['form'], more: 'name' | 'type' | null, value: string): ActualArgument => {
+      const given: { -readonly [K in keyof ActualArgument]: ActualArgument[K] } = {
+        text,
+        form,
+        line: at.line,
+        column: at.column,
+      };
+      if (keyword !== undefined) given.keyword = keyword;
+      if (more === 'name') given.name = value;
+      else if (more === 'type') {
+        given.type = value;
+        given.rank = 0;
+      }
+      return given;
+    };
     let last = start;
     while (last + 2 < to && this.kind(last) === P.name && this.text(last + 1) === '.') last += 2;
     if (this.kind(last) === P.name && !KEYWORDS.has(this.text(last))) {
       if (last + 1 === to) {
         const word = this.text(last);
         if (last === start && (word === 'True' || word === 'False' || word === 'None'))
-          return { ...base, form: 'literal', type: word === 'None' ? 'None' : 'bool', rank: 0 };
-        return { ...base, form: 'name', name: word };
+          return give('literal', 'type', word === 'None' ? 'None' : 'bool');
+        return give('name', 'name', word);
       }
       if (this.text(last + 1) === '[' && this.match(last + 1) === to - 1) {
-        return { ...base, form: text.includes(':') ? 'section' : 'element', name: this.text(last) };
+        return give(text.includes(':') ? 'section' : 'element', 'name', this.text(last));
       }
     }
     const sign = this.text(start) === '-' || this.text(start) === '+' ? 1 : 0;
     if (start + sign + 1 === to && this.kind(start + sign) === P.number) {
-      return { ...base, form: 'literal', type: /[.eE]/.test(text) && !/^-?0x/i.test(text) ? 'float' : 'int', rank: 0 };
+      return give('literal', 'type', /[.eE]/.test(text) && !/^-?0x/i.test(text) ? 'float' : 'int');
     }
-    if (start + 1 === to && this.kind(start) === P.string) return { ...base, form: 'literal', type: 'str', rank: 0 };
-    return { ...base, form: this.text(start) === 'lambda' ? 'procedure' : 'expression' };
+    if (start + 1 === to && this.kind(start) === P.string) return give('literal', 'type', 'str');
+    return give(this.text(start) === 'lambda' ? 'procedure' : 'expression', null, '');
   }
 
   private literal(at: number, caller: string | null): void {
@@ -825,7 +846,19 @@ class PythonReader {
 
   private text(at: number): string {
     const { tokens } = this;
-    return at < 0 || at >= tokens.count ? '' : tokens.text.slice(tokens.start[at], tokens.end[at]);
+    if (at < 0 || at >= tokens.count) return '';
+    const start = tokens.start[at]!;
+    const end = tokens.end[at]!;
+    // Most tokens looked at are single signs: no string is made for them.
+    if (end - start === 1) {
+      const code = tokens.text.charCodeAt(start);
+      if (code < 128) return SIGNS[code]!;
+    }
+    return tokens.text.slice(start, end);
+  }
+
+  private isComma(at: number): boolean {
+    return this.tokens.text.charCodeAt(this.tokens.start[at]!) === 44;
   }
 
   private match(at: number): number {
@@ -863,6 +896,8 @@ class PythonReader {
     return { line: comment.line, column: comment.start - this.tokens.lineStarts[comment.line - 1]! + 1 };
   }
 }
+
+const SIGNS: readonly string[] = Array.from({ length: 128 }, (_, code) => String.fromCharCode(code));
 
 const plainName = (text: string) => /^[A-Za-z_][\w.]*$/.test(text);
 

@@ -145,4 +145,41 @@ describe('the reader of Python', () => {
     );
     fc.assert(fc.property(tokens, (parts) => void readPython('m.py', Buffer.from(parts.join('')))));
   });
+
+  it('takes time in proportion to the bytes, also where brackets never close', () => {
+    const hard = [
+      '(',
+      '[',
+      'f(',
+      'def f(a, ',
+      'class A(',
+      '"""',
+      'if x:\n ',
+      'f(a=',
+      'lambda x: ',
+      'a, b = f(1)\n',
+      'x = f(y=g(z), ',
+      '@a\n',
+      'a.b.',
+      '\\\n',
+      'f(x for x in ',
+      '{a: ',
+      '(f(1)).g(',
+      "f'{x}' ",
+      '# [K]\n',
+      'from a import b, ',
+    ];
+    for (const one of hard) {
+      const timed = (count: number) => {
+        const content = Buffer.from(one.repeat(count));
+        const start = performance.now();
+        readPython('m.py', content);
+        return performance.now() - start;
+      };
+      timed(1000);
+      const [short, long] = [Math.min(timed(2000), timed(2000)), Math.min(timed(16_000), timed(16_000))];
+      // Eight times the bytes may take eight times as long; sixty-four times would be the square.
+      expect({ one, ratio: long / Math.max(short, 4) < 32 }).toEqual({ one, ratio: true });
+    }
+  }, 120_000);
 });
