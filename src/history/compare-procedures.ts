@@ -52,7 +52,7 @@ function compareProcedure(before: Found, after: Found): Change[] {
   const changes: Change[] = [...compareArguments(before, after), ...compareResult(before, after)];
   const body = bodyOf(before);
   const other = bodyOf(after);
-  if (changes.length === 0 && body !== undefined && other !== undefined && body.hash !== other.hash) {
+  if (changes.length === 0 && body !== undefined && other !== undefined && !sameBody(body, other)) {
     changes.push({
       kind: 'implementation',
       subject: after.name,
@@ -62,6 +62,10 @@ function compareProcedure(before: Found, after: Found): Change[] {
     });
   }
   return changes;
+}
+
+function sameBody(a: ProcedureBody, b: ProcedureBody): boolean {
+  return (a.written !== undefined && a.written === b.written) || a.hash === b.hash;
 }
 
 function compareArguments(before: Found, after: Found): Change[] {

@@ -1,12 +1,13 @@
 /** Compares the files of one commit with those of its parents. Pure. */
 import type { Change } from '../model/change.ts';
 import { compareSides, stamped } from './compare-interfaces.ts';
+import type { FileContent } from './file-content.ts';
 import { sharedPrints } from './fingerprint.ts';
 import type { ScanAnswer, ScanStep } from './scan-step.ts';
 import type { SourceSide } from './source-side.ts';
 
 /** A blob read, or why not. */
-export type Reading = { readonly side: SourceSide } | { readonly why: string };
+export type Reading = { readonly content: FileContent } | { readonly why: string };
 
 /** Contents that agree this far are one file under two paths. */
 const MOVED_SIMILARITY = 0.5;
@@ -21,17 +22,17 @@ export function compareStep(
   sameUnit: (a: string, b: string) => boolean,
 ): ScanAnswer {
   const missing = new Map<string, string>();
-  const take = (id: string | null, path: string): SourceSide | null => {
+  const take = (id: string | null, path: string): FileContent | null => {
     if (id === null) return null;
     const found = reading(id, path);
-    if ('side' in found) {
-      const { incomplete } = found.side.code;
-      const failed = incomplete.find((one) => one.why.startsWith('the reader failed'));
-      if (failed !== undefined) missing.set(path, failed.why);
-      return { ...found.side, path };
-    }
+    if ('content' in found) return found.content;
     missing.set(path, found.why);
     return null;
+  };
+  const look = (side: SourceSide, path: string): SourceSide => {
+    const failed = side.code.incomplete.find((one) => one.why.startsWith('the reader failed'));
+    if (failed !== undefined) missing.set(path, failed.why);
+    return { ...side, path };
   };
   const parents = Math.max(...step.files.map((file) => file.before.length));
   const perParent: Change[][] = [];
@@ -48,10 +49,10 @@ export function compareStep(
       const a = take(file.after, file.path);
       // With one side unknown nothing can be said of the file; it must not look born or dead.
       if ((b === null && id !== null) || (a === null && file.after !== null)) continue;
-      if (b !== null) before.push(b);
-      if (a !== null) after.push(a);
-      if (b !== null && a === null) gone.push({ path: file.path, id: id!, side: b });
-      if (a !== null && b === null) fresh.push({ path: file.path, id: file.after!, side: a });
+      if (b !== null) before.push(look(a === null ? b.whole() : b.besides(a), file.path));
+      if (a !== null) after.push(look(b === null ? a.whole() : a.besides(b), file.path));
+      if (b !== null && a === null) gone.push({ path: file.path, id: id!, side: before.at(-1)! });
+      if (a !== null && b === null) fresh.push({ path: file.path, id: file.after!, side: after.at(-1)! });
     }
     if (parent === 0) moved = findMoved(gone, fresh);
     perParent.push(compareSides(before, after, sameUnit));

@@ -4,7 +4,7 @@
  * @source Schleimer, Wilkerson & Aiken (2003), "Winnowing: Local Algorithms for Document Fingerprinting", SIGMOD, 76-85
  */
 import type { Language } from '../model/interface.ts';
-import { NAME_SYMBOL, tokens } from './tokens.ts';
+import { eachToken, NAME_SYMBOL } from './tokens.ts';
 
 export interface ProcedureBody {
   readonly name: string;
@@ -15,6 +15,8 @@ export interface ProcedureBody {
   /** Winnowed hashes, sorted, each once. */
   readonly prints: readonly number[];
   readonly tokens: number;
+  /** The text it was made from, where that is still at hand: equal texts need no fingerprints. */
+  readonly written?: string;
 }
 
 /** Runs of this many tokens are the shortest copy that can be found (the "noise threshold" k). */
@@ -33,15 +35,14 @@ export function procedureBody(
   const form = new Digest();
   const numbers = new Map<number, number>();
   const symbols: number[] = [];
-  for (const token of tokens(text, language, sourceForm)) {
-    exact.add(token.hash);
-    symbols.push(token.symbol);
-    if (token.symbol === NAME_SYMBOL) {
-      const number = numbers.get(token.hash) ?? numbers.size;
-      numbers.set(token.hash, number);
-      form.add(number);
-    } else form.add(token.symbol);
-  }
+  eachToken(text, language, sourceForm, (hash, symbol) => {
+    exact.add(hash);
+    symbols.push(symbol);
+    if (symbol !== NAME_SYMBOL) return form.add(symbol);
+    const number = numbers.get(hash) ?? numbers.size;
+    numbers.set(hash, number);
+    form.add(number);
+  });
   return { name, hash: exact.text(), form: form.text(), prints: winnow(symbols), tokens: symbols.length };
 }
 

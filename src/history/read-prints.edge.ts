@@ -3,7 +3,7 @@ import { readSource } from '../readers/read-source.ts';
 import type { RepositoryPlace } from '../sources/find-repository.edge.ts';
 import { streamObjects } from '../sources/stream-objects.edge.ts';
 import type { ProcedureBody } from './fingerprint.ts';
-import { bodiesOf } from './read-side.ts';
+import { bodiesOf } from './procedure-bodies.ts';
 
 export interface NamedBlob {
   readonly id: string;
@@ -32,7 +32,10 @@ export async function readPrints(
     const { id, path } = blobs[at++]!;
     if (signal?.aborted === true) return;
     if (bytes === null) continue;
-    const bodies = [...bodiesOf(await readSource(path, bytes), bytes).values()];
-    give({ id, bodies: bodies.filter((body) => body.tokens >= FEWEST_TOKENS) });
+    const bodies = [...bodiesOf(await readSource(path, bytes), bytes).values()]
+      .filter((body) => body.tokens >= FEWEST_TOKENS)
+      // They cross threads: plain data only.
+      .map(({ name, hash, form, prints, tokens }) => ({ name, hash, form, prints, tokens }));
+    give({ id, bodies });
   }
 }

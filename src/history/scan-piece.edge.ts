@@ -3,7 +3,7 @@ import type { RepositoryPlace } from '../sources/find-repository.edge.ts';
 import type { StreamedObject } from '../sources/object-stream.ts';
 import { streamObjects } from '../sources/stream-objects.edge.ts';
 import { compareStep, type Reading } from './compare-step.ts';
-import { readSide } from './read-side.ts';
+import { contentOf } from './file-content.ts';
 import { sameUnit } from './same-unit.ts';
 import type { ScanAnswer, ScanStep } from './scan-step.ts';
 
@@ -59,7 +59,7 @@ const NOT_HERE = 'its content is not in this clone';
 async function read(path: string, object: StreamedObject | null): Promise<Reading> {
   if (object === null || object.type === '') return { why: NOT_HERE };
   if (object.bytes === null) return { why: 'it is too long to be source' };
-  return { side: await readSide(path, object.bytes) };
+  return { content: await contentOf(path, object.bytes) };
 }
 
 function needsOf(step: ScanStep): { key: string; id: string; path: string }[] {

@@ -1,14 +1,14 @@
 /** One source file as it stands on one side of a comparison, and its parts by name. Pure. */
 import type { FileInterface, Procedure } from '../model/interface.ts';
 import type { Place, Position } from '../model/place.ts';
-import type { ProcedureBody } from './fingerprint.ts';
+import type { Bodies } from './procedure-bodies.ts';
 
 export interface SourceSide {
   readonly path: string;
   readonly revision?: string;
   readonly code: FileInterface;
   /** What each procedure does, by the line it begins at; absent where only the interface is compared. */
-  readonly bodies?: ReadonlyMap<number, ProcedureBody>;
+  readonly bodies?: Bodies;
 }
 
 /** One part of a file, with the file. */

@@ -1,12 +1,8 @@
 /** Cuts source text into tokens without understanding it: enough to tell layout from content in every language read here. Pure. */
 import type { Language } from '../model/interface.ts';
 
-export interface Token {
-  /** Of the token as compared: names in the language's case, numbers by value. */
-  readonly hash: number;
-  /** The same for all names that are no keyword: what fingerprints are made of. */
-  readonly symbol: number;
-}
+const OFFSET = 0x811c9dc5;
+const PRIME = 0x01000193;
 
 /** What stands for every name that may have been changed. */
 export const NAME_SYMBOL = hashText('name');
@@ -20,26 +16,89 @@ const KEYWORDS = new Set(
   import from lambda elif try except raise with as yield pass let var new typeof`.split(/\s+/),
 );
 
-/** Fixed form is found by its comment letters and continuation column when `form` does not say. */
-export function* tokens(text: string, language: Language, form?: 'fixed' | 'free'): Generator<Token> {
+const KEYWORD_HASHES = new Set([...KEYWORDS].map(hashText));
+
+/**
+ * Hands over each token as two hashes: of the token as compared (names in the language's case, numbers by value), and the same with all
+ * names that are no keyword made one, of which fingerprints are made. Fixed form is found by its comment letters and continuation
+ * column when `form` does not say.
+ */
+export function eachToken(
+  text: string,
+  language: Language,
+  form: 'fixed' | 'free' | undefined,
+  take: (hash: number, symbol: number) => void,
+): void {
   const fortran = language === 'fortran';
   const plain = fortran ? fortranText(text, form === 'fixed') : stripComments(text, language);
-  const pattern =
-    /[A-Za-z_$\u0080-\uffff][\w$\u0080-\uffff]*|(?:\d+\.?\d*|\.\d+)(?:[eEdD][+-]?\d+)?(?:_\w+|[fFlLuU]+)?|'(?:[^'\n])*'|"(?:[^"\n])*"|\S/g;
-  for (const [piece] of plain.matchAll(pattern)) {
-    const first = piece.charCodeAt(0);
-    if ((first >= 48 && first <= 57) || (first === 46 && piece.length > 1)) {
-      const hash = hashText(numberText(piece));
-      yield { hash, symbol: hash };
-    } else if (isLetter(first)) {
-      const name = fortran ? piece.toLowerCase() : piece;
-      const hash = hashText(name);
-      yield { hash, symbol: KEYWORDS.has(name) ? hash : NAME_SYMBOL };
-    } else if (piece !== ';' && piece !== '&') {
-      const hash = hashText(piece);
-      yield { hash, symbol: hash };
+  const { length } = plain;
+  for (let at = 0; at < length; ) {
+    const code = plain.charCodeAt(at);
+    if (code <= 32 || code === 0xa0 || code === 0xfeff) {
+      at += 1;
+    } else if (isLetter(code)) {
+      let hash = OFFSET;
+      let end = at;
+      for (; end < length; end += 1) {
+        const one = plain.charCodeAt(end);
+        if (!isLetter(one) && !isDigit(one)) break;
+        hash = Math.imul(hash ^ (fortran && one >= 65 && one <= 90 ? one + 32 : one), PRIME);
+      }
+      at = end;
+      hash >>>= 0;
+      take(hash, KEYWORD_HASHES.has(hash) ? hash : NAME_SYMBOL);
+    } else if (isDigit(code) || (code === 46 && isDigit(plain.charCodeAt(at + 1)))) {
+      const end = endOfNumber(plain, at);
+      const hash = hashText(numberText(plain.slice(at, end)));
+      at = end;
+      take(hash, hash);
+    } else {
+      const end = code === 39 || code === 34 ? endOfQuoted(plain, at, code) : at + 1;
+      if (code !== 59 && code !== 38) {
+        let hash = OFFSET;
+        for (let one = at; one < end; one += 1) hash = Math.imul(hash ^ plain.charCodeAt(one), PRIME);
+        take(hash >>> 0, hash >>> 0);
+      }
+      at = end;
     }
   }
+}
+
+/** Behind digits, point, exponent and the suffix that tells the kind. */
+function endOfNumber(text: string, from: number): number {
+  let at = from;
+  while (isDigit(text.charCodeAt(at))) at += 1;
+  if (text.charCodeAt(at) === 46) {
+    at += 1;
+    while (isDigit(text.charCodeAt(at))) at += 1;
+  }
+  const letter = text.charCodeAt(at) | 32;
+  if (letter === 100 || letter === 101) {
+    const sign = text.charCodeAt(at + 1);
+    let digit = sign === 43 || sign === 45 ? at + 2 : at + 1;
+    if (isDigit(text.charCodeAt(digit))) {
+      while (isDigit(text.charCodeAt(digit))) digit += 1;
+      at = digit;
+    }
+  }
+  if (text.charCodeAt(at) === 95) {
+    let end = at + 1;
+    while (isWord(text.charCodeAt(end))) end += 1;
+    return end > at + 1 ? end : at;
+  }
+  for (let one = text.charCodeAt(at) | 32; one === 102 || one === 108 || one === 117; one = text.charCodeAt(at) | 32)
+    at += 1;
+  return at;
+}
+
+/** Behind the closing quote on the same line; a quote alone where there is none. */
+function endOfQuoted(text: string, from: number, quote: number): number {
+  for (let at = from + 1; at < text.length; at += 1) {
+    const one = text.charCodeAt(at);
+    if (one === quote) return at + 1;
+    if (one === 10) break;
+  }
+  return from + 1;
 }
 
 /** `1`, `1.`, `1.0d0` and `1._r8` are one number. */
@@ -103,12 +162,20 @@ function stripComments(text: string, language: Language): string {
 }
 
 function isLetter(code: number): boolean {
-  return (code >= 65 && code <= 90) || (code >= 97 && code <= 122) || code === 95 || code === 36 || code >= 128;
+  return (code >= 97 && code <= 122) || (code >= 65 && code <= 90) || code === 95 || code === 36 || code >= 128;
+}
+
+function isDigit(code: number): boolean {
+  return code >= 48 && code <= 57;
+}
+
+function isWord(code: number): boolean {
+  return isDigit(code) || code === 95 || (code >= 97 && code <= 122) || (code >= 65 && code <= 90);
 }
 
 /** FNV-1a over UTF-16 units. */
 export function hashText(text: string): number {
-  let hash = 0x811c9dc5;
-  for (let at = 0; at < text.length; at += 1) hash = Math.imul(hash ^ text.charCodeAt(at), 0x01000193);
+  let hash = OFFSET;
+  for (let at = 0; at < text.length; at += 1) hash = Math.imul(hash ^ text.charCodeAt(at), PRIME);
   return hash >>> 0;
 }

@@ -2,6 +2,7 @@ import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { compareInterfaces } from '../../src/history/compare-interfaces.ts';
 import { compareStep } from '../../src/history/compare-step.ts';
+import { WholeContent } from '../../src/history/file-content.ts';
 import { procedureBody } from '../../src/history/fingerprint.ts';
 import { sameUnit } from '../../src/history/same-unit.ts';
 import type { FileInterface } from '../../src/model/interface.ts';
@@ -231,7 +232,15 @@ describe('compareStep', () => {
   const compare = (
     files: readonly [string, string | null, string | null][],
     blobs: Record<string, ReturnType<typeof side>>,
-  ) => compareStep(step(files), (id) => blobs[id] ?? { why: 'not here' }, sameUnit);
+  ) =>
+    compareStep(
+      step(files),
+      (id) => {
+        const found = blobs[id];
+        return found === undefined ? { why: 'not here' } : { content: new WholeContent(found.side) };
+      },
+      sameUnit,
+    );
 
   it('raises nothing when a file is split in two, when two are joined, and when procedures move between files', () => {
     const blobs = { ab: side('ab.f', 'a', 'b'), a: side('a.f', 'a'), b: side('b.f', 'b') };
