@@ -57,9 +57,14 @@ export interface ClearedCase {
   readonly tolerances: number | null;
 }
 
-/** The clearance file's text: the clearance and the seal over its canonical JSON, indented for people. */
-export function sealedText(clearance: Clearance): string {
-  return `${JSON.stringify({ clearance, seal: sealOf(clearance) }, null, 2)}\n`;
+/**
+ * The clearance file's text: the clearance and the seal over its canonical JSON, indented for people.
+ *
+ * @param sign  makes a signature over the seal
+ */
+export function sealedText(clearance: Clearance, sign?: (seal: string) => string): string {
+  const seal = sealOf(clearance);
+  return `${JSON.stringify({ clearance, seal, ...(sign === undefined ? {} : { signature: sign(seal) }) }, null, 2)}\n`;
 }
 
 /** `sha256:` and 64 hexadecimal digits over the canonical JSON (RFC 8785). */
@@ -69,7 +74,9 @@ export function sealOf(clearance: Clearance): string {
   return `sha256:${createHash('sha256').update(canonicalJson(plain)).digest('hex')}`;
 }
 
-export type Unsealed = { readonly clearance: Clearance } | { readonly broken: string };
+export type Unsealed =
+  | { readonly clearance: Clearance; readonly seal: string; readonly signature?: string }
+  | { readonly broken: string };
 
 /** Reads a clearance file back; `broken` says in one sentence what is wrong with it. */
 export function unseal(text: string): Unsealed {
@@ -79,14 +86,18 @@ export function unseal(text: string): Unsealed {
   } catch (error) {
     return { broken: `it is no JSON text: ${(error as Error).message}` };
   }
-  const { clearance, seal } = (whole ?? {}) as { clearance?: Clearance; seal?: unknown };
+  const { clearance, seal, signature } = (whole ?? {}) as {
+    clearance?: Clearance;
+    seal?: unknown;
+    signature?: unknown;
+  };
   if (typeof clearance !== 'object' || clearance === null || clearance.format !== 'mortise clearance 1') {
     return { broken: 'it holds no clearance of the form "mortise clearance 1"' };
   }
   const expected = sealOf(clearance);
   if (seal !== expected)
     return { broken: `its seal is ${String(seal)} where the content asks for ${expected}: it was altered` };
-  return { clearance };
+  return { clearance, seal: expected, ...(typeof signature === 'string' ? { signature } : {}) };
 }
 
 /** What the gate compares: the code that is checked out now. */

@@ -1,18 +1,23 @@
 /** `mortise audit`: the gate before a campaign. */
+import { join } from 'node:path';
 import { type Audit, audit } from '../audit/audit.ts';
 import { gateReasons, sealedText, unseal } from '../audit/clearance.ts';
 import { type AuditEvent, type AuditRequest, type GatheredCode, gather, treeIdOf } from '../audit/gather.ts';
 import { manifestsUnreadable } from '../manifests/load-manifests.ts';
+import { findAssembly } from '../manifests/manifest-files.edge.ts';
+import { printable } from '../model/printable.ts';
 import { auditReport } from '../report/audit-report.ts';
 import { findingsText } from '../report/finding-text.ts';
 import { reportJson } from '../report/report-json.ts';
 import { reportText } from '../report/report-text.ts';
 import { listTree } from '../runs/tree-files.edge.ts';
+import { checkSignature, type SignatureState } from '../sources/ssh-signature.edge.ts';
 import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
 import { readWhole, writeWhole } from './files.edge.ts';
 import { jobsOf } from './jobs.ts';
 import { type OpenedCode, openCode } from './open-code.ts';
 import { progressLines } from './progress.ts';
+import { SIGN, SIGNERS, signerOf } from './signing.ts';
 import { textOptions } from './text-options.ts';
 import { version } from './version.ts';
 import { writeReports } from './write-reports.ts';
@@ -27,6 +32,7 @@ export const command: Command = {
       says: 'leave the cases alone; the code is held then, since nobody looked at their results',
     },
     clearance: { type: 'string', value: 'FILE', says: 'write the sealed outcome to this file' },
+    sign: SIGN,
     verify: { type: 'string', value: 'FILE', says: 'test whether a clearance file is as it was sealed' },
     gate: {
       type: 'string',
@@ -110,7 +116,8 @@ async function finish(
   const report = auditReport(gathered, audited);
   const { clearance, report: files } = invocation.options;
   await writeReports(report, (files as readonly string[] | undefined) ?? [], surroundings);
-  if (typeof clearance === 'string') await writeWhole(surroundings.cwd, clearance, sealedText(audited.clearance));
+  if (typeof clearance === 'string')
+    await writeWhole(surroundings.cwd, clearance, sealedText(audited.clearance, signerOf(invocation, surroundings)));
   surroundings.out(
     invocation.options.json === true
       ? reportJson(report, version())
@@ -129,20 +136,52 @@ export function auditStatus({ gathered, audit: audited }: Audited): ExitStatus {
 
 async function verifyFile(file: string, invocation: Invocation, surroundings: Surroundings): Promise<ExitStatus> {
   const read = unseal(new TextDecoder().decode(await readWhole(surroundings.cwd, file)));
-  const good = 'clearance' in read;
-  const plain = good
-    ? `${file} is as it was sealed: ${read.clearance.assembly} ${read.clearance.outcome} on ${read.clearance.made.slice(0, 10)}, revision ${read.clearance.revision}\n`
-    : `${file}: ${read.broken}\nNext: audit again, or bring the file back from where it was kept.\n`;
+  const signature = 'clearance' in read ? await signatureOf(read, surroundings) : null;
+  const good = 'clearance' in read && signature?.good !== false;
+  const plain =
+    'broken' in read
+      ? `${file}: ${read.broken}\nNext: audit again, or bring the file back from where it was kept.\n`
+      : `${file} is as it was sealed: ${read.clearance.assembly} ${read.clearance.outcome} on ${read.clearance.made.slice(0, 10)}, revision ${read.clearance.revision}\n${signatureText(signature)}`;
   surroundings.out(
-    invocation.options.json === true ? `${JSON.stringify({ file, sealed: good, ...read }, null, 2)}\n` : plain,
+    invocation.options.json === true
+      ? `${JSON.stringify({ file, sealed: 'clearance' in read, ...read, ...(signature === null ? {} : { signed: signature }) }, null, 2)}\n`
+      : plain,
   );
   return good ? EXIT.ok : EXIT.stop;
+}
+
+/** Null for a clearance that nobody signed. */
+async function signatureOf(
+  { seal, signature }: { readonly seal: string; readonly signature?: string },
+  { cwd }: Surroundings,
+): Promise<SignatureState | null> {
+  if (signature === undefined) return null;
+  const place = findAssembly(cwd);
+  return checkSignature(seal, signature, place === null ? undefined : join(place.root, place.folder, SIGNERS));
+}
+
+function signatureText(state: SignatureState | null): string {
+  if (state === null) return 'not signed\n';
+  if (state.good === true) {
+    const who =
+      state.signer === null ? 'a key that manifests/allowed-signers gives to nobody' : printable(state.signer);
+    return `signed by ${who} (${state.key})\n`;
+  }
+  if (state.good === null) return `its signature could not be tested: ${printable(state.why)}\n`;
+  return `its signature is not one over this seal: ${printable(state.why)}\nNext: ask whoever signed it what they signed.\n`;
 }
 
 async function passGate(file: string, invocation: Invocation, surroundings: Surroundings): Promise<ExitStatus> {
   const read = unseal(new TextDecoder().decode(await readWhole(surroundings.cwd, file)));
   const reasons =
-    'broken' in read ? [`${file}: ${read.broken}`] : gateReasons(read.clearance, await checkedOut(surroundings.cwd));
+    'broken' in read
+      ? [`${file}: ${read.broken}`]
+      : [
+          ...gateReasons(read.clearance, await checkedOut(surroundings.cwd)),
+          ...((await signatureOf(read, surroundings))?.good === false
+            ? [`${file}: its signature is not one over its seal`]
+            : []),
+        ];
   const plain =
     reasons.length === 0
       ? `open: this is the code that was cleared\n`

@@ -11,6 +11,7 @@ import { sectionText } from '../report/report-text.ts';
 import { findRepository } from '../sources/find-repository.edge.ts';
 import { type Command, EXIT, type ExitStatus, type Invocation, type Surroundings, UsageError } from './command.ts';
 import { openCode } from './open-code.ts';
+import { SIGN, signerOf } from './signing.ts';
 import { textOptions } from './text-options.ts';
 
 export const command: Command = {
@@ -18,6 +19,7 @@ export const command: Command = {
   answers: 'recorded defects, and the results that each touches',
   usage: 'mortise notice add|list|show|lift [NAME]',
   options: {
+    sign: SIGN,
     module: { type: 'string', value: 'NAME', says: 'with add: the module that has the defect' },
     versions: { type: 'string', value: 'RANGE', says: 'with add: its versions, a semver range' },
     'brought-in': {
@@ -58,7 +60,13 @@ export const command: Command = {
       throw new UsageError(
         `${opened.findings[0]?.says ?? 'there is no assembly here.'} Notices belong to the register of an assembly`,
       );
-    return action(words, new Register(opened.place.root), opened.place.root, invocation, surroundings);
+    return action(
+      words,
+      new Register(opened.place.root, signerOf(invocation, surroundings) ?? null),
+      opened.place.root,
+      invocation,
+      surroundings,
+    );
   },
 };
 

@@ -37,6 +37,7 @@ import {
 } from './command.ts';
 import { readWhole } from './files.edge.ts';
 import { openCode } from './open-code.ts';
+import { SIGN, SIGNERS, signerOf } from './signing.ts';
 import { textOptions } from './text-options.ts';
 
 const RESULT_OPTIONS: Readonly<Record<string, OptionSpec>> = {
@@ -84,6 +85,7 @@ export const command: Command = {
     standing: { type: 'string', value: 'TEXT', says: 'with find: recorded, withdrawn, remade bit-for-bit, ...' },
     reason: { type: 'string', value: 'TEXT', says: 'with withdraw: why' },
     form: { type: 'string', value: 'FORM', says: `with export: ${EXPORT_FORMS.join(', ')}` },
+    sign: SIGN,
     first: { type: 'string', value: 'N', says: 'with list and find: how many to show; 40 when absent' },
   },
   help: `
@@ -96,6 +98,8 @@ overwritten: to correct an entry, amend it; to take it back, withdraw it.
   mortise register import old-results.csv      title, doi, people, date, commit, modules, notes
   mortise register remake 2026-03-01-figure-4  build and run it again at its revision
   mortise register verify
+
+With --sign the seal is also signed; "verify" tests every signature and names its signer by manifests/allowed-signers.
 
 "add" fills in revision, modules, versions, contents, contracts and machine from the assembly in the working folder.
 
@@ -133,6 +137,8 @@ const ACTIONS: Readonly<Record<string, Action>> = {
 interface Opened {
   readonly register: Register;
   readonly root: string;
+  /** Folder of the manifests within the code. */
+  readonly manifests: string;
   readonly code: CodeNow;
 }
 
@@ -156,7 +162,8 @@ async function open(invocation: Invocation, surroundings: Surroundings): Promise
   }
   return {
     root,
-    register: new Register(root),
+    manifests: opened.place.folder,
+    register: new Register(root, signerOf(invocation, surroundings) ?? null),
     code: {
       manifests: opened.set,
       revision: listing.commit,
@@ -421,16 +428,16 @@ async function verify(
   surroundings: Surroundings,
 ): Promise<ExitStatus> {
   if (words.length > 0) throw new UsageError('mortise register verify takes no words');
-  const { register } = await open(invocation, surroundings);
-  const { records, findings } = await verifyRegister(register.folder);
+  const { register, root, manifests } = await open(invocation, surroundings);
+  const { records, signed, findings } = await verifyRegister(register.folder, join(root, manifests, SIGNERS));
   const placed = findings.map(
     (one): Finding => ({ ...one, place: { ...one.place, file: `manifests/register/${one.place.file}` } }),
   );
   say(
     invocation,
     surroundings,
-    { records, findings: placed },
-    `${records} records read, every seal made again\n${findingsText(placed, textOptions(invocation, surroundings))}`,
+    { records, signed, findings: placed },
+    `${records} records read, every seal made again, ${signed} signatures tested\n${findingsText(placed, textOptions(invocation, surroundings))}`,
   );
   return hasStop(placed) ? EXIT.stop : EXIT.ok;
 }

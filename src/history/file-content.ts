@@ -53,11 +53,14 @@ interface UnitReading {
   readonly code: FileInterface;
   /** By lines counted from the unit's first. */
   readonly bodies: Bodies;
+  readonly bytes: number;
 }
 
 /** Units read lately: what a commit leaves behind is what the next change of it begins with. */
 const units = new Map<string, UnitReading>();
-const MOST_UNITS = 4_000;
+/** Of source text; its readings take about ten times as much. */
+const MOST_UNIT_BYTES = 8 << 20;
+let unitBytes = 0;
 
 class FortranContent implements FileContent {
   private readonly path: string;
@@ -125,8 +128,13 @@ class FortranContent implements FileContent {
     }
     const own = this.bytes.subarray(unit.from, unit.to);
     const code = this.readUnit(this.path, own, unit);
-    const reading = { code: comparable(code), bodies: bodiesOf(code, own) };
-    if (units.size >= MOST_UNITS) units.delete(units.keys().next().value!);
+    const reading = { code: comparable(code), bodies: bodiesOf(code, own), bytes: own.length };
+    unitBytes += own.length;
+    for (const [id, { bytes }] of units) {
+      if (unitBytes <= MOST_UNIT_BYTES) break;
+      units.delete(id);
+      unitBytes -= bytes;
+    }
     units.set(unit.id, reading);
     return reading;
   }

@@ -79,6 +79,8 @@ export type RegisterKind =
   | 'record-doubled'
   | 'record-renamed'
   | 'record-forked'
+  | 'signature-bad'
+  | 'signer-unknown'
   | 'digest-differs';
 export type AuditKind =
   | 'acceptance-expired'

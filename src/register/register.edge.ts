@@ -39,10 +39,15 @@ export class Register {
   /** Absolute path of the register's folder. */
   readonly folder: string;
   private opened: RegisterIndex | null = null;
+  private readonly sign: ((seal: string) => string) | null;
 
-  /** @param root  absolute path of the code's repository */
-  constructor(root: string) {
+  /**
+   * @param root  absolute path of the code's repository
+   * @param sign  makes the signature of a seal; records are not signed without
+   */
+  constructor(root: string, sign: ((seal: string) => string) | null = null) {
     this.folder = join(root, REGISTER_FOLDER);
+    this.sign = sign;
   }
 
   /** The index, brought up to date. */
@@ -55,7 +60,7 @@ export class Register {
    * Seals a record and writes it.
    *
    * @returns the record, once it is safely on disk
-   * @throws {NodeJS.ErrnoException} from the file system; nothing was written then
+   * @throws {NodeJS.ErrnoException} from the file system, or what `sign` throws; nothing was written then
    */
   add(draft: Draft): RegisterRecord<object> {
     const written = (draft.written ?? new Date()).toISOString();
@@ -68,7 +73,7 @@ export class Register {
       );
     // Through JSON once: what is sealed is exactly what the file will hold.
     const content = JSON.parse(JSON.stringify(draft.content)) as object;
-    const record = seal<object>({
+    const sealed = seal<object>({
       format: 'mortise record 1',
       kind: draft.kind,
       about,
@@ -78,6 +83,7 @@ export class Register {
       by: draft.by,
       content,
     });
+    const record = this.sign === null ? sealed : { ...sealed, signature: this.sign(sealed.seal) };
     writeRecordFile(this.folder, fileOf(record), plainYaml(JSON.parse(JSON.stringify(record))));
     this.close();
     return record;

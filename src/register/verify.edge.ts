@@ -3,7 +3,9 @@ import { existsSync } from 'node:fs';
 import { availableParallelism } from 'node:os';
 import { Worker } from 'node:worker_threads';
 import { type Finding, sortFindings } from '../model/finding.ts';
+import { printable } from '../model/printable.ts';
 import { builtAsset } from '../sources/assets.edge.ts';
+import { checkSignature } from '../sources/ssh-signature.edge.ts';
 import { chain, headOf, type RecordHead } from './chain.ts';
 import { readRecord } from './read-record.ts';
 import { listRecordFiles, readRecordBytes } from './register-files.edge.ts';
@@ -11,17 +13,30 @@ import { listRecordFiles, readRecordBytes } from './register-files.edge.ts';
 export interface Checked {
   readonly heads: RecordHead[];
   readonly findings: Finding[];
+  readonly signed: Signed[];
+}
+
+/** A record whose seal is as it should be, and the signature over it. */
+interface Signed {
+  readonly file: string;
+  readonly seal: string;
+  readonly signature: string;
 }
 
 export interface Verified {
   readonly records: number;
+  readonly signed: number;
   readonly findings: readonly Finding[];
 }
 
 // Below this many records a second thread costs more than it saves.
 const FILES_A_WORKER = 2_000;
 
-export async function verifyRegister(folder: string): Promise<Verified> {
+/**
+ * @param folder   absolute path of the register
+ * @param signers  path of the file of allowed signers
+ */
+export async function verifyRegister(folder: string, signers?: string): Promise<Verified> {
   const files = listRecordFiles(folder);
   const script = builtAsset('verify.worker.js');
   const workers = existsSync(script)
@@ -37,22 +52,65 @@ export async function verifyRegister(folder: string): Promise<Verified> {
           }),
         );
   const heads = shares.flatMap((one) => one.heads);
+  const signed = shares.flatMap((one) => one.signed);
   return {
     records: files.length,
-    findings: sortFindings([...shares.flatMap((one) => one.findings), ...chain(heads).findings]),
+    signed: signed.length,
+    findings: sortFindings([
+      ...shares.flatMap((one) => one.findings),
+      ...chain(heads).findings,
+      ...signed.flatMap((one) => signatureFindings(one, signers)),
+    ]),
   };
+}
+
+function signatureFindings({ file, seal, signature }: Signed, signers: string | undefined): Finding[] {
+  const state = checkSignature(seal, signature, signers);
+  const place = { file, line: 1, column: 1 };
+  if (state.good === true) {
+    if (state.signer !== null) return [];
+    return [
+      {
+        kind: 'signer-unknown',
+        gravity: 'note',
+        place,
+        says: `This record is signed with ${state.key}, a key that no file of allowed signers gives to anybody.`,
+        evidence: [],
+        next: 'if you know whose key it is, add it to manifests/allowed-signers, a line "NAME KEYTYPE KEY".',
+      },
+    ];
+  }
+  return [
+    {
+      kind: 'signature-bad',
+      gravity: state.good === false ? 'stop' : 'caution',
+      place,
+      says:
+        state.good === false
+          ? `The signature of this record is not one over its seal: ${printable(state.why)}`
+          : `The signature of this record could not be tested: ${printable(state.why)}`,
+      evidence: [],
+      next:
+        state.good === false
+          ? 'bring the file back from git, and ask whoever signed it what they signed.'
+          : 'install OpenSSH 8.2 or later and verify again.',
+    },
+  ];
 }
 
 export function checkRecords(folder: string, files: readonly string[]): Checked {
   const heads: RecordHead[] = [];
   const findings: Finding[] = [];
+  const signed: Signed[] = [];
   for (const file of files) {
     const read = readRecord(file, readRecordBytes(folder, file));
     findings.push(...read.findings);
     const head = headOf(read);
     if (head !== null) heads.push(head);
+    const { record } = read;
+    if (record?.signature !== undefined) signed.push({ file, seal: record.seal, signature: record.signature });
   }
-  return { heads, findings };
+  return { heads, findings, signed };
 }
 
 function checkInWorker(script: string, folder: string, files: string[]): Promise<Checked> {

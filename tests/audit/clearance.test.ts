@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { type Clearance, gateReasons, outcomeOf, sealedText, unseal } from '../../src/audit/clearance.ts';
+import { type Clearance, gateReasons, outcomeOf, sealedText, sealOf, unseal } from '../../src/audit/clearance.ts';
 import type { Finding, Gravity } from '../../src/model/finding.ts';
 
 const clearance: Clearance = {
@@ -45,7 +45,7 @@ describe('outcome', () => {
 
 describe('a clearance file', () => {
   it('reads back as it was sealed', () => {
-    expect(unseal(sealedText(clearance))).toEqual({ clearance });
+    expect(unseal(sealedText(clearance))).toEqual({ clearance, seal: sealOf(clearance) });
   });
 
   it('is told from one with any single character altered', () => {

@@ -35,6 +35,8 @@ function probe(tool: string): boolean {
     const told = spawnSync('sinfo', ['-h', '-o', '%T'], { timeout: 10_000, encoding: 'utf8' });
     return /idle|mixed|allocated/.test(told.stdout ?? '');
   }
+  // It has no option that only tells its version; an unknown one ends it with a usage message.
+  if (tool === 'ssh-keygen') return spawnSync(tool, ['-Y', 'check-novalidate']).error === undefined;
   const [program = tool, module] = tool.split(':');
   const command = program === 'python3' ? PYTHON : program;
   const words = module === undefined ? ['--version'] : ['-c', `import ${module}`];

@@ -48,6 +48,21 @@ export const registerExplanations = {
     accept: 'When both amendments say the same.',
     example: 'Two amendments replace the first record of figure 4.',
   },
+  'signature-bad': {
+    means: 'A signature does not belong to what it stands beside, so nobody vouches for the record by it.',
+    arises:
+      'The signature was copied from another record, cut short, or altered; or this machine has no ssh-keygen to test it.',
+    mend: 'Bring the record back from git. Where it never was right, amend the entry and sign the amendment.',
+    accept: 'When it is known who lost the signature, and why; the seal still guards the content.',
+    example: 'Signature verification failed: incorrect signature.',
+  },
+  'signer-unknown': {
+    means: 'The signature is good, but nothing here says whose key made it.',
+    arises: 'The signer is not in manifests/allowed-signers, or there is no such file.',
+    mend: 'Ask the signer for the public key, and add a line "NAME KEYTYPE KEY" (the form of OpenSSH).',
+    accept: 'Where signatures are only kept for later.',
+    example: 'SHA256:0x1n... signed the record of figure 4.',
+  },
   'digest-differs': {
     means: 'A table, input or output is not the one that the record names, so the result can not be vouched for by it.',
     arises: 'The file was overwritten, regenerated or damaged after the result was registered.',
