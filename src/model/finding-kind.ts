@@ -32,6 +32,7 @@ export type ReaderKind =
   | 'call-keyword'
   | 'call-kind'
   | 'call-type'
+  | 'call-rank'
   | 'call-order'
   | 'call-constant-out'
   | 'common-differs'

@@ -3,15 +3,11 @@
  * and who provides each name. Pure; files that are not given are simply not known.
  */
 import type { CallSite, Declared, FileInterface, NamedConstant, Procedure, Use } from '../model/interface.ts';
+import { type Provider, push, Resolver } from './resolver.ts';
 
 export interface LinkOptions {
   /** Bytes that the build gives a declared default, as `{real: 8}`. */
   readonly promote?: Readonly<Record<string, number>>;
-}
-
-export interface Provider {
-  readonly file: string;
-  readonly procedure: Procedure;
 }
 
 export interface LinkedCode {
@@ -21,10 +17,15 @@ export interface LinkedCode {
   readonly providers: ReadonlyMap<string, readonly Provider[]>;
   /** Interface bodies and prototypes by name. */
   readonly prototypes: ReadonlyMap<string, readonly Provider[]>;
-  /** Generic names to the specific procedures behind them. */
-  readonly generics: ReadonlyMap<string, readonly string[]>;
-  /** Definitions that a call can mean, nearest first: of the same host, of modules used, else of files. More than one: one of these. */
+  /**
+   * Definitions that a call can mean: of the same host, of modules used (those behind a generic name too), else of files,
+   * the nearest. More than one: one of these.
+   */
   resolve(file: string, call: CallSite): readonly Provider[];
+  /** False where two files belong to different main programs of the checkout. */
+  together(one: string, other: string): boolean;
+  /** The folder of the main program that a file belongs to; null where it may belong to any. */
+  homeOf(file: string): string | null;
 }
 
 export function linkInterfaces(files: ReadonlyMap<string, FileInterface>, options: LinkOptions = {}): LinkedCode {
@@ -34,7 +35,6 @@ export function linkInterfaces(files: ReadonlyMap<string, FileInterface>, option
     linked.set(path, read.language === 'fortran' ? withBytes(read, kinds, options) : read);
   const providers = new Map<string, Provider[]>();
   const prototypes = new Map<string, Provider[]>();
-  const generics = new Map<string, string[]>();
   for (const [file, read] of linked) {
     for (const procedure of read.procedures) {
       if (
@@ -46,16 +46,15 @@ export function linkInterfaces(files: ReadonlyMap<string, FileInterface>, option
       const into = procedure.prototype === true ? prototypes : providers;
       for (const name of namesOf(procedure, read)) push(into, name, { file, procedure });
     }
-    for (const generic of read.generics) for (const one of generic.procedures) push(generics, generic.name, one);
-    for (const type of read.types) for (const binding of type.bindings) push(generics, binding.name, binding.procedure);
   }
   const resolver = new Resolver(linked, providers);
   return {
     files: linked,
     providers,
     prototypes,
-    generics,
     resolve: (file, call) => resolver.resolve(file, call),
+    together: (one, other) => resolver.programs.together(one, other),
+    homeOf: (file) => resolver.programs.homeOf(file),
   };
 }
 
@@ -64,79 +63,6 @@ function namesOf(procedure: Procedure, read: FileInterface): string[] {
   if (procedure.linkName !== undefined) names.add(procedure.linkName);
   if (read.language === 'c' && procedure.name.endsWith('_')) names.add(procedure.name.replace(/_+$/, '').toLowerCase());
   return [...names];
-}
-
-function push<T>(into: Map<string, T[]>, key: string, value: T): void {
-  const known = into.get(key);
-  if (known === undefined) into.set(key, [value]);
-  else known.push(value);
-}
-
-class Resolver {
-  private readonly files: ReadonlyMap<string, FileInterface>;
-  private readonly providers: ReadonlyMap<string, readonly Provider[]>;
-  /** Modules that a module uses. */
-  private readonly uses = new Map<string, string[]>();
-  private readonly seen = new Map<string, ReadonlySet<string>>();
-
-  constructor(files: ReadonlyMap<string, FileInterface>, providers: ReadonlyMap<string, readonly Provider[]>) {
-    this.files = files;
-    this.providers = providers;
-    for (const read of files.values()) {
-      for (const use of read.uses) {
-        if (use.parent !== null) push(this.uses, use.parent, use.module);
-      }
-    }
-  }
-
-  resolve(file: string, call: CallSite): readonly Provider[] {
-    const caller = this.files.get(file);
-    // A dummy procedure is whatever is passed for it.
-    const host = caller?.procedures.find(
-      (one) => one.name === call.caller?.split('::').at(-1) && one.line <= call.line && call.line <= one.endLine,
-    );
-    if (host?.args.some((one) => one.name === call.callee)) return [];
-    const all = (this.providers.get(call.callee) ?? []).filter(
-      (one) => one.procedure.kind !== 'method' || call.how === 'method',
-    );
-    if (caller?.language !== 'fortran') return all;
-    const hosts = call.caller === null ? [] : call.caller.split('::');
-    // An internal procedure, then one of the same module.
-    for (let depth = hosts.length; depth > 0; depth--) {
-      const path = hosts.slice(0, depth).join('::');
-      const own = all.filter((one) => one.file === file && one.procedure.parent === path);
-      if (own.length > 0) return own;
-    }
-    const used = this.modulesSeen(file, call.caller);
-    const ofModules = all.filter((one) => one.procedure.parent !== null && used.has(one.procedure.parent));
-    if (ofModules.length > 0) return ofModules;
-    // What stands in a module or a host that is not in sight can not be meant.
-    return all.filter((one) => one.procedure.parent === null || this.files.get(one.file)!.language !== 'fortran');
-  }
-
-  /** Modules that a caller uses itself or through its hosts, and those that these use in turn. */
-  private modulesSeen(file: string, caller: string | null): ReadonlySet<string> {
-    const key = `${file} ${caller ?? ''}`;
-    const known = this.seen.get(key);
-    if (known !== undefined) return known;
-    const uses = this.files.get(file)?.uses ?? [];
-    const open = uses
-      .filter(
-        (use) =>
-          use.parent === null || caller === null || caller === use.parent || caller.startsWith(`${use.parent}::`),
-      )
-      .map((use) => use.module);
-    const seen = new Set(open);
-    for (let module = open.pop(); module !== undefined; module = open.pop()) {
-      for (const next of this.uses.get(module) ?? []) {
-        if (seen.has(next)) continue;
-        seen.add(next);
-        open.push(next);
-      }
-    }
-    this.seen.set(key, seen);
-    return seen;
-  }
 }
 
 class Kinds {

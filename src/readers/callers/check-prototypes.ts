@@ -1,6 +1,7 @@
 /** Prototypes and interface bodies held against the definitions they stand for. Pure. */
 import { type Finding, sortFindings } from '../../model/finding.ts';
-import type { LinkedCode, Provider } from '../link.ts';
+import type { LinkedCode } from '../link.ts';
+import type { Provider } from '../resolver.ts';
 
 export function checkPrototypes(linked: LinkedCode): Finding[] {
   const findings: Finding[] = [];

@@ -42,6 +42,13 @@ export const readersExplanations = {
     accept: 'For scratch storage that the callee fills before it reads.',
     example: 'A real work array is passed for an integer one.',
   },
+  'call-rank': {
+    means: 'A scalar is passed for an array, or an array for a scalar. Where no interface is in sight no compiler says so.',
+    arises: 'Old codes pass a scalar where one element is used; or an index was forgotten at the call.',
+    mend: 'Pass an array for an array. For one element write it with its index.',
+    accept: 'When the callee uses one element only.',
+    example: 'call vecnorm(x) with a scalar x, while vecnorm takes an array of n.',
+  },
   'call-order': {
     means:
       'Two arguments of one type look exchanged: the names at the call match the names in the definition crosswise.',

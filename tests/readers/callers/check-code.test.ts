@@ -1,14 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import type { FileInterface } from '../../../src/model/interface.ts';
-import { checkCode } from '../../../src/readers/callers/check-code.ts';
-import type { LinkOptions } from '../../../src/readers/link.ts';
-import { readSource } from '../../../src/readers/read-source.ts';
-
-async function check(sources: Readonly<Record<string, string>>, options: LinkOptions = {}): Promise<string[]> {
-  const files = new Map<string, FileInterface>();
-  for (const [path, text] of Object.entries(sources)) files.set(path, await readSource(path, Buffer.from(text)));
-  return checkCode(files, options).map((one) => `${one.place.file}:${one.place.line} ${one.gravity} ${one.kind}`);
-}
+import { check } from '../../support/check-sources.ts';
 
 const EOS = `subroutine eos(rho, temp, pres, n)
   real(8), intent(in) :: rho, temp
