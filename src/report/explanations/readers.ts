@@ -43,7 +43,8 @@ export const readersExplanations = {
     example: 'A real work array is passed for an integer one.',
   },
   'call-rank': {
-    means: 'A scalar is passed for an array, or an array for a scalar. Where no interface is in sight no compiler says so.',
+    means:
+      'A scalar is passed for an array, or an array for a scalar. Where no interface is in sight no compiler says so.',
     arises: 'Old codes pass a scalar where one element is used; or an index was forgotten at the call.',
     mend: 'Pass an array for an array. For one element write it with its index.',
     accept: 'When the callee uses one element only.',
