@@ -4,7 +4,6 @@ import type {
   Claim,
   Declared,
   External,
-  FileInterface,
   LiteralUse,
   ModuleVariable,
   NamedConstant,
@@ -15,9 +14,10 @@ import type {
 import type { Position } from '../../model/place.ts';
 import { claimsFromComment } from '../claims/claims-from-comment.ts';
 import { claimsFromName } from '../claims/claims-from-name.ts';
-import { type ConstantValue, evaluate } from './evaluate.ts';
+import { functionMacros, type MacroKind } from './function-macros.ts';
 import { closeAngle, typeWords } from './parameters.ts';
-import { type Comment, T, type Tokens, tokenise } from './tokens.ts';
+import type { CUnitReading } from './settle.ts';
+import { type Comment, type Part, T, type Tokens, tokenise } from './tokens.ts';
 import { bytesOfType, isMarker, QUALIFIERS } from './words.ts';
 
 export interface Holder {
@@ -57,17 +57,23 @@ export class CFile {
   private readonly said = new Set<string>();
   private readonly commentOnLine = new Map<number, number>();
   private readonly commentEndsOn = new Map<number, number>();
-  private readonly macroNames: Map<string, number>;
+  private readonly functionMacros: Readonly<Record<string, MacroKind>>;
 
-  constructor(bytes: Uint8Array, language: 'c' | 'c++', define: Readonly<Record<string, string>>) {
+  /** @param part  what a unit of a file has to know of the rest; absent for a whole file */
+  constructor(
+    bytes: Uint8Array,
+    language: 'c' | 'c++',
+    define: Readonly<Record<string, string>>,
+    part?: Part & { readonly utf8: boolean; readonly macros: Readonly<Record<string, MacroKind>> },
+  ) {
     this.language = language;
-    this.text = decode(bytes);
-    this.tokens = tokenise(this.text, define);
+    this.text = decode(bytes, part?.utf8);
+    this.tokens = tokenise(this.text, define, part);
     this.tokens.comments.forEach((comment, index) => {
       this.commentOnLine.set(comment.line, index);
       if (comment.alone) this.commentEndsOn.set(comment.endLine, index);
     });
-    this.macroNames = new Map(this.tokens.macros.map((macro, index) => [macro.name, index]));
+    this.functionMacros = part?.macros ?? functionMacros(this.tokens.macros);
   }
 
   word(at: number): string {
@@ -143,13 +149,11 @@ export class CFile {
 
   /** True when the file defines the macro and its text holds a body; null when the file does not define it. */
   makesFunction(name: string): boolean | null {
-    const index = this.macroNames.get(name);
-    return index === undefined ? null : /\)\s*(?:const\s*)?(?:noexcept\s*)?\{/.test(this.tokens.macros[index]!.body);
+    return Object.hasOwn(this.functionMacros, name) ? this.functionMacros[name] === 'function' : null;
   }
 
   makesCode(name: string): boolean {
-    const index = this.macroNames.get(name);
-    return index !== undefined && /[{;]/.test(this.tokens.macros[index]!.body);
+    return Object.hasOwn(this.functionMacros, name) && this.functionMacros[name] !== 'plain';
   }
 
   openFields(): Declared[] {
@@ -389,9 +393,9 @@ export class CFile {
     return { line: low, column: offset - lineStarts[low - 1]! + 1 };
   }
 
-  finish(): FileInterface {
-    this.macroConstants();
-    this.evaluateConstants();
+  /** @returns the reading, its constants not yet reckoned from one another, and the names of those that macros give */
+  finish(): CUnitReading {
+    const macroConstants = this.macroConstants();
     const { includes, incomplete, conditions } = this.tokens;
     return {
       language: this.language,
@@ -417,11 +421,13 @@ export class CFile {
       externals: this.externals,
       datasets: [],
       incomplete,
+      macroConstants,
     };
   }
 
   /** `#define boltzmann 1.38e-16 /* erg/K *\/` */
-  private macroConstants(): void {
+  private macroConstants(): string[] {
+    const names: string[] = [];
     for (const macro of this.tokens.macros) {
       if (macro.params !== null || macro.body === '' || macro.body.length > 400) continue;
       const { body } = macro;
@@ -431,6 +437,7 @@ export class CFile {
       const condition = this.tokens.conditions[macro.condition] ?? '';
       const at = this.placeOf(macro.offset);
       const real = /[.]|\d[eE][+-]?\d/.test(body);
+      names.push(macro.name);
       this.constants.push({
         name: macro.name,
         parent: null,
@@ -469,56 +476,7 @@ export class CFile {
         if (!found.some((known) => known.what === one.what)) found.push(one);
       this.claims.push(...found);
     }
-  }
-
-  /** Values rest on one another in any order; each is reckoned once. */
-  private evaluateConstants(): void {
-    const byName = new Map<string, number>();
-    this.constants.forEach((one, index) => {
-      if (!byName.has(one.name)) byName.set(one.name, index);
-    });
-    const known = new Map<number, ConstantValue | null>();
-    const busy = new Set<number>();
-    const valueAt = (index: number): ConstantValue | null => {
-      if (known.has(index)) return known.get(index)!;
-      // Chains longer than this are no constants of physics, and would overflow the stack.
-      if (busy.has(index) || busy.size > 64) return null;
-      busy.add(index);
-      const { text, type } = this.constants[index]!;
-      const raw = evaluate(text, (name) => {
-        const other = byName.get(name) ?? byName.get(name.slice(name.lastIndexOf(':') + 1));
-        return other === undefined || other === index ? null : valueAt(other);
-      });
-      busy.delete(index);
-      const value =
-        raw === null || typeof raw.value !== 'number'
-          ? raw
-          : /^float$/.test(type)
-            ? { value: Math.fround(raw.value), integer: false, single: true }
-            : /double|Real|real/.test(type)
-              ? { value: raw.value, integer: false }
-              : raw;
-      known.set(index, value);
-      return value;
-    };
-    for (let index = 0; index < this.constants.length; index++) {
-      const value = valueAt(index);
-      if (value !== null) {
-        const one = this.constants[index] as { -readonly [K in keyof NamedConstant]: NamedConstant[K] };
-        one.value = one.type === 'bool' ? value.value !== 0 : value.value;
-        if (one.type === 'int' && typeof value.value === 'number' && !value.integer) one.type = 'double';
-      }
-    }
-    // A macro that names something else and comes to no value is no constant.
-    const kept = this.constants.filter(
-      (one) =>
-        one.value !== null ||
-        !(/^[A-Za-z_]\w*$/.test(one.text) || (this.macroNames.has(one.name) && /\w\s*\(/.test(one.text))) ||
-        one.type !== 'int' ||
-        one.parent !== null,
-    );
-    this.constants.length = 0;
-    this.constants.push(...kept);
+    return names;
   }
 }
 
@@ -526,10 +484,10 @@ function numberIn(bound: string): number | null {
   return /^\d{1,9}$/.test(bound) ? Number(bound) : null;
 }
 
-function decode(bytes: Uint8Array): string {
+function decode(bytes: Uint8Array, utf8 = true): string {
   // Without a byte above 127 both are the same, and Latin-1 is the faster.
   const text = Buffer.from(bytes.buffer, bytes.byteOffset, bytes.length).toString('latin1');
-  if (!/[\x80-\xff]/.test(text)) return text;
+  if (!utf8 || !/[\x80-\xff]/.test(text)) return text;
   try {
     return new TextDecoder('utf-8', { fatal: true, ignoreBOM: false }).decode(bytes);
   } catch {

@@ -9,7 +9,9 @@ import { claimsFromName } from '../claims/claims-from-name.ts';
 import type { ReadOptions } from '../read-options.ts';
 import { scanBody } from './body.ts';
 import { CFile } from './c-file.ts';
+import type { CUnit, OpenBlock } from './cut-units.ts';
 import { closeAngle, parameters, plainParameters, typeOf } from './parameters.ts';
+import { type CUnitReading, settled } from './settle.ts';
 import { T } from './tokens.ts';
 import { BUILTIN, isMarker, QUALIFIERS, TAGS } from './words.ts';
 
@@ -20,13 +22,20 @@ export interface COptions extends ReadOptions {
 /** @returns the interface; no bytes whatever make it throw */
 export function readC(_path: string, bytes: Uint8Array, options: COptions): FileInterface {
   const file = new CFile(bytes, options.language, options.define ?? {});
-  new Declarations(file).scope(0, file.tokens.count, {
-    parent: null,
-    className: null,
-    visibility: 'public',
-    linkage: false,
-    depth: 0,
-  });
+  new Declarations(file).all([]);
+  return settled(file.finish());
+}
+
+/**
+ * Reads one unit of a file alone. Lines are counted from the unit's first, and constants that rest on other units have no value yet;
+ * `joinCUnits` gives the file.
+ *
+ * @param bytes  of the whole file, or of the unit alone (then `unit.from` is ignored)
+ */
+export function readCUnit(_path: string, bytes: Uint8Array, unit: CUnit, options: ReadOptions = {}): CUnitReading {
+  const own = bytes.length === unit.to - unit.from ? bytes : bytes.subarray(unit.from, unit.to);
+  const file = new CFile(own, unit.language, options.define ?? {}, unit.state);
+  new Declarations(file, unit.state.bases).all(unit.state.blocks);
   return file.finish();
 }
 
@@ -56,10 +65,36 @@ const LONGEST = 20_000;
 class Declarations {
   private readonly file: CFile;
   /** What each class of this file extends, as written. */
-  private readonly bases = new Map<string, string>();
+  private readonly bases: Map<string, string>;
 
-  constructor(file: CFile) {
+  constructor(file: CFile, bases: Readonly<Record<string, string>> = {}) {
     this.file = file;
+    this.bases = new Map(Object.entries(bases));
+  }
+
+  /** @param open  namespaces and extern blocks that stand open where the text begins: a brace that closes nothing closes them */
+  all(open: readonly OpenBlock[]): void {
+    const { file } = this;
+    const { count } = file.tokens;
+    const blocks = [...open];
+    const within = (): Scope => {
+      const last = blocks.at(-1);
+      return {
+        parent: last?.parent ?? null,
+        className: null,
+        visibility: 'public',
+        linkage: last?.linkage ?? false,
+        depth: blocks.length,
+      };
+    };
+    let scope = within();
+    for (let at = 0; at < count; ) {
+      if (blocks.length > 0 && file.word(at) === '}' && file.match(at) < 0) {
+        blocks.pop();
+        scope = within();
+        at++;
+      } else at = Math.max(at + 1, this.declaration(at, count, scope));
+    }
   }
 
   scope(from: number, to: number, scope: Scope): void {
@@ -79,6 +114,11 @@ class Declarations {
     const { file } = this;
     let at = begin;
     const first = file.word(at);
+    if (isMarker(first)) {
+      // `BEGIN_NAMESPACE_VERSION namespace detail {`; a marker before a template still belongs to its declaration.
+      if (file.word(at + 1) === 'namespace') return at + 1;
+      if (file.word(at + 1) === 'template' || file.word(at + 1) === 'typedef') at++;
+    }
     switch (first) {
       case ';':
       case '}':
@@ -121,9 +161,9 @@ class Declarations {
           const c = file.word(at + 1) === '"C"';
           if (file.word(at + 2) === '{') {
             const close = file.match(at + 2);
-            if (close < 0) return at + 3;
-            this.scope(at + 3, close, { ...scope, linkage: c });
-            return close + 1;
+            const inside = close < 0 ? to : close;
+            this.scope(at + 3, inside, { ...scope, linkage: c, depth: scope.depth + 1 });
+            return inside + 1;
           }
           return this.declaration(at + 2, to, { ...scope, linkage: c });
         }
@@ -459,10 +499,13 @@ class Declarations {
         at = close;
         continue;
       }
+      if (word === '}') return at;
       if (word === '=' || word === ';' || word === '{' || word === ':' || word === ',') {
         if (word === ':' && scope.className === null) return at + 1;
         if (words === 0) return word === '{' ? this.block(at, to) : at + 1;
         if (word === '{' && words === 1 && file.word(from) === 'do') return this.block(at, to);
+        // A body whose header no rule knew: what follows is not part of it.
+        if (word === '{' && file.word(at - 1) === ')') return this.block(at, to);
         return this.variables(from, at, to, scope);
       }
       if (word === '(') {
@@ -779,7 +822,7 @@ class Declarations {
       else if (isMarker(word) && index + 1 < typeTo) attributes.push(word);
     }
     // Behind the arguments: qualifiers, a trailing type, initialisers of members, the body.
-    let at = after;
+    let at = this.otherBranches(open, after, to, written);
     let old = -1;
     if (file.language === 'c' && file.kind(at) === T.name) old = this.oldStyle(open, close, to);
     if (old > 0) at = old;
@@ -952,6 +995,25 @@ class Declarations {
     if (className === null) return new Set();
     const bare = lastName(className);
     return new Set((this.bases.get(bare) ?? '').match(/[A-Za-z_]\w*/g) ?? []);
+  }
+
+  /** Past the ends that the same bracket has in other branches of an #if. */
+  private otherBranches(open: number, after: number, to: number, name: string): number {
+    const { file } = this;
+    if (file.condition(after - 1) === '' || file.condition(after - 1) === file.condition(open)) return after;
+    let end = after;
+    for (let at = after; at < to && at < after + 200; at++) {
+      const word = file.word(at);
+      if (word === '{' || word === ';') break;
+      if (word === ')' && file.match(at) === open) end = at + 1;
+      else if (word === '(') at = Math.max(at, file.match(at));
+    }
+    if (end > after)
+      file.missed(
+        file.line(open),
+        `the arguments of ${name} differ in branches of an #if; those of the first are given`,
+      );
+    return end;
   }
 
   private procedureClaims(procedure: Procedure, begin: number, nameAt: number, open: number, close: number): void {

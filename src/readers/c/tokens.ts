@@ -52,6 +52,18 @@ export interface Tokens {
   readonly includes: Directive[];
   readonly lineStarts: number[];
   readonly incomplete: { line: number; why: string }[];
+  /** Offsets of what the guard of a header encloses; null without one. */
+  guard: { readonly from: number; readonly to: number } | null;
+}
+
+/** Where a part of a file stands in it. */
+export interface Part {
+  /** It begins inside the guard of a header. */
+  readonly guarded: boolean;
+  /** It ends inside the guard. */
+  readonly open: boolean;
+  /** Something stands above it, so that its first #ifndef is no guard. */
+  readonly later: boolean;
 }
 
 /** Tokens as the parsers of declarations look at them. */
@@ -89,7 +101,7 @@ for (let code = 0; code < 256; code++) {
 }
 const isIdent = (code: number) => code >= 256 || IDENT[code] !== 0;
 
-export function tokenise(text: string, define: Readonly<Record<string, string>> = {}): Tokens {
+export function tokenise(text: string, define: Readonly<Record<string, string>> = {}, part?: Part): Tokens {
   const length = text.length;
   let capacity = Math.max(64, length >> 2);
   const tokens: Tokens = {
@@ -108,6 +120,7 @@ export function tokenise(text: string, define: Readonly<Record<string, string>> 
     includes: [],
     lineStarts: [0],
     incomplete: [],
+    guard: null,
   };
   const { lineStarts, comments } = tokens;
   const branches: Branch[] = [];
@@ -118,8 +131,19 @@ export function tokenise(text: string, define: Readonly<Record<string, string>> 
   let line = 1;
   let lineHasCode = false;
   let guard: string | null = null;
-  let directives = 0;
+  let directives = part?.later === true ? 2 : 0;
   const brackets = new Brackets();
+  if (part?.guarded === true)
+    branches.push({
+      group: ++groups,
+      before: [],
+      outer: 0,
+      depth: [],
+      first: null,
+      live: true,
+      taken: false,
+      outerLive: true,
+    });
 
   while (at < length) {
     const code = text.charCodeAt(at);
@@ -175,7 +199,8 @@ export function tokenise(text: string, define: Readonly<Record<string, string>> 
       }
     }
   }
-  if (branches.length > 0) tokens.incomplete.push({ line, why: 'an #if is not closed before the end of the file' });
+  if (branches.length > (part?.open === true ? 1 : 0))
+    tokens.incomplete.push({ line, why: 'an #if is not closed before the end of the file' });
   tokens.match = brackets.finish(tokens.count);
   return tokens;
 
@@ -377,6 +402,8 @@ export function tokenise(text: string, define: Readonly<Record<string, string>> 
           break;
         }
         if (branch.first !== null) brackets.restore(branch.first);
+        if (tokens.guard !== null && branches.length === 0 && tokens.guard.to === length)
+          tokens.guard = { from: tokens.guard.from, to: offset };
         condition = branch.outer;
         live = branch.outerLive;
         break;
@@ -389,6 +416,7 @@ export function tokenise(text: string, define: Readonly<Record<string, string>> 
         if (directives === 2 && match[1] === guard && branches.length === 1) {
           tokens.conditions[condition] = '';
           condition = 0;
+          tokens.guard = { from: offset, to: length };
           (branches[0] as { -readonly [K in keyof Branch]: Branch[K] }).outer = 0;
           break;
         }

@@ -1,5 +1,6 @@
 /** Readings of the units of a file to the reading of the file. */
-import type { Argument, Declared, FileInterface, Procedure } from '../../model/interface.ts';
+import type { FileInterface } from '../../model/interface.ts';
+import { joinReadings } from '../join-readings.ts';
 import type { FortranUnit } from './cut-units.ts';
 
 /**
@@ -10,65 +11,7 @@ import type { FortranUnit } from './cut-units.ts';
  * @param readings  one for each
  */
 export function joinFortranUnits(units: readonly FortranUnit[], readings: readonly FileInterface[]): FileInterface {
-  const joined = {
-    procedures: [] as Procedure[],
-    commons: [] as FileInterface['commons'][number][],
-    types: [] as FileInterface['types'][number][],
-    variables: [] as FileInterface['variables'][number][],
-    constants: [] as FileInterface['constants'][number][],
-    literals: [] as FileInterface['literals'][number][],
-    uses: [] as FileInterface['uses'][number][],
-    includes: [] as FileInterface['includes'][number][],
-    generics: [] as FileInterface['generics'][number][],
-    calls: [] as FileInterface['calls'][number][],
-    claims: [] as FileInterface['claims'][number][],
-    storage: [] as FileInterface['storage'][number][],
-    externals: [] as FileInterface['externals'][number][],
-    incomplete: [] as FileInterface['incomplete'][number][],
-  };
-  units.forEach((unit, index) => {
-    const read = readings[index]!;
-    const by = unit.line - 1;
-    for (const one of read.procedures) joined.procedures.push(movedProcedure(one, by));
-    for (const one of read.commons)
-      joined.commons.push({ ...moved(one, by), members: one.members.map((member) => moved(member, by)) });
-    for (const one of read.types)
-      joined.types.push({
-        ...moved(one, by),
-        fields: one.fields.map((field) => moved(field, by)),
-        bindings: one.bindings.map((binding) => moved(binding, by)),
-      });
-    for (const one of read.calls) joined.calls.push({ ...moved(one, by), args: one.args.map((arg) => moved(arg, by)) });
-    moveAll(read.variables, joined.variables, by);
-    moveAll(read.constants, joined.constants, by);
-    moveAll(read.literals, joined.literals, by);
-    moveAll(read.uses, joined.uses, by);
-    moveAll(read.includes, joined.includes, by);
-    moveAll(read.generics, joined.generics, by);
-    moveAll(read.claims, joined.claims, by);
-    moveAll(read.storage, joined.storage, by);
-    moveAll(read.externals, joined.externals, by);
-    moveAll(read.incomplete, joined.incomplete, by);
-  });
   const form = units[0]?.form;
-  return { language: 'fortran', ...(form === undefined ? {} : { form }), ...joined, datasets: [] };
-}
-
-function moved<T extends { readonly line: number }>(one: T, by: number): T {
-  return by === 0 ? one : { ...one, line: one.line + by };
-}
-
-function moveAll<T extends { readonly line: number }>(from: readonly T[], to: T[], by: number): void {
-  for (const one of from) to.push(moved(one, by));
-}
-
-function movedProcedure(one: Procedure, by: number): Procedure {
-  if (by === 0) return one;
-  return {
-    ...one,
-    line: one.line + by,
-    endLine: one.endLine + by,
-    args: one.args.map((arg): Argument => moved(arg, by)),
-    result: one.result === null ? null : moved<Declared>(one.result, by),
-  };
+  const { language, ...joined } = joinReadings('fortran', units, readings);
+  return { language, ...(form === undefined ? {} : { form }), ...joined };
 }
