@@ -36,12 +36,15 @@ function claimComment(reading: Reading, names: readonly string[], from: number, 
   for (const claim of claims.claims) reading.found.claims.push(claim);
 }
 
+/** A line goes on without end in no comment that anyone reads. */
+const LONGEST_LINE = 1000;
+
 function takeLine(reading: Reading, claims: CommentClaims, from: number, to: number, line: number): void {
   const { text } = reading;
   const begin = behindMark(text.bytes, from, to);
   let lineStart = from;
   while (lineStart > 0 && text.bytes[lineStart - 1] !== 10) lineStart--;
-  claims.line(text.slice(begin, to), line, text.column(lineStart, begin));
+  claims.line(text.slice(begin, Math.min(to, begin + LONGEST_LINE)), line, text.column(lineStart, begin));
 }
 
 /** Behind the marks that make it a comment: `c`, `C*`, `!`, `!!`, `!>`, `!<`. */
@@ -138,7 +141,8 @@ export function claimBlocks(reading: Reading, scope: Scope, first: number): void
 }
 
 function lineText(reading: Reading, from: number, to: number): string {
-  return reading.text.slice(behindMark(reading.text.bytes, from, to), to);
+  const begin = behindMark(reading.text.bytes, from, to);
+  return reading.text.slice(begin, Math.min(to, begin + LONGEST_LINE));
 }
 
 function keep(reading: Reading, claims: CommentClaims | null): void {

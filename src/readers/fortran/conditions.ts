@@ -6,6 +6,7 @@ export interface Branch {
   readonly group: BranchGroup;
   /** Its place in the group. */
   readonly index: number;
+  readonly depth: number;
   /** Its own condition, those of the branches before it negated. */
   readonly own: string;
   /** With all outer conditions. */
@@ -29,6 +30,12 @@ export interface ConditionState {
 
 export const NO_CONDITIONS: ConditionState = { groups: [], macros: {} };
 
+/** Bounds that no code comes near; without them hostile files would take time and memory beyond their size. */
+const DEEPEST = 40;
+const MOST_BRANCHES = 40;
+const MOST_MACROS = 200;
+const LONGEST_CONDITION = 500;
+
 export class Conditions {
   /** The branch that the present line stands in; null outside all groups. */
   branch: Branch | null = null;
@@ -45,6 +52,7 @@ export class Conditions {
   }[] = [];
   private readonly define: Readonly<Record<string, string>> | undefined;
   readonly macros: Map<string, string>;
+  private kept: ConditionState | null = null;
 
   constructor(define: Readonly<Record<string, string>> | undefined, state: ConditionState = NO_CONDITIONS) {
     this.define = define;
@@ -61,6 +69,8 @@ export class Conditions {
   take(text: string): boolean {
     const match = /^#\s*(\w+)\s*(.*)$/s.exec(text);
     const word = match?.[1] ?? '';
+    const before = this.macros.size;
+    if (word !== 'define' && word !== 'undef') this.kept = null;
     const rest = (match?.[2] ?? '')
       .replace(/\/\*.*?\*\/|\/\/.*$/gs, '')
       .replace(/\s+/g, ' ')
@@ -94,21 +104,25 @@ export class Conditions {
           const macro = /^([A-Za-z_]\w*)(?!\()\s*(.*)$/s.exec(rest);
           if (macro !== null) {
             if (word === 'undef') this.macros.delete(macro[1]!);
-            else this.macros.set(macro[1]!, macro[2]!.trim());
+            else if (before < MOST_MACROS) this.macros.set(macro[1]!, macro[2]!.slice(0, LONGEST_CONDITION).trim());
+            if (word === 'undef' || before < MOST_MACROS) this.kept = null;
           }
         }
         return false;
     }
   }
 
+  /** The open groups and the macros; the same object as long as they are. */
   state(): ConditionState {
-    return {
+    this.kept ??= {
       groups: this.stack.map(({ group }) => ({ written: [...group.written] })),
       macros: Object.fromEntries(this.macros),
     };
+    return this.kept;
   }
 
-  private open(condition: string): void {
+  private open(text: string): void {
+    const condition = text.slice(0, LONGEST_CONDITION);
     const group: BranchGroup = { branches: [], written: [condition], hasElse: false };
     const entry = { group, outer: this.branch, outerOff: this.off, taken: false, doubtful: false };
     this.stack.push(entry);
@@ -120,13 +134,14 @@ export class Conditions {
     if (entry === undefined) return;
     const { group } = entry;
     const earlier = group.written.filter((one) => one !== null).map(negated);
-    group.written.push(condition);
+    if (group.written.length < MOST_BRANCHES) group.written.push(condition);
     if (condition === null) group.hasElse = true;
     this.enter(entry, [...earlier, ...(condition === null ? [] : [grouped(condition)])].join(' && '), condition);
   }
 
   private enter(entry: (typeof this.stack)[number], own: string, condition: string | null): void {
     const { group, outer } = entry;
+    if (outer !== null && outer.depth >= DEEPEST) return;
     const branch = branchOf(outer, group, group.branches.length, own);
     group.branches.push(branch);
     this.branch = branch;
@@ -148,7 +163,8 @@ export class Conditions {
 }
 
 function branchOf(outer: Branch | null, group: BranchGroup, index: number, own: string): Branch {
-  return { outer, group, index, own, whole: outer === null ? own : `${outer.whole} && ${grouped(own)}` };
+  const depth = outer === null ? 1 : outer.depth + 1;
+  return { outer, group, index, depth, own, whole: outer === null ? own : `${outer.whole} && ${grouped(own)}` };
 }
 
 /** Two lines that no build compiles together. */
@@ -161,6 +177,7 @@ export function exclude(one: Branch | null, other: Branch | null): boolean {
 
 /** More ways of compiling one statement are not told apart. */
 const MOST_ALTERNATIVES = 8;
+const MOST_GROUPS = 12;
 
 /**
  * The ways in which lines of one statement can be chosen, each as a branch that stands for all the choices.
@@ -172,10 +189,15 @@ export function alternativesOf(
   lines: readonly (Branch | null)[],
 ): { branch: Branch; holds: (line: Branch | null) => boolean }[] {
   const groups: { group: BranchGroup; outer: Branch | null }[] = [];
+  const known = new Set<BranchGroup>();
   for (const line of lines) {
     const chain: { group: BranchGroup; outer: Branch | null }[] = [];
     for (let at = line; at !== null && at !== base; at = at.outer) chain.unshift({ group: at.group, outer: at.outer });
-    for (const one of chain) if (!groups.some(({ group }) => group === one.group)) groups.push(one);
+    for (const one of chain) {
+      if (known.has(one.group) || known.size >= MOST_GROUPS) continue;
+      known.add(one.group);
+      groups.push(one);
+    }
   }
   const ways: { branch: Branch | null; chosen: ReadonlySet<Branch> }[] = [];
   const choose = (at: number, branch: Branch | null, chosen: ReadonlySet<Branch>): void => {
@@ -206,7 +228,7 @@ export function alternativesOf(
             branch,
             holds: (line: Branch | null) => {
               for (let at = line; at !== null && at !== base; at = at.outer)
-                if (!chosen.has(at) && !isWithin(base, at)) return false;
+                if (known.has(at.group) && !chosen.has(at) && !isWithin(base, at)) return false;
               return true;
             },
           },

@@ -98,6 +98,8 @@ class Cutter {
   private readonly branches: Open[][] = [];
   private readonly conditions = new Conditions(undefined);
   private ended = false;
+  /** The next `&` of the file, looked for once. */
+  private nextMark = -1;
   /** The line that goes on has only words before a procedure's name so far: `pure &`. */
   private onlyPrefixes = false;
 
@@ -202,9 +204,12 @@ class Cutter {
     while (last > at && (bytes[last] === 32 || bytes[last] === 13 || bytes[last] === 9)) last--;
     if (bytes[last] === 38) return true;
     // A remark behind the mark.
-    const mark = bytes.indexOf(38, at);
-    if (mark < 0 || mark >= end) return false;
-    for (let place = mark; place < end; place++) {
+    if (this.nextMark < at) {
+      const next = bytes.indexOf(38, at);
+      this.nextMark = next < 0 ? bytes.length : next;
+    }
+    if (this.nextMark >= end) return false;
+    for (let place = this.nextMark; place < end; place++) {
       if (bytes[place] !== 38) continue;
       let next = place + 1;
       while (next < end && (bytes[next] === 32 || bytes[next] === 9)) next++;

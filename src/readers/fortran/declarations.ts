@@ -392,13 +392,12 @@ function common(reading: Reading, statement: Statement): boolean {
     }
     if (members.length > 0) {
       const condition = statement.condition;
-      const known = scope.commons.find(
-        (one) => one.name === name && one.condition === condition && one.own === (reading.inside === 0),
-      );
+      const key = `${name} ${reading.inside === 0} ${condition ?? ''}`;
+      const known = scope.commons.get(key);
       // One block may be written over several statements: its storage goes on.
       if (known !== undefined) for (const member of members) known.members.push(member);
       else
-        scope.commons.push({
+        scope.commons.set(key, {
           name,
           members,
           line: statement.lineAt(nameAt),

@@ -146,8 +146,11 @@ function functionCalls(reading: Reading, statement: Statement, from: number, ass
   const { flags } = names;
   // ALLOCATE and its kin speak of objects.
   const objects = assigned < 0 && called < 0 ? objectList(statement, from) : -1;
+  let covered = objects;
   for (let index = 0; index < openCount; index++) {
     const open = opens[index]!;
+    const direct = objects >= 0 && open > covered && open < statement.match[objects]!;
+    if (direct) covered = Math.max(open, statement.match[open]!);
     let begin = open;
     while (begin > 0 && WORD[code[begin - 1]!] === 1) begin--;
     if (begin === open || begin === called) continue;
@@ -160,13 +163,7 @@ function functionCalls(reading: Reading, statement: Statement, from: number, ass
     // What begins a statement is the name that is assigned to, or a keyword.
     if (begin === from || (begin < from && isHead(statement, begin))) continue;
     if (assigned < 0 && called < 0 && begin > from && isHeadWords(statement, from, begin)) continue;
-    if (
-      objects >= 0 &&
-      open < statement.match[objects]! &&
-      (begin === objects + 1 || before === 44) &&
-      directlyIn(statement, objects, begin)
-    )
-      continue;
+    if (direct && (begin === objects + 1 || before === 44)) continue;
     const close = statement.match[open]!;
     if (close < 0) continue;
     const id = names.idOf(code, begin, open);
@@ -198,17 +195,6 @@ function objectList(statement: Statement, from: number): number {
   return -1;
 }
 const OBJECTS = ['allocate', 'deallocate', 'nullify'];
-
-/** No parenthesis is open between the list's own and a place in it. */
-function directlyIn(statement: Statement, open: number, place: number): boolean {
-  const { code, match } = statement;
-  for (let at = open + 1; at < place; at++)
-    if (code[at] === 40 || code[at] === 91) {
-      if (match[at]! < 0 || match[at]! > place) return false;
-      at = match[at]!;
-    }
-  return true;
-}
 
 /** Whether a name followed by a parenthesis is an element and no call. */
 export function isIndexed(scope: Scope, name: string): boolean {

@@ -18,6 +18,8 @@ export interface ScanHandler {
 /** Longer statements are cut: tables of data have been written so. */
 const LONGEST_STATEMENT = 4_000_000;
 
+const LONGEST_DIRECTIVE = 4000;
+
 const BLANK = 0;
 const PLAIN = 1;
 const SPECIAL = 2;
@@ -106,7 +108,7 @@ export class StatementScanner {
 
   private directive(start: number, end: number, line: number): void {
     const text = Buffer.from(this.bytes.buffer, this.bytes.byteOffset, this.bytes.length)
-      .latin1Slice(start, end)
+      .latin1Slice(start, Math.min(end, start + LONGEST_DIRECTIVE))
       .replace(/\\\r?\n/g, ' ')
       .replace(/\r$/, '');
     const { off, branch } = this.conditions;

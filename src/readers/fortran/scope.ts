@@ -89,6 +89,7 @@ export class Scope {
   readonly kind: ScopeKind;
   readonly name: string;
   readonly parent: Scope | null;
+  readonly depth: number;
   /** Path of hosts, joined by `::`; null at file level. */
   readonly path: string | null;
   /** Its own path, by which what stands in it names it. */
@@ -113,7 +114,8 @@ export class Scope {
   values: Map<string, number> | null = null;
   /** Bytes that its constants stand for as kinds; NaN likewise. */
   kinds: Map<string, number> | null = null;
-  readonly commons: CommonDraft[] = [];
+  /** By name, condition and whether it is the scope's own. */
+  readonly commons = new Map<string, CommonDraft>();
   containing = false;
   /** An executable statement has been met: no statement function comes behind it. */
   executing = false;
@@ -142,6 +144,7 @@ export class Scope {
     this.kind = kind;
     this.name = name;
     this.parent = parent;
+    this.depth = parent === null ? 0 : parent.depth + 1;
     this.line = line;
     this.column = column;
     this.branch = branch;

@@ -125,8 +125,11 @@ export class Statement {
   // Places
 
   pieceAt(index: number): Piece {
+    return this.pieceCount === 1 ? this.pieces[0]! : this.pieces[this.pieceIndexAt(index)]!;
+  }
+
+  private pieceIndexAt(index: number): number {
     const { pieces, pieceCount } = this;
-    if (pieceCount === 1) return pieces[0]!;
     let low = 0;
     let high = pieceCount - 1;
     while (low < high) {
@@ -134,7 +137,7 @@ export class Statement {
       if (pieces[middle]!.index <= index) low = middle;
       else high = middle - 1;
     }
-    return pieces[low]!;
+    return low;
   }
 
   lineAt(index: number): number {
@@ -210,16 +213,12 @@ export class Statement {
     if (to <= from) return '';
     const first = this.source[from]!;
     const last = this.source[to - 1]! + 1;
-    const begin = this.pieceAt(from);
-    const end = this.pieceAt(to - 1);
+    const begin = this.pieceIndexAt(from);
+    const end = this.pieceIndexAt(to - 1);
     if (begin === end) return this.text.slice(first, last);
-    let joined = this.text.slice(first, begin.to);
-    for (let at = this.pieces.indexOf(begin) + 1; at < this.pieceCount; at++) {
-      const piece = this.pieces[at]!;
-      if (piece === end) return joined + this.text.slice(piece.from, last);
-      joined += this.text.slice(piece.from, piece.to);
-    }
-    return joined;
+    let joined = this.text.slice(first, this.pieces[begin]!.to);
+    for (let at = begin + 1; at < end; at++) joined += this.text.slice(this.pieces[at]!.from, this.pieces[at]!.to);
+    return joined + this.text.slice(this.pieces[end]!.from, last);
   }
 
   /** As written, with every stretch of white space as one blank, cut at `longest` characters. */
@@ -237,7 +236,10 @@ export class Statement {
       if (same) return this.names.name(code, from, to);
       return this.text.slice(source[from]!, source[to - 1]! + 1);
     }
-    const text = this.original(from, to).replace(/\s+/g, ' ').trim();
+    // A call may hold calls that hold calls: each is shown by its beginning, or the whole would be copied at every level.
+    const text = this.original(from, Math.min(to, from + 2 * longest))
+      .replace(/\s+/g, ' ')
+      .trim();
     return text.length > longest ? text.slice(0, longest) : text;
   }
 

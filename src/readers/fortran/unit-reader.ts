@@ -29,6 +29,8 @@ import { SourceText } from './source-text.ts';
 import type { Statement } from './statement.ts';
 
 const DEPTH_OF_INCLUDES = 12;
+/** Module, procedure, internal procedure, interface, interface body: more is no Fortran. */
+const DEEPEST = 24;
 /** Ways of compiling one procedure that are told apart. */
 const MOST_ALTERNATIVES = 8;
 
@@ -111,7 +113,7 @@ export class UnitReader implements ScanHandler {
       this.include(include[1]!, '#include', line, 1, condition);
       return;
     }
-    const define = /^#\s*define\s+([A-Za-z_]\w*)(?:\s+(.+?))?\s*$/.exec(text);
+    const define = /^#\s*define\s+([A-Za-z_]\w*)(?:\s+(\S.*))?$/s.exec(text.trimEnd());
     const { reading } = this;
     if (define === null || reading.inside > 0) return;
     const value =
@@ -542,6 +544,7 @@ export class UnitReader implements ScanHandler {
     return (
       (scope.kind === 'subroutine' || scope.kind === 'function') &&
       !scope.containing &&
+      scope.headers.length < MOST_ALTERNATIVES &&
       scope.headers.every((one) => exclude(one.branch, statement.branch))
     );
   }
@@ -658,6 +661,13 @@ export class UnitReader implements ScanHandler {
 
   private open(kind: ScopeKind, name: string, statement: Statement, at: number): Scope {
     const { reading } = this;
+    if (reading.scope.depth >= DEEPEST) {
+      reading.found.incomplete.push({
+        line: statement.line,
+        why: 'units stand deeper inside one another than Fortran allows',
+      });
+      this.close(statement.line);
+    }
     const piece = statement.pieceAt(at);
     const scope = new Scope(
       kind,
@@ -764,7 +774,7 @@ export class UnitReader implements ScanHandler {
   private endUnit(scope: Scope, endLine: number): void {
     const { found, inside } = this.reading;
     const bound = this.boundIn(scope);
-    for (const common of scope.commons) {
+    for (const common of scope.commons.values()) {
       if (!common.own) continue;
       found.commons.push({
         name: common.name,
