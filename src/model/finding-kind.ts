@@ -35,6 +35,8 @@ export type ReaderKind =
   | 'call-rank'
   | 'call-order'
   | 'call-constant-out'
+  | 'call-claim'
+  | 'result-order'
   | 'common-differs'
   | 'common-scratch'
   | 'prototype-differs';

@@ -58,6 +58,21 @@ export const readersExplanations = {
     accept: 'When the exchange is meant, such as a call for the reverse direction.',
     example: 'call mix(b, a) of subroutine mix(a, b).',
   },
+  'call-claim': {
+    means:
+      'What a comment says of a value where it is passed and what a comment says where it is taken do not agree: a conversion is missing, or made twice.',
+    arises: 'Units were changed on one side, or two modules were written in different ones.',
+    mend: 'Convert at the call, or correct the comment that is wrong.',
+    accept: 'When the conversion is made on the way, out of sight of both comments.',
+    example: 'A density said to be in kg/m3 is passed for one said to be in g/cm3.',
+  },
+  'result-order': {
+    means: 'A tuple is unpacked into the names that are returned, in another order.',
+    arises: 'The order of what is returned changed and a caller was left behind.',
+    mend: 'Unpack in the order in which it is returned.',
+    accept: 'Hardly ever.',
+    example: 'ener, pres = eos(rho, temp) while eos returns pres, ener.',
+  },
   'call-constant-out': {
     means:
       'A constant is passed for an argument that is written to: some compilers then change the constant everywhere.',
