@@ -46,7 +46,8 @@ function unitClaims(read: FileInterface): UnitClaims {
   const found = new Map<string, Claim>();
   const doubted = new Set<string>();
   for (const claim of read.claims) {
-    if (claim.what !== 'unit') continue;
+    // A name that ends like a unit says too little to be held against a comment.
+    if (claim.what !== 'unit' || claim.from === 'name') continue;
     const key = `${claim.parent ?? ''} ${claim.name}`;
     const before = found.get(key);
     // Two places that say different things say nothing.
