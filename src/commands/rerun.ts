@@ -6,6 +6,7 @@ import { findingsText } from '../report/finding-text.ts';
 import { paint } from '../report/style.ts';
 import { type CaseOutcome, isBad } from '../runs/case-outcome.ts';
 import { readExchange } from '../runs/exchange.ts';
+import { measureNoise, noiseText } from '../runs/measure-noise.ts';
 import { recordReference } from '../runs/record-reference.ts';
 import { rerunCases } from '../runs/rerun.ts';
 import { runFindings } from '../runs/run-findings.ts';
@@ -22,6 +23,7 @@ export const command: Command = {
   options: {
     with: { type: 'string', value: 'COMPONENT=MODULE', multiple: true, says: 'run with another module in a component' },
     record: { type: 'boolean', says: 'make the results the references of their cases' },
+    noise: { type: 'boolean', says: 'measure the noise of the code around the references of the cases' },
     reason: { type: 'string', value: 'TEXT', says: 'why these results may be trusted; needed with --record' },
     'even-changed': { type: 'boolean', says: 'record although the work tree differs from its commit' },
     fresh: { type: 'boolean', says: 'run again what was run already' },
@@ -36,12 +38,14 @@ everything that can change it, so a second call runs only what changed, and an i
   mortise rerun shock --at v2.1          one case, at a revision
   mortise rerun --with opacity=table     with another module plugged in
   mortise rerun shock --record --reason "agrees with the exact Riemann solution to 1e-3"
+  mortise rerun shock --noise            run it as its "noise" declares, and keep what that moves beside the reference
 
 Exit status: 0 nothing beyond tolerance, 1 something is, 2 wrong usage, 3 a case could not be run, 130 interrupted.`,
   async run(invocation, surroundings) {
     const opened = await openForRuns(invocation, surroundings);
     if (opened.place === null) return opened.status;
     checkRecording(invocation);
+    if (invocation.options.noise === true) return measure(opened, invocation, surroundings);
     const { at } = invocation.options;
     const outcomes = await orUsage(() =>
       rerunCases({
@@ -75,6 +79,25 @@ Exit status: 0 nothing beyond tolerance, 1 something is, 2 wrong usage, 3 a case
         : statusOf(outcomes, invocation.words.length > 0);
   },
 };
+
+async function measure(opened: OpenedCode, invocation: Invocation, surroundings: Surroundings): Promise<ExitStatus> {
+  const { record: recording, at, with: exchanged } = invocation.options;
+  if (recording === true || at !== undefined || listOf(exchanged).length > 0) {
+    throw new UsageError(
+      '--noise is measured around the reference of the work tree: leave out --record, --at and --with',
+    );
+  }
+  const measured = await orUsage(() =>
+    measureNoise({ ...runRequest(opened, invocation, surroundings), cases: invocation.words }),
+  );
+  surroundings.out(
+    invocation.options.json === true
+      ? jsonText({ document: 'mortise rerun --noise', cases: measured })
+      : printableLines(noiseText(measured)),
+  );
+  if (surroundings.signal.aborted) return EXIT.interrupted;
+  return measured.every((one) => one.noise !== null) ? EXIT.ok : EXIT.incomplete;
+}
 
 function listOf(option: Invocation['options'][string]): readonly string[] {
   return Array.isArray(option) ? option : [];

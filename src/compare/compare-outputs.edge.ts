@@ -8,6 +8,7 @@ import { compareConserved } from './conserved.ts';
 import { featureUnit, takeFeature } from './features.ts';
 import { type DeviationOf, fieldDeviation, notComparable } from './field-deviation.ts';
 import { evaluateFormula } from './formula.ts';
+import { type GridConvergence, gridConvergence } from './grid-convergence.ts';
 import { type Allowances, judge, placed } from './judge.ts';
 import { measureKernel } from './measure-kernel.edge.ts';
 import { measureTogether } from './measure-together.edge.ts';
@@ -34,8 +35,9 @@ export async function compareCase(
   theCase: Case,
   referenceFolder: string,
   resultFolder: string,
-  options: CaseOptions = {},
+  asked: CaseOptions = {},
 ): Promise<Deviation[]> {
+  const options: CaseOptions = { gridError: gridErrors(theCase), ...asked };
   const pairs = new Map<string, Pair>();
   const deviations: Deviation[] = [];
   const shifts: Deviation[] = [];
@@ -69,6 +71,17 @@ export async function compareCase(
     deviations.push(conservedDeviation(theCase.case, total.total, pairs.get(total.of), total.of, total.tolerance));
   }
   return [...deviations.slice(0, pairs.size), ...shifts, ...deviations.slice(pairs.size)];
+}
+
+/** The declared values on three grids as what they say of the error of the grid. */
+function gridErrors(theCase: Case): Record<string, GridConvergence> {
+  const declared = Object.entries(theCase['grid-error'] ?? {});
+  return Object.fromEntries(
+    declared.map(([name, { fine, middle, coarse, ratio, 'coarse-ratio': coarser }]) => [
+      name,
+      gridConvergence([fine, middle, coarse], [ratio, coarser ?? ratio]),
+    ]),
+  );
 }
 
 /**
@@ -134,6 +147,10 @@ async function longDeviation(
   options: CaseOptions,
 ): Promise<Deviation> {
   const declared = completeTolerance(quantity.tolerance);
+  if (quantity.as !== undefined) {
+    const why = `${base.quantity} has more than ${LARGEST_HELD} values: no ${quantity.as} is made of so many`;
+    return notComparable({ ...base, tolerance: declared }, why);
+  }
   try {
     const streamed = await measureTogether(
       { file: reference, info: pair.reference },

@@ -31,7 +31,11 @@ export function judge(
     (byNoise.tolerances ?? Number.POSITIVE_INFINITY) < (byDeclared.tolerances ?? Number.POSITIVE_INFINITY);
   const [deviation, tolerance] = kinder ? [byNoise, floor] : [byDeclared, declared];
   const grid = options.gridError?.[quantity];
-  if (deviation.class !== 'beyond tolerance' || grid === undefined || !grid.converging) return { deviation, tolerance };
+  if (deviation.class !== 'beyond tolerance' || grid === undefined) return { deviation, tolerance };
+  if (!grid.converging || !Number.isFinite(grid.fineIndex)) {
+    const says = 'the three grids of its grid-error do not converge: the error of the grid is unknown';
+    return { deviation: withNotes(deviation, [says]), tolerance };
+  }
   const below = tolerancesOf(measured, { relative: grid.fineIndex, norm: 'Linf' }) <= 1;
   const share = `${(grid.fineIndex * 100).toPrecision(2)} %`;
   const says = below

@@ -37,8 +37,13 @@ export function noiseFloor(
     const key = { pointwise: 'maxRelative', L1: 'l1', L2: 'l2', Linf: 'linf' } as const;
     deviations.push(measures[key[norm]]);
   }
-  deviations.sort((a, b) => a - b);
-  return { norm, deviations, unusable: runs.length - deviations.length, floor: upperLimit(deviations) };
+  return floorOf(norm, deviations, runs.length - deviations.length);
+}
+
+/** The same from deviations that were measured before, in any order. */
+export function floorOf(norm: Norm, measured: readonly number[], unusable: number): NoiseFloor {
+  const deviations = [...measured].sort((a, b) => a - b);
+  return { norm, deviations, unusable, floor: upperLimit(deviations) };
 }
 
 /** Prediction limit for one more value: mean + t * s * sqrt(1 + 1/n). */

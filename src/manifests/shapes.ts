@@ -189,6 +189,11 @@ const output = record('an output', {
         tolerance: must(tolerance, 'How far it may move from the reference.'),
         extensive: may(flag, 'True for an amount a cell: between unlike grids its total is kept, not its values.'),
         weight: may(text('symbol'), 'Data set of weights (cell masses, volumes, time steps) for the norms.'),
+        as: may(
+          choice('spectrum', 'histogram'),
+          'For turbulent fields: compared as power spectrum or as distribution of values.',
+        ),
+        bins: may(count, 'Bins of the histogram; 64 when absent.'),
       }),
       1,
     ),
@@ -248,6 +253,28 @@ export const CASE: RecordShape = record('a case', {
     'Totals that the run must keep.',
   ),
   footprint: may(map('name', text('name')), 'Quantity of a contract to the output quantity whose extremes it visits.'),
+  noise: may(
+    record('the noise of a code', {
+      exchanges: may(list(text('prose')), 'Each is one run: set.FFLAGS=-O3, select.RANKS=4.'),
+      'last-bit': may(list(text('path')), 'Text inputs whose real numbers are moved by one unit in the last place.'),
+      runs: may(count, 'Runs with the last bit moved; 8 when absent.'),
+    }),
+    'Runs that change no physics; "mortise rerun --noise" measures what they move, and that is allowed.',
+  ),
+  'grid-error': may(
+    map(
+      'name',
+      record('an error of the grid', {
+        fine: must({ is: 'number' }, 'The number on the fine grid.'),
+        middle: must({ is: 'number' }, 'On the middle grid.'),
+        coarse: must({ is: 'number' }, 'On the coarse grid.'),
+        ratio: must(positive, 'Spacing of the middle grid over the fine one, above 1.'),
+        'coarse-ratio': may(positive, 'Spacing of the coarse grid over the middle one; ratio when absent.'),
+        reason: may(text('prose'), 'Where the three numbers come from.'),
+      }),
+    ),
+    'Quantity or feature to its values on three grids: what is beyond tolerance but below the error of the grid is said as such.',
+  ),
   'time-limit-seconds': may(positive, 'The run is ended after this time.'),
 });
 

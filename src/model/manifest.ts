@@ -135,7 +135,31 @@ export interface Case {
   readonly conserved?: readonly (string | ConservedTotal)[];
   /** Quantities whose extremes over the outputs make the footprint: component quantity to output quantity. */
   readonly footprint?: Readonly<Record<string, string>>;
+  /** Runs that change no physics: what they move is the noise of the code, and is allowed. */
+  readonly noise?: Noise;
+  /** Quantity or feature to its values on three grids: what the grid itself leaves uncertain. */
+  readonly 'grid-error'?: Readonly<Record<string, GridError>>;
   readonly 'time-limit-seconds'?: number;
+}
+
+export interface Noise {
+  /** Each is one run: `set.FFLAGS=-O3`, `select.RANKS=4`, as on the command line. */
+  readonly exchanges?: readonly string[];
+  /** Text inputs whose real numbers are moved by one unit in the last place, up or down at random but the same every time. */
+  readonly 'last-bit'?: readonly string[];
+  /** Runs with the last bit moved; 8 when absent. */
+  readonly runs?: number;
+}
+
+/** One number on three grids; `ratio` is the spacing of the middle grid over the fine one. */
+export interface GridError {
+  readonly fine: number;
+  readonly middle: number;
+  readonly coarse: number;
+  readonly ratio: number;
+  /** Spacing of the coarse grid over the middle one; `ratio` when absent. */
+  readonly 'coarse-ratio'?: number;
+  readonly reason?: string;
 }
 
 export interface ConservedTotal {
@@ -183,6 +207,10 @@ export interface OutputQuantity {
   readonly extensive?: boolean;
   /** Data set of weights (cell masses, volumes, time steps) for the norms. */
   readonly weight?: string;
+  /** For turbulent fields, whose points never agree: compared as power spectrum or as distribution of values. */
+  readonly as?: 'spectrum' | 'histogram';
+  /** Bins of the histogram; 64 when absent. */
+  readonly bins?: number;
 }
 
 export interface Feature {

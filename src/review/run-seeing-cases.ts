@@ -2,7 +2,7 @@
 import { compareCase } from '../compare/compare-outputs.edge.ts';
 import { type CaseOutcome, worstClass } from '../runs/case-outcome.ts';
 import { casesNamed } from '../runs/configuration.ts';
-import { referencePlace, referenceStands } from '../runs/reference-files.edge.ts';
+import { readNoise, referencePlace, referenceStands } from '../runs/reference-files.edge.ts';
 import { type LaboratoryRequest, withLaboratory } from '../runs/rerun.ts';
 
 /**
@@ -27,7 +27,8 @@ export function runSeeingCases(
         if (outcome.result === null || outcome.state === 'failed') return outcome;
         const reference = await referencePlace(listing, folder, one.case, laboratory.store.scratch);
         if (!referenceStands(reference)) return outcome;
-        const deviations = await compareCase(one, reference, outcome.result);
+        const noise = readNoise(reference)?.floors;
+        const deviations = await compareCase(one, reference, outcome.result, noise === undefined ? {} : { noise });
         return { ...outcome, state: 'compared', why: '', deviations, class: worstClass(deviations) };
       }),
     );

@@ -3,11 +3,13 @@ import { createHash } from 'node:crypto';
 import { createReadStream, existsSync, mkdirSync, readdirSync, readFileSync, rmSync, statSync } from 'node:fs';
 import { copyFile, open, rename } from 'node:fs/promises';
 import { dirname, join } from 'node:path';
+import { type NoiseRecord, printNoise, readNoiseText } from './noise-record.ts';
 import { printReference, type ReferenceRecord, readReferenceText } from './reference-record.ts';
 import { writeWhole } from './store.edge.ts';
 import { layTree, type TreeListing } from './tree-files.edge.ts';
 
 const RECORD = 'record.yaml';
+const NOISE = 'noise.yaml';
 
 /** The folder of a case's reference in the work tree. */
 export function referenceFolder(root: string, theCase: string, manifestFolder = 'manifests'): string {
@@ -34,6 +36,28 @@ export async function referencePlace(
   }
   return folder;
 }
+
+/**
+ * The noise that was measured around the reference in this folder; null where none was, or it was measured around another one.
+ *
+ * @throws {ReferenceDamaged} when there is one that can't be read
+ */
+export function readNoise(folder: string): NoiseRecord | null {
+  const file = join(folder, NOISE);
+  if (!existsSync(file)) return null;
+  const noise = readNoiseText(readFileSync(file, 'utf8'), file);
+  return noise.reference === recordDigest(folder) ? noise : null;
+}
+
+/** Puts it beside the reference that it was measured around. */
+export function writeNoise(folder: string, noise: Omit<NoiseRecord, 'reference'>): void {
+  writeWhole(join(folder, NOISE), printNoise({ ...noise, reference: recordDigest(folder) }));
+}
+
+const recordDigest = (folder: string) =>
+  `sha256:${createHash('sha256')
+    .update(readFileSync(join(folder, RECORD)))
+    .digest('hex')}`;
 
 export function referenceStands(folder: string): boolean {
   return existsSync(join(folder, RECORD));

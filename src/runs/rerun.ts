@@ -9,7 +9,7 @@ import type { Exchange } from './exchange.ts';
 import { availableParallelism, localExecutor } from './local-executor.edge.ts';
 import type { Executor } from './process-end.ts';
 import { producedBy } from './produced.ts';
-import { alteredOutputs, readReferenceIn, referencePlace, referenceStands } from './reference-files.edge.ts';
+import { alteredOutputs, readNoise, readReferenceIn, referencePlace, referenceStands } from './reference-files.edge.ts';
 import { ReferenceDamaged } from './reference-record.ts';
 import type { RunEvent } from './run-event.ts';
 import { slurmExecutor } from './slurm-executor.edge.ts';
@@ -278,7 +278,8 @@ export class TreeRuns {
     }
     const damage = await referenceDamage(reference, theCase.case);
     if (damage !== null) return { ...ran, state: 'no reference', why: damage, damage };
-    const deviations = await compareCase(theCase, reference, result.out);
+    const noise = readNoise(reference)?.floors;
+    const deviations = await compareCase(theCase, reference, result.out, noise === undefined ? {} : { noise });
     return { ...ran, state: 'compared', why: '', deviations, class: worstClass(deviations) };
   }
 
@@ -297,8 +298,9 @@ export class TreeRuns {
   }
 }
 
-async function referenceDamage(folder: string, theCase: string): Promise<string | null> {
+export async function referenceDamage(folder: string, theCase: string): Promise<string | null> {
   try {
+    readNoise(folder);
     const altered = await alteredOutputs(folder, readReferenceIn(folder, theCase)!);
     if (altered.length === 0) return null;
     return `its reference can't be trusted: ${altered.map(({ file, why }) => `${file} ${why}`).join('; ')}`;

@@ -83,6 +83,23 @@ describe('a case compared with its reference', () => {
     expect(deviations['field mass']!.class).toBe('not comparable');
   });
 
+  it('says what is beyond tolerance but below the error of the grid, and what is beyond both', async () => {
+    // Celik et al., J. Fluids Eng. 130 (2008) 078001, table 1: GCI of 2.2 % for the dimensionless reattachment length.
+    const grid = { fine: 6.063, middle: 5.972, coarse: 5.863, ratio: 1.5, 'coarse-ratio': 1.333 };
+    const gridded: Case = { ...cloud, 'grid-error': { 'peak-temperature': grid } };
+    const peak = async (value: string) => {
+      write('grid', 'profile.csv', `x[cm],T[K]\n0,10\n1,20\n2,80\n3,${value}\n`);
+      write('grid', 'totals.dat', '# t mass\n0 1.0\n1 1.0\n2 1.0\n');
+      const all = await compareCase(gridded, join(folder, 'reference'), join(folder, 'grid'));
+      return all.find((one) => one.quantity === 'peak-temperature')!;
+    };
+    expect(await peak('91.5')).toMatchObject({ class: 'beyond tolerance' });
+    expect((await peak('91.5')).why).toContain('below the error of the grid (2.2 %)');
+    expect((await peak('93')).why).toContain('beyond the error of the grid too (2.2 %)');
+    grid.coarse = 5.98;
+    expect((await peak('91.5')).why).toContain('do not converge');
+  });
+
   it('finds a total that drifts where the reference kept it', async () => {
     write('drift', 'profile.csv', 'x[cm],T[K]\n0,10\n1,20\n2,80\n3,90\n');
     write('drift', 'totals.dat', '# t mass\n0 1.0\n1 1.0\n2 1.000001\n');
