@@ -11,7 +11,7 @@ export interface LinkOptions {
 }
 
 export interface LinkedCode {
-  /** Path to interface, with bytes filled in as far as they could be. */
+  /** Path to interface, with bytes filled in as far as they could be, and without calls that are elements of a module's arrays. */
   readonly files: ReadonlyMap<string, FileInterface>;
   /** Definitions by name as callers spell it; Fortran calls a C function `name_` by `name`. */
   readonly providers: ReadonlyMap<string, readonly Provider[]>;
@@ -48,6 +48,11 @@ export function linkInterfaces(files: ReadonlyMap<string, FileInterface>, option
     }
   }
   const resolver = new Resolver(linked, providers);
+  for (const [file, read] of linked) {
+    if (read.language !== 'fortran') continue;
+    const calls = read.calls.filter((call) => !resolver.isElement(file, call));
+    if (calls.length < read.calls.length) linked.set(file, { ...read, calls });
+  }
   return {
     files: linked,
     providers,

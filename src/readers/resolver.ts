@@ -19,6 +19,8 @@ export class Resolver {
   private readonly files: ReadonlyMap<string, FileInterface>;
   private readonly providers: ReadonlyMap<string, readonly Provider[]>;
   private readonly generics = new Map<string, GenericName[]>();
+  /** Arrays and texts of modules: `name(i)` is an element of one, whatever procedure has that name elsewhere. */
+  private readonly arrays = new Map<string, Set<string>>();
   /** Modules that a module uses. */
   private readonly uses = new Map<string, string[]>();
   private readonly seen = new Map<string, ReadonlySet<string>>();
@@ -32,6 +34,12 @@ export class Resolver {
     this.programs = new Programs(files);
     for (const [file, read] of files) {
       for (const use of read.uses) if (use.parent !== null) push(this.uses, use.parent, use.module);
+      for (const { name, parent, rank, type } of read.variables)
+        if (parent !== null && (rank !== 0 || type === 'character')) {
+          const known = this.arrays.get(parent);
+          if (known === undefined) this.arrays.set(parent, new Set([name]));
+          else known.add(name);
+        }
       for (const { name, parent, procedures } of read.generics)
         push(this.generics, name, { file, parent, procedures, bound: false });
       for (const type of read.types)
@@ -67,6 +75,16 @@ export class Resolver {
     // What stands in a module or a host that is not in sight can not be meant.
     const open = all.filter((one) => one.procedure.parent === null || this.files.get(one.file)!.language !== 'fortran');
     return this.nearest(file, compatible(open, call));
+  }
+
+  /** True for what looks like a function reference in one file, and is an element of an array that a module in sight holds. */
+  isElement(file: string, call: CallSite): boolean {
+    if (call.how !== 'function' || this.arrays.size === 0) return false;
+    const hosts = call.caller === null ? [] : call.caller.split('::');
+    if (hosts.length > 0 && this.arrays.get(hosts[0]!)?.has(call.callee)) return true;
+    for (const module of this.modulesSeen(file, call.caller))
+      if (this.arrays.get(module)?.has(call.callee)) return true;
+    return false;
   }
 
   private named(name: string, call: CallSite): readonly Provider[] {

@@ -83,3 +83,24 @@ describe('a definition under a preprocessor condition', () => {
     expect(await check({ 'g.F': definition, 'c.F': plain })).toEqual([]);
   });
 });
+
+describe('an element of an array that a module holds', () => {
+  const caller = 'subroutine c(i, x)\n use state\n x = curve(i, 2) + 1\nend subroutine\n';
+  const curve = 'real function curve(a, b, c)\nend function\n';
+  it('is no call of a function of that name', async () => {
+    const module = 'module state\n real, allocatable :: curve(:,:)\nend module\n';
+    expect(await check({ 'c.f90': caller, 'f.f90': curve, 'state.f90': module })).toEqual([]);
+    expect(
+      await check({
+        'c.f90': caller,
+        'f.f90': curve,
+        'state.f90': module,
+        'use.f90': 'module m\n use state\nend module\n',
+      }),
+    ).toEqual([]);
+  });
+  it('is one where the module holds no such array', async () => {
+    const module = 'module state\n real, allocatable :: other(:,:)\nend module\n';
+    expect(await check({ 'c.f90': caller, 'f.f90': curve, 'state.f90': module })).toEqual(['c.f90:3 stop call-count']);
+  });
+});
