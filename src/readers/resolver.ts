@@ -50,6 +50,7 @@ export class Resolver {
 
   /** Definitions that a call can mean, nearest first; several: one of these. None where nobody knows. */
   resolve(file: string, call: CallSite): readonly Provider[] {
+    if (!this.providers.has(call.callee) && !this.generics.has(call.callee) && !call.callee.endsWith('_')) return [];
     const caller = this.files.get(file)!;
     // A dummy procedure is whatever is passed for it.
     const host = this.hostOf(file, call);

@@ -93,6 +93,8 @@ const MPI_NAME = /^p?mpi_/i;
 
 /** What passes storage on whatever its type is no error of the call. */
 function softened(misfits: Misfit[], call: CallSite, provider: Provider, usage: Usage): Misfit[] {
+  // A list of its own: more is found and put behind.
+  if (misfits.length === 0) return [];
   const standIn = MPI_NAME.test(provider.procedure.name);
   const inStandIn = MPI_NAME.test(call.caller?.split('::').at(-1) ?? '');
   return misfits.flatMap((one): Misfit[] => {

@@ -5,7 +5,7 @@ import type { Place } from '../../model/place.ts';
 import { conversion, sameUnit } from '../../units/conversion.ts';
 import type { LinkedCode } from '../link.ts';
 import type { Provider } from '../resolver.ts';
-import { pairsOf } from './misfit.ts';
+import { formalOf } from './misfit.ts';
 
 /** Units that are claimed, by what they are claimed of. */
 type UnitClaims = ReadonlyMap<string, Claim>;
@@ -30,7 +30,9 @@ export function checkCallClaims(linked: LinkedCode): Finding[] {
       const [provider] = providers;
       const taken = claimsOf(provider!.file);
       if (taken.size === 0) continue;
-      for (const [actual, formal] of pairsOf(call, provider!.procedure.args)) {
+      for (const [index, actual] of call.args.entries()) {
+        const formal = formalOf(actual, index, provider!.procedure.args);
+        if (formal === undefined) continue;
         const said = claimOf(claimsOf(file), call.caller, nameIn(actual));
         const wanted = claimOf(taken, pathOf(provider!), formal.name);
         if (said === null || wanted === null) continue;

@@ -17,6 +17,9 @@ export interface Misfit {
   readonly formal?: Argument;
 }
 
+/** Most calls fit: one empty list for all of them. */
+const NONE: Misfit[] = [];
+
 export interface Languages {
   readonly from: string;
   readonly to: string;
@@ -33,22 +36,26 @@ export function takenArguments(call: CallSite, procedure: Procedure, { from, to 
   return hidden === 0 ? args : args.slice(0, Math.max(0, args.length - hidden));
 }
 
-/** Actual arguments beside the dummy arguments that they are passed for. */
-export function pairsOf(call: CallSite, formals: readonly Argument[]): [ActualArgument, Argument][] {
-  return call.args.flatMap((actual, index): [ActualArgument, Argument][] => {
-    const formal = actual.keyword === undefined ? formals[index] : formals.find((one) => one.name === actual.keyword);
-    return formal === undefined ? [] : [[actual, formal]];
-  });
+/** The dummy argument that an actual one at a position is passed for. */
+export function formalOf(actual: ActualArgument, index: number, formals: readonly Argument[]): Argument | undefined {
+  return actual.keyword === undefined ? formals[index] : formals.find((one) => one.name === actual.keyword);
 }
 
 export function misfitsOf(call: CallSite, procedure: Procedure, languages: Languages): Misfit[] {
   const formals = takenArguments(call, procedure, languages);
-  if (call.args.some((one) => one.form === 'absent' || isUnpacked(one, languages.from))) return [];
+  if (call.args.some((one) => one.form === 'absent' || isUnpacked(one, languages.from))) return NONE;
   const wrong = countMisfit(call, procedure, formals, languages);
   if (wrong !== null) return [wrong];
-  if (languages.from !== languages.to) return [];
-  const pairs = pairsOf(call, formals);
-  return pairs.flatMap(([actual, formal]) => argumentMisfit(call, pairs, procedure, actual, formal, languages));
+  if (languages.from !== languages.to) return NONE;
+  let found: Misfit[] = NONE;
+  for (let index = 0; index < call.args.length; index++) {
+    const actual = call.args[index]!;
+    const formal = formalOf(actual, index, formals);
+    if (formal === undefined) continue;
+    const misfits = argumentMisfit(call, formals, procedure, actual, formal, languages);
+    if (misfits.length > 0) found = [...found, ...misfits];
+  }
+  return found;
 }
 
 /** `*values` and `**options` of Python: how many they are nobody can say. */
@@ -94,7 +101,7 @@ function countMisfit(
 
 function argumentMisfit(
   call: CallSite,
-  pairs: readonly (readonly [ActualArgument, Argument])[],
+  formals: readonly Argument[],
   procedure: Procedure,
   actual: ActualArgument,
   formal: Argument,
@@ -113,7 +120,7 @@ function argumentMisfit(
       ];
   }
   const [given, taken] = [classOf(actual.type), classOf(formal.type)];
-  if (given === null || taken === null) return [];
+  if (given === null || taken === null) return NONE;
   if (given !== taken) {
     // Scratch storage of another type is passed on purpose in old codes.
     const scratch = actual.form === 'name' || actual.form === 'element';
@@ -126,22 +133,26 @@ function argumentMisfit(
       },
     ];
   }
-  return [...kindMisfit(pairs, actual, formal, given), ...rankMisfit(call, procedure, actual, formal, given)];
+  const kind = kindMisfit(call, formals, actual, formal, given);
+  const rank = rankMisfit(call, procedure, actual, formal, given);
+  return kind.length === 0 ? rank : rank.length === 0 ? kind : [...kind, ...rank];
 }
 
 function kindMisfit(
-  pairs: readonly (readonly [ActualArgument, Argument])[],
+  call: CallSite,
+  formals: readonly Argument[],
   actual: ActualArgument,
   formal: Argument,
   type: string,
 ): Misfit[] {
-  if (actual.bytes == null || formal.bytes === null || actual.bytes === formal.bytes) return [];
-  if (type === 'character' || type === 'logical') return [];
+  if (actual.bytes == null || formal.bytes === null || actual.bytes === formal.bytes) return NONE;
+  if (type === 'character' || type === 'logical') return NONE;
   // Whether a default real is as wide as one of 8 bytes is for the build to say.
   const open = type !== 'integer' && (actual.declaredDefault === true) !== (formal.kind === undefined);
   // One variable passed both for the short and for the long form: the callee takes the one that fits.
-  const both = pairs.some(
-    ([other, taken]) => other !== actual && other.text === actual.text && taken.bytes === actual.bytes,
+  const both = call.args.some(
+    (other, index) =>
+      other !== actual && other.text === actual.text && formalOf(other, index, formals)?.bytes === actual.bytes,
   );
   return [
     {
@@ -162,8 +173,8 @@ function rankMisfit(
   type: string,
 ): Misfit[] {
   // In sight of an explicit interface it would not compile; characters are arrays and texts by turns.
-  if (procedure.parent !== null || type === 'character' || call.how === 'method') return [];
-  if (actual.form !== 'name' || actual.rank === undefined || formal.rank < 0) return [];
+  if (procedure.parent !== null || type === 'character' || call.how === 'method') return NONE;
+  if (actual.form !== 'name' || actual.rank === undefined || formal.rank < 0) return NONE;
   if (actual.rank === 0 && formal.rank > 0)
     return [
       {
@@ -182,7 +193,7 @@ function rankMisfit(
         says: `passes the array ${actual.text} for the scalar ${formal.name}`,
       },
     ];
-  return [];
+  return NONE;
 }
 
 /** True for an expression that leaves no variable behind: an operator outside of every bracket, or brackets around the whole. */

@@ -1,6 +1,6 @@
 /** What all calls of one procedure pass for each of its arguments: names, types, and whether it serves as plain storage. Pure. */
 import type { ActualArgument, Argument, CallSite } from '../../model/interface.ts';
-import { classOf, pairsOf } from './misfit.ts';
+import { classOf, formalOf } from './misfit.ts';
 
 interface Passed {
   /** Name to the callers that pass it. */
@@ -12,7 +12,11 @@ export class Usage {
   private readonly byName = new Map<string, Passed>();
 
   add(file: string, call: CallSite, formals: readonly Argument[]): void {
-    for (const [actual, formal] of pairsOf(call, formals)) {
+    const caller = `${file} ${call.caller ?? ''}`;
+    for (let index = 0; index < call.args.length; index++) {
+      const actual = call.args[index]!;
+      const formal = formalOf(actual, index, formals);
+      if (formal === undefined) continue;
       let passed = this.byName.get(formal.name);
       if (passed === undefined) {
         passed = { names: new Map(), types: new Set() };
@@ -23,7 +27,6 @@ export class Usage {
       if (actual.name === undefined) continue;
       const name = actual.name.toLowerCase();
       const callers = passed.names.get(name);
-      const caller = `${file} ${call.caller ?? ''}`;
       if (callers === undefined) passed.names.set(name, new Set([caller]));
       else callers.add(caller);
     }
