@@ -5,6 +5,7 @@ import { deviationsText } from '../report/deviation-text.ts';
 import { findingsText } from '../report/finding-text.ts';
 import { paint } from '../report/style.ts';
 import { type CaseOutcome, isBad } from '../runs/case-outcome.ts';
+import { ensembleCases, ensembleText } from '../runs/ensemble-cases.ts';
 import { readExchange } from '../runs/exchange.ts';
 import { measureNoise, noiseText } from '../runs/measure-noise.ts';
 import { recordReference } from '../runs/record-reference.ts';
@@ -24,6 +25,7 @@ export const command: Command = {
     with: { type: 'string', value: 'COMPONENT=MODULE', multiple: true, says: 'run with another module in a component' },
     record: { type: 'boolean', says: 'make the results the references of their cases' },
     noise: { type: 'boolean', says: 'measure the noise of the code around the references of the cases' },
+    ensemble: { type: 'boolean', says: 'test whether three new runs belong to those that --noise measured' },
     reason: { type: 'string', value: 'TEXT', says: 'why these results may be trusted; needed with --record' },
     'even-changed': { type: 'boolean', says: 'record although the work tree differs from its commit' },
     fresh: { type: 'boolean', says: 'run again what was run already' },
@@ -45,6 +47,7 @@ Exit status: 0 nothing beyond tolerance, 1 something is, 2 wrong usage, 3 a case
     const opened = await openForRuns(invocation, surroundings);
     if (opened.place === null) return opened.status;
     checkRecording(invocation);
+    if (invocation.options.ensemble === true) return testEnsemble(opened, invocation, surroundings);
     if (invocation.options.noise === true) return measure(opened, invocation, surroundings);
     const { at } = invocation.options;
     const outcomes = await orUsage(() =>
@@ -97,6 +100,31 @@ async function measure(opened: OpenedCode, invocation: Invocation, surroundings:
   );
   if (surroundings.signal.aborted) return EXIT.interrupted;
   return measured.every((one) => one.noise !== null) ? EXIT.ok : EXIT.incomplete;
+}
+
+async function testEnsemble(
+  opened: OpenedCode,
+  invocation: Invocation,
+  surroundings: Surroundings,
+): Promise<ExitStatus> {
+  const { record: recording, noise, at } = invocation.options;
+  if (recording === true || noise === true) throw new UsageError('--ensemble goes without --record and --noise');
+  const tested = await orUsage(() =>
+    ensembleCases({
+      ...runRequest(opened, invocation, surroundings),
+      cases: invocation.words,
+      at: typeof at === 'string' ? at : null,
+      exchanges: listOf(invocation.options.with).map(readExchange),
+    }),
+  );
+  surroundings.out(
+    invocation.options.json === true
+      ? jsonText({ document: 'mortise rerun --ensemble', cases: tested })
+      : printableLines(ensembleText(tested)),
+  );
+  if (surroundings.signal.aborted) return EXIT.interrupted;
+  if (tested.some((one) => one.outcome?.passes === false)) return EXIT.stop;
+  return tested.every((one) => one.outcome !== null) ? EXIT.ok : EXIT.incomplete;
 }
 
 function listOf(option: Invocation['options'][string]): readonly string[] {

@@ -4,6 +4,7 @@ import type { Case, Domain, Feature, OutputQuantity, Range } from '../model/mani
 import { openDeclared } from '../outputs/open-output.edge.ts';
 import { type OutputFile, OutputProblem } from '../outputs/output-file.ts';
 import { compareArrays } from './compare-arrays.ts';
+import { CompensatedSum } from './compensated-sum.ts';
 import { compareConserved } from './conserved.ts';
 import { featureUnit, takeFeature } from './features.ts';
 import { type DeviationOf, fieldDeviation, notComparable } from './field-deviation.ts';
@@ -106,6 +107,38 @@ export async function footprintOf(theCase: Case, resultFolder: string): Promise<
     }
   }
   return domain;
+}
+
+/** The mean of every quantity of a case, as an ensemble is told by; NaN for one that cannot be read. */
+export async function fieldMeans(theCase: Case, resultFolder: string): Promise<Record<string, number>> {
+  const means: Record<string, number> = {};
+  for (const output of theCase.outputs) {
+    const file = await openOr(() => openDeclared(resultFolder, output));
+    for (const [name, { dataset }] of Object.entries(output.quantities)) {
+      means[name] = file instanceof OutputProblem ? Number.NaN : await meanOf(file, dataset);
+    }
+    if (!(file instanceof OutputProblem)) file.close();
+  }
+  return means;
+}
+
+async function meanOf(file: OutputFile, dataset: string): Promise<number> {
+  const fill = file.find(dataset)?.fill;
+  const sum = new CompensatedSum();
+  let count = 0;
+  try {
+    for await (const piece of file.read(dataset)) {
+      for (const value of piece) {
+        if (value === fill) continue;
+        sum.add(value);
+        count++;
+      }
+    }
+  } catch (error) {
+    if (error instanceof OutputProblem) return Number.NaN;
+    throw error;
+  }
+  return sum.value / count;
 }
 
 async function openOr(open: () => Promise<OutputFile>): Promise<OutputFile | OutputProblem> {

@@ -63,6 +63,26 @@ export interface EnsembleCriteria {
 /** With three new runs these pass a faithful code about 99.5 times in 100. @source Baker et al. 2015, section 3.2 */
 export const BAKER_CRITERIA: EnsembleCriteria = { sigmas: 2, components: 50, runFailures: 2, componentFailures: 3 };
 
+/**
+ * Criteria for an ensemble with so many components, made for three new runs, under which a faithful code fails about once in 200
+ * times: the number of components that must fail is worked out from the binomial distribution, which gives those of the paper
+ * for its 50. A handful of components cannot fail in numbers; there one is enough, but at three standard deviations.
+ */
+export function criteriaFor(components: number): EnsembleCriteria {
+  const used = Math.min(components, BAKER_CRITERIA.components);
+  if (used < 10) return { sigmas: 3, components: used, runFailures: 2, componentFailures: 1 };
+  // Two or three of three normal scores beyond two standard deviations.
+  const outside = 0.0455;
+  const fails = 3 * outside ** 2 * (1 - outside) + outside ** 3;
+  let term = (1 - fails) ** used;
+  let atLeast = 1;
+  for (let failures = 0; ; failures++) {
+    if (atLeast <= 0.005) return { sigmas: 2, components: used, runFailures: 2, componentFailures: failures };
+    atLeast -= term;
+    term *= (((used - failures) / (failures + 1)) * fails) / (1 - fails);
+  }
+}
+
 /** @param runs new runs, a row each, in the order of the ensemble's quantities; the criteria are made for three */
 export function ensembleTest(
   ensemble: Ensemble,

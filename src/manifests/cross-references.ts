@@ -213,6 +213,17 @@ class Check {
       const [path, of] = typeof total === 'string' ? [['conserved', at], total] : [['conserved', at, 'of'], total.of];
       this.known(declaration, path, 'value', 'output quantity', of, outputs);
     }
+    for (const [name, grid] of Object.entries(one['grid-error'] ?? {})) {
+      const compared = [...outputs, ...Object.keys(one.features ?? {})];
+      this.known(declaration, ['grid-error', name], 'key', 'quantity or feature', name, compared);
+      for (const key of ['ratio', 'coarse-ratio'] as const) {
+        if ((grid[key] ?? 2) > 1) continue;
+        this.add(declaration, ['grid-error', name, key], 'value', {
+          says: 'The coarser grid has the larger spacing: the ratio is above 1.',
+          next: 'write the spacing of the coarser grid over that of the finer one.',
+        });
+      }
+    }
     for (const [quantity, of] of Object.entries(one.footprint ?? {})) {
       this.known(declaration, ['footprint', quantity], 'key', 'quantity', quantity, this.everyQuantity());
       this.known(declaration, ['footprint', quantity], 'value', 'output quantity', of, outputs);

@@ -2,7 +2,7 @@
  * Cases that declare their noise come in; each is run once for every perturbation that changes no physics, and what those runs
  * lie from the reference goes out, and is kept beside it.
  */
-import { compareCase } from '../compare/compare-outputs.edge.ts';
+import { compareCase, fieldMeans } from '../compare/compare-outputs.edge.ts';
 import { floorOf, type NoiseFloor } from '../compare/noise-floor.ts';
 import type { Deviation, Norm } from '../model/deviation.ts';
 import type { Case } from '../model/manifest.ts';
@@ -28,7 +28,7 @@ interface Perturbation {
   readonly replaced: ReadonlyMap<string, Uint8Array | null>;
 }
 
-const USUAL_RUNS = 8;
+export const USUAL_RUNS = 8;
 
 /**
  * @throws {NotDeclared} for a case that no manifest declares
@@ -67,8 +67,9 @@ async function measureCase(theCase: Case, tree: TreeRuns, folder: string): Promi
   const runs = await Promise.all(
     perturbations.map(async ({ says, exchanges, replaced }) => {
       const { result } = await tree.run(theCase, exchanges, { replaced });
-      if (result.state !== 'ran') return { says, why: `${says}: ${result.why}`, deviations: null };
-      return { says, why: null, deviations: await compareCase(theCase, folder, result.out) };
+      if (result.state !== 'ran') return { says, why: `${says}: ${result.why}`, deviations: null, means: null };
+      const deviations = await compareCase(theCase, folder, result.out);
+      return { says, why: null, deviations, means: await fieldMeans(theCase, result.out) };
     }),
   );
   const left = runs.flatMap((run) => (run.why === null ? [] : [run.why]));
@@ -78,18 +79,27 @@ async function measureCase(theCase: Case, tree: TreeRuns, folder: string): Promi
     date: new Date().toISOString(),
     runs: runs.filter((run) => run.deviations !== null).map((run) => run.says),
     floors: floorsOf(used),
+    means: rowsToColumns(runs.flatMap((run) => (run.means === null ? [] : [run.means]))),
   };
   return { case: theCase.case, noise, why: left };
 }
 
 function perturbationsOf(theCase: Case, tree: TreeRuns): Perturbation[] | string {
-  const { exchanges = [], 'last-bit': inputs = [], runs = USUAL_RUNS } = theCase.noise!;
+  const { exchanges = [], runs = USUAL_RUNS } = theCase.noise!;
   const perturbations: Perturbation[] = exchanges.map((word) => ({
     says: word,
     exchanges: [readExchange(word)],
     replaced: new Map(),
   }));
-  if (inputs.length === 0) return perturbations;
+  const moved = lastBitRuns(theCase, tree, 1, runs);
+  return typeof moved === 'string' ? moved : [...perturbations, ...moved];
+}
+
+/** Runs with the last bits of the inputs moved, from the seed `first`; none where no input is declared, or why it cannot be. */
+export function lastBitRuns(theCase: Case, tree: TreeRuns, first: number, count: number): Perturbation[] | string {
+  const inputs = theCase.noise?.['last-bit'] ?? [];
+  if (inputs.length === 0) return [];
+  const perturbations: Perturbation[] = [];
   const contents = new Map<string, Uint8Array>();
   for (const input of inputs) {
     const bytes = readListed(tree.listing, input);
@@ -98,12 +108,15 @@ function perturbationsOf(theCase: Case, tree: TreeRuns): Perturbation[] | string
       return `${input} holds no real number as text, whose last bit could be moved`;
     contents.set(input, bytes);
   }
-  for (let run = 1; run <= runs; run++) {
+  for (let run = first; run < first + count; run++) {
     const replaced = new Map([...contents].map(([path, bytes]) => [path, moveLastBits(bytes, run).bytes]));
     perturbations.push({ says: `last bit of ${inputs.join(', ')}, run ${run}`, exchanges: [], replaced });
   }
   return perturbations;
 }
+
+const rowsToColumns = (rows: readonly Readonly<Record<string, number>>[]) =>
+  Object.fromEntries(Object.keys(rows[0]!).map((name) => [name, rows.map((row) => row[name]!)]));
 
 /** A floor for every quantity and feature; conserved totals are held to their own first value. */
 function floorsOf(runs: readonly (readonly Deviation[])[]): Record<string, NoiseFloor> {

@@ -13,6 +13,8 @@ export interface NoiseRecord {
   readonly runs: readonly string[];
   /** By quantity or feature. */
   readonly floors: Readonly<Record<string, NoiseFloor>>;
+  /** The mean of every quantity, one a run: the ensemble that `--ensemble` holds new runs against. */
+  readonly means: Readonly<Record<string, readonly number[]>>;
 }
 
 const HEAD = `# What runs that change no physics lie apart. Written by "mortise rerun --noise"; measure it again rather than edit it.
@@ -36,7 +38,7 @@ export function readNoiseText(text: string, file: string): NoiseRecord {
     throw wrong((error as Error).message.split('\n')[0]!);
   }
   if (typeof value !== 'object' || value === null) throw wrong('it is no map');
-  const { reference, date, runs, floors } = value;
+  const { reference, date, runs, floors, means = {} } = value;
   if (typeof reference !== 'string' || typeof date !== 'string') throw wrong('"reference" or "date" is missing');
   if (!Array.isArray(runs) || runs.some((one) => typeof one !== 'string')) throw wrong('"runs" is no list of texts');
   if (typeof floors !== 'object' || floors === null) throw wrong('"floors" is missing');
@@ -49,5 +51,10 @@ export function readNoiseText(text: string, file: string): NoiseRecord {
     }
     return [name, floorOf(norm, deviations, unusable)] as const;
   });
-  return { reference, date, runs, floors: Object.fromEntries(read) };
+  for (const [name, members] of Object.entries(means)) {
+    const isRow =
+      Array.isArray(members) && members.length === runs.length && members.every((one) => typeof one === 'number');
+    if (!isRow) throw wrong(`the means of "${name}" are not one number a run`);
+  }
+  return { reference, date, runs, floors: Object.fromEntries(read), means };
 }

@@ -10,7 +10,7 @@ import { casesNamed, configurationOf, NotDeclared } from './configuration.ts';
 import { type Stretch, signedTolerances, stretchesBeyond, tolerancesApart } from './distance.ts';
 import { type Exchange, printExchange } from './exchange.ts';
 import { dividends, membersOf, type Subset, sampledShares, shapleyShares, subsetsOf } from './factorial.ts';
-import { readReferenceIn, referencePlace, referenceStands } from './reference-files.edge.ts';
+import { readNoise, readReferenceIn, referencePlace, referenceStands } from './reference-files.edge.ts';
 import { type Laboratory, type RerunRequest, type TreeRuns, withLaboratory } from './rerun.ts';
 import { smallestSet } from './smallest-set.ts';
 
@@ -178,7 +178,13 @@ class CaseSwapping {
     if (result.state !== 'ran') return { ...base, state: result.state, why: result.why };
     if ('why' in this.baseline)
       return { ...base, state: 'no reference', why: this.baseline.why, seconds: result.seconds };
-    const deviations = await compareCase(this.theCase, this.baseline.folder, result.out);
+    const noise = readNoise(this.baseline.folder)?.floors;
+    const deviations = await compareCase(
+      this.theCase,
+      this.baseline.folder,
+      result.out,
+      noise === undefined ? {} : { noise },
+    );
     return { ...base, state: 'compared', why: '', deviations, class: worstClass(deviations), seconds: result.seconds };
   }
 

@@ -32,10 +32,10 @@ interface Judged {
   readonly counts: number[];
 }
 
-describeWith([PYTHON], 'numpy', () => {
+describeWith(['python3:numpy'], 'numpy', () => {
   let cases: Judged[] = [];
   beforeAll(() => {
-    cases = JSON.parse(execFileSync('/usr/bin/python3', ['-c', SCRIPT], { encoding: 'utf8', maxBuffer: 1 << 26 }));
+    cases = JSON.parse(execFileSync(PYTHON, ['-c', SCRIPT], { encoding: 'utf8', maxBuffer: 1 << 26 }));
   });
 
   it('agrees on the power in every shell of wave numbers', () => {

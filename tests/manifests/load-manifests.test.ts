@@ -262,6 +262,15 @@ Next: write "expects", or remove it.
       'write "temperature", or declare "temprature".',
     ],
     [
+      'an error of the grid of something that is not compared',
+      'manifests/cases/cloud-shock.yaml',
+      'conserved: [mass]',
+      'grid-error: {temprature: {fine: 1, middle: 2, coarse: 4, ratio: 2}}',
+      'cases/cloud-shock.yaml:11:14 manifest-unknown-name',
+      'There is no quantity or feature called "temprature".',
+      'write "temperature", or declare "temprature".',
+    ],
+    [
       'a conserved total that is no output',
       'manifests/cases/cloud-shock.yaml',
       '[mass]',

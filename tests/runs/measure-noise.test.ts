@@ -1,6 +1,8 @@
 import { appendFileSync, existsSync, readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, it } from 'vitest';
+import { BAKER_CRITERIA, criteriaFor } from '../../src/compare/ensemble-test.ts';
+import { ensembleCases, ensembleText } from '../../src/runs/ensemble-cases.ts';
 import { moveLastBits } from '../../src/runs/last-bit.ts';
 import { measureNoise, noiseText } from '../../src/runs/measure-noise.ts';
 import { recordReference } from '../../src/runs/record-reference.ts';
@@ -122,5 +124,38 @@ describe('the noise of a code', () => {
     const [measured] = await measureNoise({ ...request(), cases: ['shock'] });
     expect(measured).toMatchObject({ noise: null, why: [expect.stringContaining('no reference was recorded')] });
     expect(existsSync(folder())).toBe(false);
+  });
+});
+
+describe('an ensemble of runs', () => {
+  const test = async () => (await ensembleCases({ ...request(), cases: ['shock'] }))[0]!;
+  it('takes in new runs of the same code, and keeps out those of another physics', async () => {
+    code.write({
+      'manifests/cases/shock.yaml': readFileSync(join(code.root, 'manifests/cases/shock.yaml'), 'utf8').replace(
+        'runs: 3',
+        'runs: 12',
+      ),
+    });
+    code.commit('Twelve runs');
+    await record();
+    expect((await test()).why).toContain('was not measured');
+    await measureNoise({ ...request(), cases: ['shock'] });
+    const same = await test();
+    expect(same.outcome).toMatchObject({ passes: true });
+    expect(ensembleText([same])).toBe('shock: belongs to the ensemble of 13 runs\n');
+    environment('{FACTOR: "1.000001"}');
+    const other = await test();
+    expect(other.outcome).toMatchObject({ passes: false });
+    expect(ensembleText([other])).toContain('does not belong');
+  });
+
+  it('needs enough members', async () => {
+    await record();
+    await measureNoise({ ...request(), cases: ['shock'] });
+    expect((await test()).why).toBe('an ensemble of 2 quantities needs 10 runs, it has 4: raise "runs"');
+  });
+
+  it('is judged by the criteria of Baker et al. 2015, section 3.2, for the 50 components of the paper', () => {
+    expect(criteriaFor(120)).toEqual(BAKER_CRITERIA);
   });
 });
