@@ -1,6 +1,6 @@
 /** Files named on the command line. */
 import { randomBytes } from 'node:crypto';
-import { mkdir, readFile, rename, rm, writeFile } from 'node:fs/promises';
+import { mkdir, readFile, realpath, rename, rm, writeFile } from 'node:fs/promises';
 import { dirname, join, resolve } from 'node:path';
 import { UsageError } from './command.ts';
 
@@ -12,6 +12,15 @@ export async function readWhole(cwd: string, file: string): Promise<Uint8Array> 
     throw new UsageError(
       `${file} could not be read: ${(error as NodeJS.ErrnoException).code ?? (error as Error).message}`,
     );
+  }
+}
+
+/** The absolute path with links followed. @throws {UsageError} when there is no such file */
+export async function realPath(file: string): Promise<string> {
+  try {
+    return await realpath(file);
+  } catch (error) {
+    throw new UsageError(`${file} could not be read: ${(error as NodeJS.ErrnoException).code}`);
   }
 }
 

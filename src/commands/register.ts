@@ -1,11 +1,11 @@
 /** `mortise register …`: which module versions produced which published result. */
 import { createHash } from 'node:crypto';
-import { basename, join } from 'node:path';
+import { basename, isAbsolute, join, relative, resolve } from 'node:path';
 import { parse } from 'yaml';
 import { unseal } from '../audit/clearance.ts';
 import { environmentHere } from '../audit/gather.ts';
 import { type Finding, hasStop } from '../model/finding.ts';
-import { printable } from '../model/printable.ts';
+import { printable, printableLines } from '../model/printable.ts';
 import { decodeText } from '../readers/read-source.ts';
 import type { StandingEntry } from '../register/chain.ts';
 import { type CodeNow, entryFromCode, entryMistakes } from '../register/entry-from-code.ts';
@@ -26,6 +26,7 @@ import { digestOf as digestOfFile } from '../runs/reference-files.edge.ts';
 import { rerunCases } from '../runs/rerun.ts';
 import { listTree } from '../runs/tree-files.edge.ts';
 import { SourceProblem } from '../sources/source-problem.ts';
+import { openQuestions } from './ask-line.edge.ts';
 import {
   type Command,
   EXIT,
@@ -35,7 +36,8 @@ import {
   type Surroundings,
   UsageError,
 } from './command.ts';
-import { readWhole } from './files.edge.ts';
+import { askEntry } from './entry-questions.ts';
+import { readWhole, realPath } from './files.edge.ts';
 import { openCode } from './open-code.ts';
 import { SIGN, SIGNERS, signerOf } from './signing.ts';
 import { textOptions } from './text-options.ts';
@@ -188,9 +190,39 @@ const texts = (invocation: Invocation, name: string): readonly string[] =>
 async function add(words: readonly string[], invocation: Invocation, surroundings: Surroundings): Promise<ExitStatus> {
   if (words.length > 0) throw new UsageError(`mortise register add takes options only; "${words[0]}" was given`);
   const opened = await open(invocation, surroundings);
-  const given = await entryParts(invocation, surroundings);
-  const entry = { ...entryFromCode(opened.code), people: [], result: {}, ...given } as Entry;
-  return seal(opened.register, entry, { kind: 'entry' }, invocation, surroundings);
+  const filled = entryFromCode(opened.code);
+  const told = await asked(filled, invocation, surroundings);
+  if (told === null) {
+    surroundings.out('Nothing was recorded.\n');
+    return EXIT.usage;
+  }
+  const given = await entryParts(opened.root, told, surroundings);
+  const entry = { ...filled, people: [], result: {}, ...given } as Entry;
+  return seal(opened.register, entry, { kind: 'entry' }, told, surroundings);
+}
+
+/** On a terminal, what the options leave open is asked for. */
+async function asked(
+  filled: Pick<Entry, 'code' | 'modules'>,
+  invocation: Invocation,
+  surroundings: Surroundings,
+): Promise<Invocation | null> {
+  const { options } = invocation;
+  const enough = options.from !== undefined || Object.keys(RESULT_OPTIONS).some((name) => options[name] !== undefined);
+  if (enough || !surroundings.stdoutIsTerminal || options.json === true) return invocation;
+  const modules = filled.modules.map((one) => `  ${one.component}: ${one.module} ${one.version}\n`).join('');
+  const revision = filled.code[0]?.commit ?? 'none: this code is in no git repository';
+  const questions = openQuestions(surroundings);
+  try {
+    const answers = await askEntry(
+      questions,
+      (name) => options[name] !== undefined,
+      printableLines(`Filled in from the code:\n  revision ${revision}\n${modules}`),
+    );
+    return answers === null ? null : { ...invocation, options: { ...options, ...answers } };
+  } finally {
+    questions.close();
+  }
 }
 
 async function amend(
@@ -198,9 +230,9 @@ async function amend(
   invocation: Invocation,
   surroundings: Surroundings,
 ): Promise<ExitStatus> {
-  const { register } = await open(invocation, surroundings);
+  const { register, root } = await open(invocation, surroundings);
   const before = entryNamed(register, words);
-  const given = await entryParts(invocation, surroundings);
+  const given = await entryParts(root, invocation, surroundings);
   if (Object.keys(given).length === 0)
     throw new UsageError('mortise register amend needs what to change, as options or with --from FILE');
   const entry = { ...before.content, ...given, result: { ...before.content.result, ...given.result } };
@@ -243,7 +275,7 @@ function titleOf({ title, doi, arxiv, thesis, dataset, campaign, figure, table }
 }
 
 /** What the options and the YAML file give. */
-async function entryParts(invocation: Invocation, surroundings: Surroundings): Promise<Partial<Entry>> {
+async function entryParts(root: string, invocation: Invocation, surroundings: Surroundings): Promise<Partial<Entry>> {
   const from = text(invocation, 'from');
   const file = from === undefined ? {} : partsFrom(from, await readWhole(surroundings.cwd, from));
   const result = Object.fromEntries(
@@ -253,8 +285,8 @@ async function entryParts(invocation: Invocation, surroundings: Surroundings): P
   );
   const people = texts(invocation, 'person').map(personFrom);
   const kept = text(invocation, 'kept');
-  const outputs = await digested(texts(invocation, 'output'), surroundings);
-  const inputs = await digested(texts(invocation, 'input'), surroundings);
+  const outputs = await digested(root, texts(invocation, 'output'), surroundings);
+  const inputs = await digested(root, texts(invocation, 'input'), surroundings);
   const published = text(invocation, 'published');
   if (published !== undefined && !/^\d{4}-\d\d-\d\d$/.test(published))
     throw new UsageError(`--published ${published}: write the day as YYYY-MM-DD`);
@@ -304,9 +336,16 @@ function clearanceParts(file: string, bytes: Uint8Array): Pick<Entry, 'clearance
   };
 }
 
-async function digested(files: readonly string[], surroundings: Surroundings): Promise<Digested[]> {
+async function digested(root: string, files: readonly string[], surroundings: Surroundings): Promise<Digested[]> {
+  const realRoot = await realPath(root);
   return Promise.all(
-    files.map(async (file) => ({ name: basename(file), digest: digestOf(await readWhole(surroundings.cwd, file)) })),
+    files.map(async (file) => {
+      const place = await realPath(resolve(surroundings.cwd, file));
+      const inside = relative(realRoot, place);
+      // Inside the code the name says where it lies, so that "verify" finds it again.
+      const name = inside.startsWith('..') || isAbsolute(inside) ? basename(place) : inside;
+      return { name, digest: await digestOfFile(place) };
+    }),
   );
 }
 
@@ -429,15 +468,18 @@ async function verify(
 ): Promise<ExitStatus> {
   if (words.length > 0) throw new UsageError('mortise register verify takes no words');
   const { register, root, manifests } = await open(invocation, surroundings);
-  const { records, signed, findings } = await verifyRegister(register.folder, join(root, manifests, SIGNERS));
+  const { records, signed, named, findings } = await verifyRegister(register.folder, {
+    root,
+    signers: join(root, manifests, SIGNERS),
+  });
   const placed = findings.map(
     (one): Finding => ({ ...one, place: { ...one.place, file: `manifests/register/${one.place.file}` } }),
   );
   say(
     invocation,
     surroundings,
-    { records, signed, findings: placed },
-    `${records} records read, every seal made again, ${signed} signatures tested\n${findingsText(placed, textOptions(invocation, surroundings))}`,
+    { records, signed, named, findings: placed },
+    `${records} records read, every seal made again, ${signed} signatures tested\n${named.held + named.away === 0 ? '' : `${named.held} files that entries name are as recorded, ${named.away} are not here\n`}${findingsText(placed, textOptions(invocation, surroundings))}`,
   );
   return hasStop(placed) ? EXIT.stop : EXIT.ok;
 }

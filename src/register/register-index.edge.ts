@@ -62,22 +62,28 @@ export function openRegisterIndex(
     'register',
     `${createHash('sha256').update(resolve(folder)).digest('hex').slice(0, 32)}.sqlite`,
   );
-  mkdirSync(join(file, '..'), { recursive: true });
   for (const attempt of [1, 2]) {
     let database: Database.Database | undefined;
     try {
-      database = new SQLite(file, { timeout: 10_000 });
+      mkdirSync(join(file, '..'), { recursive: true });
+      database = new SQLite(file, { timeout: 3_000 });
       prepare(database);
       refresh(database, folder, say);
       return sqliteIndex(database);
     } catch (error) {
       database?.close();
-      // A damaged index is thrown away once; what fails again is no damage of the index.
-      if (attempt === 2) throw error;
+      // Only what is damaged is thrown away, and once: others may have it open.
+      if (attempt === 2 || !isDamaged(error)) break;
       for (const suffix of ['', '-wal', '-shm']) rmSync(file + suffix, { force: true });
     }
   }
-  throw new Error('unreachable');
+  // A full or read-only disk, or too many at once: the files themselves are asked, which takes longer.
+  return memoryIndex(readRegister(folder));
+}
+
+function isDamaged(error: unknown): boolean {
+  const { code } = error as { code?: string };
+  return code === 'SQLITE_CORRUPT' || code === 'SQLITE_NOTADB' || code === 'SQLITE_ERROR' || code === undefined;
 }
 
 /** Every record of the folder, read and put together, without an index. */

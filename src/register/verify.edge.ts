@@ -1,6 +1,8 @@
 /** Every record of the register, whole: read, its seal made again, the chain walked. No index is asked. */
-import { existsSync } from 'node:fs';
+import { createHash } from 'node:crypto';
+import { createReadStream, existsSync, statSync } from 'node:fs';
 import { availableParallelism } from 'node:os';
+import { basename, join } from 'node:path';
 import { Worker } from 'node:worker_threads';
 import { type Finding, sortFindings } from '../model/finding.ts';
 import { printable } from '../model/printable.ts';
@@ -8,12 +10,21 @@ import { builtAsset } from '../sources/assets.edge.ts';
 import { checkSignature } from '../sources/ssh-signature.edge.ts';
 import { chain, headOf, type RecordHead } from './chain.ts';
 import { readRecord } from './read-record.ts';
+import type { Entry, Seal } from './record.ts';
 import { listRecordFiles, readRecordBytes } from './register-files.edge.ts';
 
 export interface Checked {
   readonly heads: RecordHead[];
   readonly findings: Finding[];
   readonly signed: Signed[];
+  readonly naming: Naming[];
+}
+
+/** Inputs and outputs that a record names. */
+interface Naming {
+  readonly file: string;
+  readonly seal: string;
+  readonly digests: readonly { readonly name: string; readonly digest: string; readonly kept?: string }[];
 }
 
 /** A record whose seal is as it should be, and the signature over it. */
@@ -26,6 +37,8 @@ interface Signed {
 export interface Verified {
   readonly records: number;
   readonly signed: number;
+  /** Files that standing entries name: with the recorded digest, and not to be found here. */
+  readonly named: { readonly held: number; readonly away: number };
   readonly findings: readonly Finding[];
 }
 
@@ -33,10 +46,13 @@ export interface Verified {
 const FILES_A_WORKER = 2_000;
 
 /**
- * @param folder   absolute path of the register
- * @param signers  path of the file of allowed signers
+ * @param folder  absolute path of the register
+ * @param places  the code, where the files that entries name are looked for, and the file of allowed signers
  */
-export async function verifyRegister(folder: string, signers?: string): Promise<Verified> {
+export async function verifyRegister(
+  folder: string,
+  places: { readonly root?: string; readonly signers?: string } = {},
+): Promise<Verified> {
   const files = listRecordFiles(folder);
   const script = builtAsset('verify.worker.js');
   const workers = existsSync(script)
@@ -53,15 +69,63 @@ export async function verifyRegister(folder: string, signers?: string): Promise<
         );
   const heads = shares.flatMap((one) => one.heads);
   const signed = shares.flatMap((one) => one.signed);
+  const replaced = new Set(heads.map((one) => one.replaces));
+  const naming = shares.flatMap((one) => one.naming).filter(({ seal }) => !replaced.has(seal as Seal));
+  const named = await checkNamed(places.root, naming);
   return {
     records: files.length,
     signed: signed.length,
+    named: { held: named.held, away: named.away },
     findings: sortFindings([
       ...shares.flatMap((one) => one.findings),
       ...chain(heads).findings,
-      ...signed.flatMap((one) => signatureFindings(one, signers)),
+      ...signed.flatMap((one) => signatureFindings(one, places.signers)),
+      ...named.findings,
     ]),
   };
+}
+
+async function checkNamed(
+  root: string | undefined,
+  naming: readonly Naming[],
+): Promise<{ held: number; away: number; findings: Finding[] }> {
+  const findings: Finding[] = [];
+  let [held, away] = [0, 0];
+  const known = new Map<string, string | null>();
+  for (const { file, digests } of naming) {
+    for (const { name, digest, kept } of digests) {
+      const places = [
+        ...(root === undefined ? [] : [join(root, name)]),
+        ...(kept?.startsWith('/') ? [join(kept, basename(name)), kept] : []),
+      ];
+      const place = places.find((one) => statSync(one, { throwIfNoEntry: false })?.isFile());
+      if (place === undefined) {
+        away++;
+        continue;
+      }
+      const found = known.get(place) ?? (await digestOf(place));
+      known.set(place, found);
+      if (found === digest) {
+        held++;
+        continue;
+      }
+      findings.push({
+        kind: 'digest-differs',
+        gravity: 'stop',
+        place: { file, line: 1, column: 1 },
+        says: `${printable(name)} has the digest ${found.slice(0, 19)}…, this record names ${printable(digest).slice(0, 19)}….`,
+        evidence: [{ says: `looked at: ${printable(place)}` }],
+        next: 'bring back the file with the recorded digest, or amend the entry when it named the wrong one.',
+      });
+    }
+  }
+  return { held, away, findings };
+}
+
+async function digestOf(file: string): Promise<string> {
+  const hash = createHash('sha256');
+  for await (const chunk of createReadStream(file, { highWaterMark: 1 << 20 })) hash.update(chunk as Buffer);
+  return `sha256:${hash.digest('hex')}`;
 }
 
 function signatureFindings({ file, seal, signature }: Signed, signers: string | undefined): Finding[] {
@@ -102,6 +166,7 @@ export function checkRecords(folder: string, files: readonly string[]): Checked 
   const heads: RecordHead[] = [];
   const findings: Finding[] = [];
   const signed: Signed[] = [];
+  const naming: Naming[] = [];
   for (const file of files) {
     const read = readRecord(file, readRecordBytes(folder, file));
     findings.push(...read.findings);
@@ -109,8 +174,11 @@ export function checkRecords(folder: string, files: readonly string[]): Checked 
     if (head !== null) heads.push(head);
     const { record } = read;
     if (record?.signature !== undefined) signed.push({ file, seal: record.seal, signature: record.signature });
+    const { inputs = [], outputs = [] } = (record?.content ?? {}) as Pick<Entry, 'inputs' | 'outputs'>;
+    if (record !== undefined && inputs.length + outputs.length > 0)
+      naming.push({ file, seal: record.seal, digests: [...inputs, ...outputs] });
   }
-  return { heads, findings, signed };
+  return { heads, findings, signed, naming };
 }
 
 function checkInWorker(script: string, folder: string, files: string[]): Promise<Checked> {

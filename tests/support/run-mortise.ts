@@ -19,6 +19,8 @@ export interface Setting {
   readonly env?: Readonly<Record<string, string | undefined>>;
   /** What stands on standard input. */
   readonly input?: string;
+  /** Whether a person sits before it. */
+  readonly terminal?: boolean;
 }
 
 export function mortise(cwd: string, ...words: readonly string[]): Promise<Ran> {
@@ -26,7 +28,7 @@ export function mortise(cwd: string, ...words: readonly string[]): Promise<Ran> 
 }
 
 export async function mortiseIn(
-  { cwd, env = process.env, input = '' }: Setting,
+  { cwd, env = process.env, input = '', terminal = false }: Setting,
   words: readonly string[],
 ): Promise<Ran> {
   let [out, err] = ['', ''];
@@ -34,7 +36,7 @@ export async function mortiseIn(
     cwd,
     env,
     stdin: Readable.from(input === '' ? [] : [Buffer.from(input)]),
-    stdoutIsTerminal: false,
+    stdoutIsTerminal: terminal,
     columns: 100,
     out: (text) => {
       out += text;
