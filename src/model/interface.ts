@@ -3,6 +3,7 @@
  * Readers make it; constants, fit, history, review and `mortise interface` use it.
  * Names are spelled as the language compares them (Fortran in lower case). Everything is plain data that survives JSON.
  */
+import type { ReadStatement } from './expression.ts';
 import type { Position } from './place.ts';
 
 export type Language = 'fortran' | 'c' | 'c++' | 'python' | 'typescript' | 'javascript' | 'table';
@@ -31,6 +32,8 @@ export interface FileInterface {
   readonly externals: readonly External[];
   /** Data sets of a table. */
   readonly datasets: readonly Dataset[];
+  /** Executable statements of the procedures asked about; absent when none was. */
+  readonly statements?: readonly ReadStatement[];
   /** What could not be read, and why; empty when everything was. */
   readonly incomplete: readonly Incomplete[];
 }

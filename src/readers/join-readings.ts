@@ -1,4 +1,5 @@
 /** Readings of the units of a file, in any language, to one reading with the lines of the file. */
+import type { Expression, ReadStatement } from '../model/expression.ts';
 import type { Argument, Declared, FileInterface, Language, Procedure } from '../model/interface.ts';
 
 /**
@@ -29,6 +30,7 @@ export function joinReadings(
     externals: [] as FileInterface['externals'][number][],
     incomplete: [] as FileInterface['incomplete'][number][],
   };
+  const statements: ReadStatement[] = [];
   units.forEach((unit, index) => {
     const read = readings[index]!;
     const by = unit.line - 1;
@@ -52,8 +54,10 @@ export function joinReadings(
     moveAll(read.storage, joined.storage, by);
     moveAll(read.externals, joined.externals, by);
     moveAll(read.incomplete, joined.incomplete, by);
+    for (const one of read.statements ?? [])
+      statements.push({ ...moved(one, by), parts: one.parts.map((part) => movedExpression(part, by)) });
   });
-  return { language, ...joined, datasets: [] };
+  return { language, ...joined, datasets: [], ...(statements.length === 0 ? {} : { statements }) };
 }
 
 function moved<T extends { readonly line: number }>(one: T, by: number): T {
@@ -62,6 +66,11 @@ function moved<T extends { readonly line: number }>(one: T, by: number): T {
 
 function moveAll<T extends { readonly line: number }>(from: readonly T[], to: T[], by: number): void {
   for (const one of from) to.push(moved(one, by));
+}
+
+function movedExpression(one: Expression, by: number): Expression {
+  if (by === 0) return one;
+  return { ...one, line: one.line + by, parts: one.parts.map((part) => movedExpression(part, by)) };
 }
 
 function movedProcedure(one: Procedure, by: number): Procedure {

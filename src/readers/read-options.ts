@@ -7,6 +7,6 @@ export interface ReadOptions {
    * `path` as the source writes it, `from` the path of the file that includes it.
    */
   readonly include?: (path: string, from: string) => Uint8Array | null;
-  /** Read expressions of executable statements too, for the procedures named; nothing given: none. */
+  /** Read executable statements as expressions too (Fortran), of the procedures named, by name or path; nothing given: none. */
   readonly expressionsOf?: readonly string[];
 }

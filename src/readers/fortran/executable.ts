@@ -1,5 +1,6 @@
 /** Executable statements: calls with their arguments, literals given to reals, files and environment variables. */
 import type { ActualArgument, CallSite } from '../../model/interface.ts';
+import { statementRead } from './expressions.ts';
 import { NOT_CALLED } from './intrinsics.ts';
 import { literalsOf } from './literals.ts';
 import { WORD } from './names.ts';
@@ -38,12 +39,23 @@ export function executes(reading: Reading, statement: Statement): void {
   }
   const assigned = assignmentAt(statement, from);
   const call = assigned >= 0 ? -1 : callAt(reading, statement, from);
+  if (reading.options.expressionsOf !== undefined) expressions(reading, statement, from, assigned);
   if (statement.openCount > 0) functionCalls(reading, statement, from, assigned, call);
   if (assigned >= 0) {
     const nameEnd = statement.nameEnd(from);
     if (code[nameEnd] !== 37) assignedLiterals(reading, statement, from, nameEnd, assigned);
   }
   if (statement.quoted && statement.openCount > 0) externals(reading, statement, from);
+}
+
+function expressions(reading: Reading, statement: Statement, from: number, assigned: number): void {
+  const { name, own } = reading.scope;
+  const asked = reading.options.expressionsOf!;
+  if (own === null || !(asked.includes(name) || asked.includes(own))) return;
+  for (const one of statementRead(statement, from, assigned, own)) {
+    const { line, column } = one.parts[0]!;
+    reading.found.statements.push({ ...one, line, column });
+  }
 }
 
 function begins(statement: Statement): boolean {

@@ -95,6 +95,7 @@ function interfaceOf(form: 'fixed' | 'free', found: Found): FileInterface {
     storage: found.storage,
     externals: found.externals,
     datasets: [],
+    ...(found.statements.length === 0 ? {} : { statements: found.statements }),
     incomplete: found.incomplete,
   };
 }

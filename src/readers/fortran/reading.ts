@@ -1,4 +1,6 @@
 /** What a reading of one unit has gathered so far, and the scope that the next statement stands in. */
+
+import type { ReadStatement } from '../../model/expression.ts';
 import type {
   CallSite,
   Claim,
@@ -35,6 +37,7 @@ export class Found {
   readonly claims: Claim[] = [];
   readonly storage: StorageStatement[] = [];
   readonly externals: External[] = [];
+  readonly statements: ReadStatement[] = [];
   readonly incomplete: Incomplete[] = [];
 }
 

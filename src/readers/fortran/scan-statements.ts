@@ -542,6 +542,13 @@ export class StatementScanner {
       this.endConstant(Math.max(piece.from, piece.to - 1));
     }
     if (statement.length > 0) {
+      // What stood in the buffer before must not be seen by who looks one character too far.
+      statement.reserve(2);
+      const { code, length } = statement;
+      code[length] = 0;
+      code[length + 1] = 0;
+      code[length + 2] = 0;
+      code[length + 3] = 0;
       if (statement.divided) this.handler.divided(statement);
       else this.handler.statement(statement);
     }

@@ -59,6 +59,9 @@ export class UnitReader implements ScanHandler {
   ) {
     this.reading = new Reading(path, text, names, options, found, firstLine);
     this.conditions = conditions;
+    // Sizes that the build gives by name (`nx = NXGLOB`), and macros above: known like constants.
+    for (const [name, value] of [...conditions.macros, ...Object.entries(options.define ?? {})])
+      if (/^\d+$/.test(value)) this.reading.file.setValue(name.toLowerCase(), Number(value));
     this.text = text;
     this.scanForm = form;
     this.columns = columns;
@@ -118,6 +121,7 @@ export class UnitReader implements ScanHandler {
     if (define === null || reading.inside > 0) return;
     const value =
       define[2] === undefined ? null : evaluate(define[2].toLowerCase(), (name) => valueIn(reading.scope, name));
+    if (typeof value === 'number' && !this.conditions.off) reading.file.setValue(define[1]!.toLowerCase(), value);
     reading.found.constants.push({
       name: define[1]!,
       parent: null,
@@ -558,7 +562,7 @@ export class UnitReader implements ScanHandler {
     ) {
       const { kind, name, line } = reading.scope;
       if (reading.inside === 0) reading.found.incomplete.push({ line, why: `${kind} ${name} has no end` });
-      this.close(statement.line - 1);
+      this.close(Math.max(line, statement.line - 1));
     }
   }
 
