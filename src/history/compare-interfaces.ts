@@ -3,6 +3,7 @@ import type { Change } from '../model/change.ts';
 import type { FileInterface } from '../model/interface.ts';
 import { compareText } from '../model/place.ts';
 import { compareClaims, compareDatasets } from './compare-claims.ts';
+import { compareExpressions } from './compare-expressions.ts';
 import { compareProcedures } from './compare-procedures.ts';
 import { compareCommons, compareTypes, compareVariables } from './compare-storage.ts';
 import { compareConstants, compareLiterals } from './compare-values.ts';
@@ -50,7 +51,7 @@ export function compareSides(
     ...compareTypes(before, after),
     ...compareVariables(before, after),
     ...compareConstants(before, after),
-    ...compareLiterals(before, after),
+    ...withoutTold(compareLiterals(before, after), compareExpressions(before, after, sameUnit)),
     ...compareClaims(before, after, sameUnit),
     ...compareDatasets(before, after, sameUnit),
   ];
@@ -63,10 +64,30 @@ export function fileOf(change: Change): string {
   return change.after?.place?.file ?? change.before?.place?.file ?? '';
 }
 
-/** A body that changed because of a literal or claim in it is said once, by the more telling change. */
+/** A literal that the comparison of literals tells is not told again as a number in a statement. */
+function withoutTold(literals: readonly Change[], expressions: readonly Change[]): Change[] {
+  const told = new Set(literals.map(({ subject, after }) => `${subject}\0${after?.place?.line}`));
+  return [
+    ...literals,
+    ...expressions.filter(
+      ({ kind, subject, after }) =>
+        (kind !== 'literal-value' && kind !== 'expression-factor') || !told.has(`${subject}\0${after?.place?.line}`),
+    ),
+  ];
+}
+
+/**
+ * A body that changed because of a literal or claim in it is said once, by the more telling change; terms that came with a
+ * new argument, or names that changed places as the arguments did, are said by the argument.
+ */
 function withoutExplained(changes: readonly Change[]): Change[] {
   const telling = new Set(changes.filter(({ kind }) => kind !== 'implementation').map(({ subject }) => subject));
-  return changes.filter(({ kind, subject }) => kind !== 'implementation' || !telling.has(subject));
+  const passed = new Set(changes.filter(({ kind }) => /argument/.test(kind)).map(({ subject }) => subject));
+  return changes.filter(
+    ({ kind, subject }) =>
+      (kind !== 'implementation' || !telling.has(subject)) &&
+      (!/^expression-(?:changed|order)$/.test(kind) || !passed.has(subject)),
+  );
 }
 
 /** Places get their commit: the state after lies in it, the state before in its parent. */

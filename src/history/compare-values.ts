@@ -4,29 +4,59 @@ import type { LiteralUse, NamedConstant } from '../model/interface.ts';
 import { type Part, pair, placeIn, type SourceSide } from './source-side.ts';
 
 export function compareConstants(before: readonly SourceSide[], after: readonly SourceSide[]): Change[] {
-  return pair(constants(before), constants(after)).pairs.flatMap(({ before: b, after: a }): Change[] => {
-    const sides = {
-      before: { text: b.it.text, place: placeIn(b.side, b.it) },
-      after: { text: a.it.text, place: placeIn(a.side, a.it) },
-    };
-    const was = numberOf(b.it);
-    const is = numberOf(a.it);
-    if (was === null || is === null) return [];
-    if (was !== is) {
-      const says = `constant ${a.name} is ${a.it.text}, was ${b.it.text}`;
-      return [{ kind: 'constant-value', subject: a.name, says, ...sides }];
-    }
-    return losesDigits(was, b.it.bytes, a.it.bytes)
-      ? [
-          {
-            kind: 'literal-kind',
-            subject: a.name,
-            says: precisionText(`constant ${a.name}`, a.it.text, b.it.bytes, a.it.bytes),
-            ...sides,
-          },
-        ]
-      : [];
+  const { pairs, removed } = pair(constants(before), constants(after));
+  return [...takenFromElsewhere(removed, after), ...pairs.flatMap(comparePair)];
+}
+
+/** A physical value that a file no longer sets but still names: another place gives it now, maybe with other digits. */
+function takenFromElsewhere(removed: readonly Part<NamedConstant>[], after: readonly SourceSide[]): Change[] {
+  return removed.flatMap((b): Change[] => {
+    const digits = b.it.text
+      .replace(/[eEdD_].*$/, '')
+      .replace(/\D/g, '')
+      .replace(/^0+|0+$/g, '');
+    const now = after.find(({ path }) => path === b.side.path);
+    if (digits.length < 3 || now?.text === undefined) return [];
+    if (!new RegExp(`(?<![\\w$])${b.name.replace(/\$/g, '\\$')}(?![\\w$])`, 'i').test(now.text())) return [];
+    return [
+      {
+        kind: 'constant-value',
+        subject: b.name,
+        says: `constant ${b.name}, ${b.it.text}, is no longer set here but still used: another place gives its value`,
+        before: { text: b.it.text, place: placeIn(b.side, b.it) },
+        after: { text: 'not set here', place: { ...placeIn(now, { line: 1, column: 1 }) } },
+      },
+    ];
   });
+}
+
+function comparePair({ before: b, after: a }: { before: Part<NamedConstant>; after: Part<NamedConstant> }): Change[] {
+  const sides = {
+    before: { text: b.it.text, place: placeIn(b.side, b.it) },
+    after: { text: a.it.text, place: placeIn(a.side, a.it) },
+  };
+  const was = numberOf(b.it);
+  const is = numberOf(a.it);
+  if (was === null || is === null) return [];
+  if (was !== is) {
+    const says = `constant ${a.name} is ${a.it.text}, was ${b.it.text}`;
+    return [{ kind: 'constant-value', subject: a.name, says, ...sides }];
+  }
+  const [old, now] = [literalBytes(b), literalBytes(a)];
+  if (b.it.bytes === a.it.bytes && losesDigits(was, old, now)) {
+    const says = precisionText(`the value of ${a.name}`, a.it.text, old, now);
+    return [{ kind: 'literal-kind', subject: a.name, says, ...sides }];
+  }
+  return losesDigits(was, b.it.bytes, a.it.bytes)
+    ? [
+        {
+          kind: 'literal-kind',
+          subject: a.name,
+          says: precisionText(`constant ${a.name}`, a.it.text, b.it.bytes, a.it.bytes),
+          ...sides,
+        },
+      ]
+    : [];
 }
 
 /**
@@ -130,6 +160,16 @@ function isReal(it: NamedConstant): boolean {
 
 function numberOf(it: NamedConstant): number | null {
   return typeof it.value === 'number' && Number.isFinite(it.value) ? it.value : null;
+}
+
+/** Of a Fortran constant that is one literal: 4 for a default real, 8 for one with `d` or a kind, which is taken for double. */
+function literalBytes({ side, it }: Part<NamedConstant>): number | null {
+  if (
+    side.code.language !== 'fortran' ||
+    !/^[-+]?(?:\d+\.\d*|\.\d+|\d+(?=[eEdD]))(?:[eEdD][-+]?\d+)?(?:_\w+)?$/.test(it.text.trim())
+  )
+    return null;
+  return /[dD_]/.test(it.text) ? 8 : 4;
 }
 
 /** A value that single precision holds exactly is the same in both. */

@@ -5,6 +5,7 @@
 import type { FileInterface } from '../model/interface.ts';
 import type { FortranUnit } from '../readers/fortran/cut-units.ts';
 import { languageOf, readSource } from '../readers/read-source.ts';
+import { decodeText } from '../sources/git-object.ts';
 import { type Bodies, bodiesOf, comparable } from './procedure-bodies.ts';
 import type { SourceSide } from './source-side.ts';
 
@@ -46,7 +47,12 @@ export async function contentOf(path: string, bytes: Uint8Array): Promise<FileCo
     }
   }
   const code = await readSource(path, bytes);
-  return new WholeContent({ path, code: comparable(code), bodies: bodiesOf(code, bytes) });
+  return new WholeContent({
+    path,
+    code: comparable(code),
+    bodies: bodiesOf(code, bytes),
+    text: () => decodeText(bytes),
+  });
 }
 
 interface UnitReading {
@@ -115,7 +121,18 @@ class FortranContent implements FileContent {
         for (const { bodies: own } of readings) yield* own.values();
       },
     };
-    return { path: this.path, code, bodies };
+    // Lines of units that are not looked at stay empty, so that every line keeps its number.
+    const text = () => {
+      let written = '';
+      let line = 1;
+      for (const unit of chosen) {
+        const part = decodeText(this.bytes.subarray(unit.from, unit.to));
+        written += '\n'.repeat(Math.max(0, unit.line - line)) + part;
+        line = Math.max(line, unit.line) + part.split('\n').length - 1;
+      }
+      return written;
+    };
+    return { path: this.path, code, bodies, text };
   }
 
   private reading(unit: FortranUnit): UnitReading {

@@ -9,6 +9,8 @@ export interface SourceSide {
   readonly code: FileInterface;
   /** What each procedure does, by the line it begins at; absent where only the interface is compared. */
   readonly bodies?: Bodies;
+  /** The source itself, where expressions are to be compared as well. */
+  readonly text?: () => string;
 }
 
 /** One part of a file, with the file. */

@@ -23,6 +23,7 @@ const LANGUAGES: Readonly<Record<string, Language>> = {
   finc: 'fortran',
   h90: 'fortran',
   pf: 'fortran',
+  t: 'fortran',
   fortran: 'fortran',
   c: 'c',
   'c++': 'c++',
@@ -108,7 +109,7 @@ export function languageOf(path: string, firstBytes?: Uint8Array): Language | nu
     return looksLikeFortran(head) || !/^\s*#|;\s*$/m.test(head) ? 'fortran' : headerLanguage(head);
   }
   if (
-    (extension === 'com' || extension === 'cb' || extension === 'fi') &&
+    (extension === 'com' || extension === 'cb' || extension === 'fi' || extension === 't') &&
     firstBytes !== undefined &&
     !looksLikeFortran(headOf(firstBytes))
   )

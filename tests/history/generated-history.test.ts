@@ -109,6 +109,9 @@ function play(operations: readonly Operation[]): { commits: MadeCommit[]; truth:
       made.push(`procedure-removed ${one.name}`);
     } else if (what === 'body') {
       put({ ...one, constant: one.constant + 1_000 });
+      // The factor of the result, and the number under the root where there are arguments.
+      made.push(`expression-factor ${one.name}`);
+      if (one.args.length > 0) made.push(`literal-value ${one.name}`);
     } else if (what === 'rename file') {
       const { [file]: moved, ...rest } = tree;
       tree = { ...rest, [`moved${commits.length}/${file.slice(file.lastIndexOf('/') + 1)}`]: moved! };
@@ -127,6 +130,10 @@ function play(operations: readonly Operation[]): { commits: MadeCommit[]; truth:
       commits.push({ subject: `${subject} side`, files: text });
       truth.set(`${subject} side`, [`argument-added ${side.name}`]);
       put({ ...one, constant: one.constant + 1_000 });
+      // The factor of the result, and the number under the root where there are arguments.
+      made.push(`expression-factor ${one.name}`);
+      if (one.args.length > 0) made.push(`literal-value ${one.name}`);
+      truth.set(`${subject} main`, made);
       commits.push({ subject: `${subject} main`, parents: [fork], files: difference(before, tree, 0, '') });
       tree = { ...tree, 'side.c': [changed] };
       commits.push({ subject: `${subject} merge`, parents: [commits.length - 1, commits.length - 2], files: text });
