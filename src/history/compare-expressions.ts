@@ -141,13 +141,14 @@ function compareStatements(
     );
   const pairs = pairsOf(gone, come);
   const names = new Set(before.flatMap(({ tokens }) => tokens.map(({ text }) => text)));
+  const kept = new Set(after.flatMap(({ tokens }) => tokens.map(({ text }) => text)));
   const swaps = new Map<string, { b: Statement; a: Statement }>();
   for (const { b, a } of pairs) {
     const explained = explainStatement(b, a, sameUnit);
     tell(explained, b, a);
     if (explained !== null) continue;
     const edits = editsOf(b.tokens, a.tokens);
-    const operand = edits.length === 1 && isAssigned(a) ? otherOperand(edits[0]!, names) : null;
+    const operand = edits.length === 1 && isAssigned(a) ? otherOperand(edits[0]!, names, kept) : null;
     if (operand !== null) tell({ kind: 'expression-changed', says: `${targetOf(a)} has ${operand}` }, b, a);
     for (const { gone: out, come: into } of edits) {
       if (out.length !== 1 || into.length !== 1 || out[0]!.kind === 'mark' || into[0]!.kind === 'mark') continue;
@@ -179,12 +180,16 @@ function isAssigned({ tokens }: Statement): boolean {
   );
 }
 
-/** One known thing in the place of another known thing: no new name, another operand. */
-function otherOperand({ gone, come }: Edit, names: ReadonlySet<string>): string | null {
+/** One thing in the place of another that is still used: no new name for the same thing, another operand. */
+function otherOperand(
+  { gone, come, previous }: Edit,
+  names: ReadonlySet<string>,
+  kept: ReadonlySet<string>,
+): string | null {
   const [b, a] = [gone[0], come[0]];
-  if (gone.length !== 1 || come.length !== 1 || b!.kind !== 'name' || a!.kind !== 'name' || !names.has(a!.text))
-    return null;
-  return `${a!.text} where it had ${b!.text}`;
+  if (gone.length !== 1 || come.length !== 1 || b!.kind !== 'name' || a!.kind !== 'name') return null;
+  const member = /^(?:\.|%|->)$/.test(previous?.text ?? '');
+  return names.has(a!.text) || (member && kept.has(b!.text)) ? `${a!.text} where it had ${b!.text}` : null;
 }
 
 /** The same statements that set one thing, in another order: the last one counts, or each has its own case. */

@@ -65,10 +65,10 @@ export function explainStatement(
 
 /** `const double x = a*b`: a declaration in C that computes. Fortran sets `::` between and gives constants only. */
 function isInitialiser({ tokens }: Statement): boolean {
+  const equals = tokens.findIndex(({ text }) => text === '=');
+  const left = tokens.slice(0, Math.max(0, equals));
   return (
-    /^(?:double|float|real|Real)$/.test(tokens[0]!.text) &&
-    tokens.some(({ text }) => text === '=') &&
-    !tokens.some(({ text }) => text === '::' || text === 'parameter')
+    /^(?:double|float|real|Real)$/.test(tokens[0]!.text) && left.length > 1 && left.every(({ text }) => text !== '::')
   );
 }
 
@@ -226,10 +226,13 @@ function factors(before: Statement, after: Statement, where: string): Explained 
   const flat = ({ tokens }: Statement) => tokens.filter(({ text }) => text !== '(' && text !== ')');
   const edits = editsOf(flat(before), flat(after));
   if (edits.length === 0 || edits.length > MOST_EDITS) return null;
+  const written = editsOf(before.tokens, after.tokens);
   const says: Explained[] = [];
   for (const { gone, come, previous, next } of edits) {
     const all = [...gone, ...come];
-    const near = [previous?.text, next?.text];
+    // With the parentheses as they stand: what is divided behind one is not divided by the number in it.
+    const raw = written.find((one) => one.gone[0] === gone[0] && one.come[0] === come[0]) ?? { previous, next };
+    const near = [raw.previous?.text, raw.next?.text];
     const multiplied = near.includes('*') || near.includes('/');
     if (gone.length === 1 && come.length === 1 && gone[0]!.kind === 'number' && come[0]!.kind === 'number') {
       const [b, a] = [gone[0]!, come[0]!];
