@@ -74,6 +74,13 @@ function isInitialiser({ tokens }: Statement): boolean {
 
 /** `double f(double x)`, `elemental real function f(x)`, a prototype: the interface is compared, not its text. */
 function isHeader({ tokens }: Statement): boolean {
+  // `Packet *first, *last`: names that are declared, not multiplied.
+  if (
+    tokens[0]!.kind === 'name' &&
+    tokens[1]?.text === '*' &&
+    tokens.every(({ text }) => !/^(?:[-+*/]?=|\()$/.test(text))
+  )
+    return true;
   if (tokens.slice(0, 6).some(({ text }) => /^(?:subroutine|function|procedure|operator)$/.test(text))) return true;
   const open = tokens.findIndex(({ text }) => text === '(' || text === '=');
   if (open < 2 || tokens[open]!.text === '=') return false;
@@ -256,6 +263,8 @@ function factors(before: Statement, after: Statement, where: string): Explained 
       });
       continue;
     }
+    // Dividing by 100 is multiplying by 0.01, but for the last digit.
+    if (areReciprocal(gone, come)) continue;
     const isFactor =
       all.some(({ text }) => text === '*' || text === '/') &&
       all.every(({ kind, text }) => kind === 'number' || kind === 'name' || PART_OF_FACTOR.test(text)) &&
@@ -289,6 +298,13 @@ function factors(before: Statement, after: Statement, where: string): Explained 
       .sort()
       .join(' ');
   return moved ? null : (says.find(({ kind }) => kind === 'expression-factor') ?? says[0] ?? null);
+}
+
+function areReciprocal(gone: readonly StatementToken[], come: readonly StatementToken[]): boolean {
+  const [b, a] = [gone[1]?.value, come[1]?.value];
+  if (gone.length !== 2 || come.length !== 2 || b === undefined || a === undefined) return false;
+  const operators = `${gone[0]!.text}${come[0]!.text}`;
+  return (operators === '*/' || operators === '/*') && Math.abs(a * b - 1) < 1e-12;
 }
 
 function ratioText(before: number, after: number): string {

@@ -110,6 +110,8 @@ const HARMLESS: [string, string, string, string][] = [
   ['heat.f90', 'a message reworded', fortran("write(*,*) 'too hot'"), fortran("write(*,*) 'too warm'")],
   ['heat.c', 'parentheses set', c('return t * rho * 2.0;'), c('return (t * rho) * 2.0;')],
   ['heat.c', 'a comment moved', c('return t / 3.0; // a third'), c('// a third', 'return t / 3.0;')],
+  ['heat.f90', 'division written as multiplication', fortran('flux = power/100.'), fortran('flux = power*0.01')],
+  ['heat.c', 'another pointer declared', c('Packet *first;'), c('Packet *first, *last;')],
   ['heat.py', 'a docstring', python('return t * rho'), python('"""Heat * 1000."""', 'return t * rho')],
 ];
 
