@@ -6,7 +6,6 @@
 import type { ChangeKind } from '../model/bump.ts';
 import type { Change } from '../model/change.ts';
 import {
-  type Edit,
   type Explained,
   editsOf,
   explainStatement,
@@ -16,7 +15,7 @@ import {
   tokenKey,
 } from './explain-statement.ts';
 import type { SourceSide } from './source-side.ts';
-import { type Statement, type StatementToken, statementsOf } from './statements.ts';
+import { type Edit, type Statement, type StatementToken, statementsOf } from './statements.ts';
 
 /** A procedure of which more statements came or went was written anew: nothing in it can be put beside what was there. */
 const MOST_STATEMENTS = 80;

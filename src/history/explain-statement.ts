@@ -4,21 +4,12 @@
  */
 import type { ChangeKind } from '../model/bump.ts';
 import { shortNumber } from '../model/short-number.ts';
-import type { Statement, StatementToken } from './statements.ts';
+import type { Edit, Statement, StatementToken } from './statements.ts';
 import { unitsInTexts } from './unit-in-text.ts';
 
 export interface Explained {
   readonly kind: ChangeKind;
   readonly says: string;
-}
-
-/** One run of tokens that went while another came; either may be empty. */
-export interface Edit {
-  readonly gone: readonly StatementToken[];
-  readonly come: readonly StatementToken[];
-  /** The token in front of it and the one behind, after the change. */
-  readonly previous?: StatementToken;
-  readonly next?: StatementToken;
 }
 
 const LONGEST = 300;

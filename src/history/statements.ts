@@ -22,6 +22,15 @@ export interface Statement {
   readonly key: string;
 }
 
+/** One run of tokens that went while another came; either may be empty. */
+export interface Edit {
+  readonly gone: readonly StatementToken[];
+  readonly come: readonly StatementToken[];
+  /** The token in front of it and the one behind, after the change. */
+  readonly previous?: StatementToken;
+  readonly next?: StatementToken;
+}
+
 /** @param firstLine  the line that the text begins at, in its file */
 export function statementsOf(
   text: string,

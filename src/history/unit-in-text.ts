@@ -1,6 +1,6 @@
 /** A unit that text in the code names - a label, an attribute, a message, a named unit - and that is another one now. Pure. */
 import { unitGrade } from '../readers/claims/unit-words.ts';
-import type { Edit } from './explain-statement.ts';
+import type { Edit } from './statements.ts';
 
 export interface UnitPair {
   readonly before: string;
