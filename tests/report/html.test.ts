@@ -137,25 +137,21 @@ describeWith(['chromium'], 'the HTML report in Chromium', () => {
     await context.close();
   });
 
-  it('of 10,000 findings is written in 2 s, opens, and scrolls to its end', async () => {
+  it('of 10,000 findings opens, and scrolls to its end', async () => {
     const [finding] = fullReport.findings;
     const findings = Array.from(
       { length: 10_000 },
       (_, index): Finding => ({ ...finding!, says: `${finding!.says} Number ${index}.` }),
     );
     const many = { ...fullReport, findings };
-    const begin = performance.now();
     const file = join(mkdtempSync(join(tmpdir(), 'mortise-html-')), 'many.html');
     writeFileSync(file, reportHtml(many));
-    expect(performance.now() - begin).toBeLessThan(2000);
     expect(statSync(file).size).toBeLessThan(30e6);
-    const opening = performance.now();
     const { context, page } = await open(many);
     await page.keyboard.press('End');
     await page.waitForFunction('scrollY + innerHeight > document.documentElement.scrollHeight - 400', null, {
       timeout: 20_000,
     });
-    expect(performance.now() - opening).toBeLessThan(20_000);
     await context.close();
   }, 60_000);
 });
