@@ -35,12 +35,12 @@ export function findingsText(findings: readonly Finding[], options: TextOptions)
   return [...findings.map((finding) => findingText(finding, options)), `${countText(findings)}\n`].join('\n');
 }
 
-/** `2 stops, 1 caution, 3 notes`; `nothing found` for none. */
+/** `2 stops, 1 caution, 3 notes`; `no stop, caution or note` for none. */
 export function countText(findings: readonly Finding[]): string {
   const parts = GRAVITIES.map((gravity) => [gravity, findings.filter((one) => one.gravity === gravity).length] as const)
     .filter(([, count]) => count > 0)
     .map(([gravity, count]) => `${count} ${gravity}${count === 1 ? '' : 's'}`);
-  return parts.length === 0 ? 'nothing found' : parts.join(', ');
+  return parts.length === 0 ? 'no stop, caution or note' : parts.join(', ');
 }
 
 function evidenceLines(evidence: Evidence, options: TextOptions): string[] {

@@ -79,7 +79,7 @@ describe('mortise check', () => {
   expects      contract         offers              outcome
   hydro 1.0.0  gas-state 1.2.0  eos-ionising 2.1.0  fits
 
-nothing found
+no stop, caution or note
 `,
     });
   });
@@ -163,7 +163,7 @@ export function eos_ionising(rho: number, temp: number): GasState {
       'src/hydro.ts',
       "import { eos_ionising } from './eos/ionising.ts';\nexport const step = (rho: number, temp: number) => eos_ionising(rho, temp).pres;\n",
     );
-    expect((await check()).out).toContain('nothing found');
+    expect((await check()).out).toContain('no stop, caution or note');
     put('src/eos/ionising.ts', eos('J/kg'));
     expect((await check()).out).toContain('src/eos/ionising.ts:5:');
     put('src/eos/ionising.ts', eos('erg/g'));
